@@ -1,0 +1,70 @@
+#ifndef GROUNDRULES_SECTION_H
+#define GROUNDRULES_SECTION_H
+
+#include "groundrules/arena.h"
+
+#include <stddef.h>
+
+/* A 2-D cross-section: rectangular perfect conductors lying on a grounded dielectric slab, air
+ * above. The ground plane is y = 0 and infinite; the slab fills 0 < y < height with relative
+ * permittivity dk (1 = air everywhere).  Quasi-TEM: C from the electrostatic problem, external L =
+ * mu0 eps0 inv(C0) from the same section with dk = 1 (the field outside perfect conductors). */
+
+#define SECTION_EPSILON_0 8.8541878188e-12 /* F/m, CODATA 2022 */
+#define SECTION_MU_0 1.25663706127e-6      /* H/m, CODATA 2022 */
+
+enum { SECTION_MOST_CONDUCTORS = 16 };
+
+struct section_conductor {
+    double left;      /* m, x of the left edge of the foot */
+    double width;     /* m, > 0 */
+    double thickness; /* m, >= 0; 0 is an infinitely thin sheet at y = height */
+};
+
+struct section_problem {
+    double height; /* m, > 0: top of the plane to the foot of the copper */
+    double dk;     /* >= 1 */
+    size_t count;  /* 1 .. SECTION_MOST_CONDUCTORS, from left to right, no two touching */
+    struct section_conductor conductors[SECTION_MOST_CONDUCTORS];
+};
+
+/* All matrices are count x count, row major, symmetric. */
+struct section_solution {
+    size_t count;
+    double capacitance[SECTION_MOST_CONDUCTORS * SECTION_MOST_CONDUCTORS];        /* F/m, Maxwell */
+    double vacuum_capacitance[SECTION_MOST_CONDUCTORS * SECTION_MOST_CONDUCTORS]; /* F/m, dk = 1 */
+    double inductance[SECTION_MOST_CONDUCTORS * SECTION_MOST_CONDUCTORS]; /* H/m, external */
+    double error;    /* estimate: largest relative error of any entry of the three matrices */
+    size_t unknowns; /* of the finest system that was solved */
+};
+
+/* The plain solver, the oracle: first-kind Galerkin boundary elements, Legendre polynomials on
+ * panels graded geometrically to every edge, closed-form panel potentials, exact image series of
+ * the slab. */
+bool section_solve_plain(const struct section_problem *problem, struct section_solution *solution,
+                         struct error *error);
+
+/* The solver in use: one mapped expansion with corner exponents per face, reweighted images,
+ * tabulated self-blocks; orders are chosen from the geometry.  `section_solve` refines once and
+ * reports the change as the error estimate; `section_solve_once` is the single solve that the
+ * benchmark times (error = NAN). */
+bool section_solve(const struct section_problem *problem, struct section_solution *solution,
+                   struct error *error);
+bool section_solve_once(const struct section_problem *problem, struct section_solution *solution,
+                        struct error *error);
+
+/* How a conductor that is no signal is connected. */
+enum section_tie {
+    SECTION_SIGNAL,       /* kept */
+    SECTION_TIED,         /* to ground everywhere: zero potential, zero flux */
+    SECTION_FLOATING,     /* zero net charge, zero net current */
+    SECTION_TIED_ONE_END, /* to ground at one point: zero potential, zero net current */
+};
+
+/* Eliminates every conductor that is no signal.  `ties` [count].  `reduced` keeps the signals in
+ * order; reduced->inductance follows from the tie, it is not always mu0 eps0
+ * inv(reduced->vacuum_capacitance). `reduced` may be `solution`. */
+bool section_reduce(const struct section_solution *solution, const enum section_tie *ties,
+                    struct section_solution *reduced, struct error *error);
+
+#endif
