@@ -12,7 +12,7 @@
 #include <stdlib.h>
 #include <string.h>
 
-enum { MOST_TEXT = 200, MOST_DIGITS = 40, MOST_EXPONENT = 400 };
+enum { MOST_TEXT = 200, MOST_SHOWN = 80, MOST_DIGITS = 40, MOST_EXPONENT = 400 };
 static const double most_magnitude = 1e30;
 
 struct reader {
@@ -30,9 +30,14 @@ struct number {
 };
 
 static bool refuse(const struct reader *reader, const char *reason) {
-    return error_set(reader->error, ERROR_INPUT, "\"%s\": %s; expected %s, such as \"%s\"",
-                     reader->written, reason, dimension_name(reader->dimension),
-                     dimension_example(reader->dimension));
+    size_t shown = strlen(reader->written);
+    bool cut = shown > MOST_SHOWN;
+    if (cut)
+        for (shown = MOST_SHOWN; shown > 0 && (reader->written[shown] & 0xC0) == 0x80;)
+            shown--;
+    return error_set(reader->error, ERROR_INPUT, "\"%.*s%s\": %s; expected %s, such as \"%s\"",
+                     (int)shown, reader->written, cut ? "..." : "", reason,
+                     dimension_name(reader->dimension), dimension_example(reader->dimension));
 }
 
 static const struct {
@@ -246,7 +251,7 @@ static bool read_value(struct reader *reader, double *value) {
 }
 
 static bool has_unit(enum dimension dimension) {
-    return dimension_unit(dimension)[0] != '\0';
+    return dimension == DIMENSION_RATIO || dimension_unit(dimension)[0] != '\0';
 }
 
 /* Whether the number here is followed by nothing but `word`, the unit then comes at the end. */
@@ -290,6 +295,8 @@ static bool read_tolerances(struct reader *reader, struct quantity *quantity) {
     skip_spaces(reader);
     if (*reader->at == '\0')
         return true;
+    if (take(reader, ".."))
+        return refuse(reader, "a range is not accepted here");
     if (quantity->dimension == DIMENSION_RATIO || quantity->dimension == DIMENSION_COUNT)
         return refuse(reader, "no tolerance is accepted here");
     if (take(reader, "+/-")) {
