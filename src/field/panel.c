@@ -67,6 +67,8 @@ void panel_rules_make(struct panel_rules *rules) {
     test_functions(rules->near, weight, PANEL_NEAR_NODES, rules->near_test);
     quadrature_gauss(PANEL_FAR_NODES, rules->far, weight);
     test_functions(rules->far, weight, PANEL_FAR_NODES, rules->far_test);
+    quadrature_gauss(PANEL_IMAGE_NODES, rules->image, weight);
+    test_functions(rules->image, weight, PANEL_IMAGE_NODES, rules->image_test);
 }
 
 static void add_near(const struct panel_rules *rules, const struct panel *target,

@@ -13,12 +13,13 @@ struct panel {
     size_t conductor;
 };
 
-enum { PANEL_MOST_TERMS = 7, PANEL_NEAR_NODES = 18, PANEL_FAR_NODES = 10 };
+enum { PANEL_MOST_TERMS = 6, PANEL_NEAR_NODES = 16, PANEL_FAR_NODES = 8, PANEL_IMAGE_NODES = 6 };
 
 /* Nodes on [-1, 1]; test[a][m] = weight_a P_m(t_a) / 2. */
 struct panel_rules {
     double near[PANEL_NEAR_NODES], near_test[PANEL_NEAR_NODES][PANEL_MOST_TERMS];
     double far[PANEL_FAR_NODES], far_test[PANEL_FAR_NODES][PANEL_MOST_TERMS];
+    double image[PANEL_IMAGE_NODES], image_test[PANEL_IMAGE_NODES][PANEL_MOST_TERMS];
 };
 void panel_rules_make(struct panel_rules *rules);
 

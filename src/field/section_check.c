@@ -2,8 +2,8 @@
 
 #include <math.h>
 
-/* Beyond these ratios the corner and gap scales part so far that double precision and the mesh rules
- * are untested; no board is near them. */
+/* Beyond these ratios the corner and gap scales part so far that double precision and the mesh
+ * rules are untested; no board is near them. */
 static const double most_dk = 100.0;
 static const double most_heights = 1e4;
 static const double least_heights = 1e-4;
@@ -32,13 +32,14 @@ static bool conductor_check(const struct section_problem *problem, size_t i, str
                          "height",
                          i + 1, c->thickness);
     if (c->thickness > 0 && c->thickness < thinnest * c->width)
-        return error_set(error, ERROR_INPUT,
-                         "conductor %zu: thickness %g m is below %g of its width; use 0 for a sheet",
-                         i + 1, c->thickness, thinnest);
+        return error_set(
+            error, ERROR_INPUT,
+            "conductor %zu: thickness %g m is below %g of its width; use 0 for a sheet", i + 1,
+            c->thickness, thinnest);
     if (fabs(c->left) > 100 * most_heights * h)
         return error_set(error, ERROR_INPUT,
-                         "conductor %zu: left edge at %g m is more than %g heights from x = 0", i + 1,
-                         c->left, 100 * most_heights);
+                         "conductor %zu: left edge at %g m is more than %g heights from x = 0",
+                         i + 1, c->left, 100 * most_heights);
     return true;
 }
 
@@ -47,16 +48,16 @@ static bool gap_check(const struct section_problem *problem, size_t i, struct er
     double gap = two->left - (one->left + one->width);
     if (two->left < one->left)
         return error_set(error, ERROR_INPUT,
-                         "conductors %zu and %zu are not in order from left to right (%g m, %g m)", i,
-                         i + 1, one->left, two->left);
+                         "conductors %zu and %zu are not in order from left to right (%g m, %g m)",
+                         i, i + 1, one->left, two->left);
     if (gap < 0)
         return error_set(error, ERROR_INPUT, "conductors %zu and %zu overlap by %g m", i, i + 1,
                          -gap);
     double least = 1e-4 * fmin(problem->height, fmin(one->width, two->width));
     if (gap < least)
         return error_set(error, ERROR_INPUT,
-                         "conductors %zu and %zu touch or nearly: gap %g m, must be at least %g m", i,
-                         i + 1, gap, least);
+                         "conductors %zu and %zu touch or nearly: gap %g m, must be at least %g m",
+                         i, i + 1, gap, least);
     return true;
 }
 
@@ -64,7 +65,8 @@ bool section_check(const struct section_problem *problem, struct error *error) {
     if (!isfinite(problem->height) || !(problem->height > 0))
         return error_set(error, ERROR_INPUT, "height is %g m, must be above 0", problem->height);
     if (!isfinite(problem->dk) || !(problem->dk >= 1) || problem->dk > most_dk)
-        return error_set(error, ERROR_INPUT, "dk is %g, must be from 1 to %g", problem->dk, most_dk);
+        return error_set(error, ERROR_INPUT, "dk is %g, must be from 1 to %g", problem->dk,
+                         most_dk);
     if (problem->count < 1 || problem->count > SECTION_MOST_CONDUCTORS)
         return error_set(error, ERROR_INPUT, "%zu conductors, must be 1 to %d", problem->count,
                          SECTION_MOST_CONDUCTORS);

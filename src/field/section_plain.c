@@ -4,7 +4,7 @@
  * 2. A = integrals of test, source and Green's function of the grounded slab over panel pairs:
  *    G = -(1/2pi) [ln r0 - K ln r1 - (1 - K^2) sum_(k>=0) (-K)^k ln rho_k], K = (dk-1)/(dk+1),
  *    r1 seen in the slab's face, rho_k at y + y' + 2k h (Silvester 1968); the sum ends where
- *    K^k < 1e-8 and the rest is put on the last image, so that the total charge is exactly zero.
+ *    K^k < 1e-7 and the rest is put on the last image, so that the total charge is exactly zero.
  * 3. A q = the conductors' unit potentials, by Cholesky; C = their charges. */
 
 #include "groundrules/arena.h"
@@ -22,8 +22,8 @@ struct plain_orders {
     double smallest; /* end panel over the longer side */
 };
 
-static const struct plain_orders fine = {6, 0.25, 3e-7};
-static const struct plain_orders coarse = {4, 0.25, 3e-6};
+static const struct plain_orders fine = {5, 0.2, 1e-5};
+static const struct plain_orders coarse = {4, 0.2, 1e-4};
 
 enum { MOST_IMAGES = 1200 };
 
@@ -91,8 +91,7 @@ static bool add_side(struct plain *plain, struct panel side, double smallest, st
         for (int sign = -1; sign <= 1; sign += 2) {
             struct panel panel = side;
             panel.half = 0.5 * (outer - inner);
-            *(side.upright ? &panel.y : &panel.x) +=
-                sign * (side.half - 0.5 * (outer + inner));
+            *(side.upright ? &panel.y : &panel.x) += sign * (side.half - 0.5 * (outer + inner));
             if (!add_panel(plain, panel, arena, error))
                 return false;
         }
@@ -127,7 +126,7 @@ static void make_weights(struct plain *plain) {
     double k = plain->reflection = section_reflection(plain->problem->dk);
     double weight = 1 - k * k;
     plain->images = 0;
-    while (plain->images < MOST_IMAGES - 1 && fabs(weight) > 1e-8) {
+    while (plain->images < MOST_IMAGES - 1 && fabs(weight) > 1e-7) {
         plain->weight[plain->images++] = weight;
         weight *= -k;
     }
@@ -135,7 +134,7 @@ static void make_weights(struct plain *plain) {
 }
 
 static void node_positions(const struct panel *panel, const double *t, double *x, double *y) {
-    for (size_t a = 0; a < PANEL_FAR_NODES; a++) {
+    for (size_t a = 0; a < PANEL_IMAGE_NODES; a++) {
         x[a] = panel->x + (panel->upright ? 0 : panel->half * t[a]);
         y[a] = panel->y + (panel->upright ? panel->half * t[a] : 0);
     }
@@ -145,14 +144,14 @@ static void node_positions(const struct panel *panel, const double *t, double *x
 static void add_images(const struct plain *plain, const struct panel *target,
                        const struct panel *source, double *block, double *block0) {
     size_t terms = plain->orders.terms;
-    double x[PANEL_FAR_NODES], y[PANEL_FAR_NODES], u[PANEL_FAR_NODES], v[PANEL_FAR_NODES];
-    node_positions(target, plain->rules.far, x, y);
-    node_positions(source, plain->rules.far, u, v);
-    for (size_t a = 0; a < PANEL_FAR_NODES; a++) {
+    double x[PANEL_IMAGE_NODES], y[PANEL_IMAGE_NODES], u[PANEL_IMAGE_NODES], v[PANEL_IMAGE_NODES];
+    node_positions(target, plain->rules.image, x, y);
+    node_positions(source, plain->rules.image, u, v);
+    for (size_t a = 0; a < PANEL_IMAGE_NODES; a++) {
         double inner[PANEL_MOST_TERMS] = {0}, inner0[PANEL_MOST_TERMS] = {0};
-        double sum[PANEL_FAR_NODES] = {0}, first[PANEL_FAR_NODES];
+        double sum[PANEL_IMAGE_NODES] = {0}, first[PANEL_IMAGE_NODES];
         for (size_t k = 0; k < plain->images; k++) {
-            for (size_t b = 0; b < PANEL_FAR_NODES; b++) {
+            for (size_t b = 0; b < PANEL_IMAGE_NODES; b++) {
                 double dx = x[a] - u[b], dy = y[a] + v[b] + 2.0 * (double)k;
                 double value = 0.5 * logarithm(dx * dx + dy * dy);
                 sum[b] += plain->weight[k] * value;
@@ -160,15 +159,15 @@ static void add_images(const struct plain *plain, const struct panel *target,
                     first[b] = value;
             }
         }
-        for (size_t b = 0; b < PANEL_FAR_NODES; b++)
+        for (size_t b = 0; b < PANEL_IMAGE_NODES; b++)
             for (size_t n = 0; n < terms; n++) {
-                inner[n] += plain->rules.far_test[b][n] * sum[b];
-                inner0[n] += plain->rules.far_test[b][n] * first[b];
+                inner[n] += plain->rules.image_test[b][n] * sum[b];
+                inner0[n] += plain->rules.image_test[b][n] * first[b];
             }
         for (size_t m = 0; m < terms; m++)
             for (size_t n = 0; n < terms; n++) {
-                block[m * terms + n] -= plain->rules.far_test[a][m] * inner[n];
-                block0[m * terms + n] -= plain->rules.far_test[a][m] * inner0[n];
+                block[m * terms + n] -= plain->rules.image_test[a][m] * inner[n];
+                block0[m * terms + n] -= plain->rules.image_test[a][m] * inner0[n];
             }
     }
 }

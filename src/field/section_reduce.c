@@ -98,9 +98,8 @@ bool section_reduce(const struct section_solution *solution, const enum section_
     }
     if (signals.count == 0)
         return error_set(error, ERROR_INPUT, "section: no conductor is a signal");
-    struct section_solution result = {.count = signals.count,
-                                      .error = solution->error,
-                                      .unknowns = solution->unknowns};
+    struct section_solution result = {
+        .count = signals.count, .error = solution->error, .unknowns = solution->unknowns};
     if (!complement(solution->capacitance, n, &signals, &floating, result.capacitance, error) ||
         !complement(solution->vacuum_capacitance, n, &signals, &floating, result.vacuum_capacitance,
                     error) ||
