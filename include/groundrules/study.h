@@ -244,6 +244,12 @@ bool study_read_text(const char *path, const char *text, size_t length, struct a
 void study_apply_stackup(const struct study_stackup *stackup, const struct model *model,
                          double *inputs);
 
+/* The names of the other files that a rules.json written earlier lists, so that stale ones can be
+ * removed.  A file that is missing or is no such manifest gives none; false only for ERROR_MEMORY.
+ */
+bool study_manifest_files(const char *path, struct arena *arena, const char *const **names,
+                          size_t *count, struct error *error);
+
 const struct study_stackup *study_find_stackup(const struct study *study, const char *id);
 
 #endif
