@@ -142,11 +142,10 @@ static void fill_coefficients(const struct coupled_pair *pair, double *outputs, 
     double victim_impedance = sqrt(pair->victim_inductance / pair->victim_capacitance);
     double inductive = pair->mutual_inductance / aggressor_impedance;
     double capacitive = pair->mutual_capacitance * victim_impedance;
-    double round_trip = sqrt(pair->inductance * pair->capacitance) +
-                        sqrt(pair->victim_inductance * pair->victim_capacitance);
     outputs[COUPLED_INDUCTIVE_COEFFICIENT] = pair->mutual_inductance / pair->inductance;
     outputs[COUPLED_CAPACITIVE_COEFFICIENT] = pair->mutual_capacitance / pair->victim_capacitance;
-    outputs[COUPLED_BACKWARD_COEFFICIENT] = (inductive + capacitive) / (2.0 * round_trip);
+    outputs[COUPLED_BACKWARD_COEFFICIENT] =
+        (outputs[COUPLED_INDUCTIVE_COEFFICIENT] + outputs[COUPLED_CAPACITIVE_COEFFICIENT]) / 4.0;
     outputs[COUPLED_FORWARD_COEFFICIENT] = (capacitive - inductive) / 2.0;
     /* A difference: its error is that of the terms, not of the result. */
     errors[COUPLED_FORWARD_COEFFICIENT] = pair->error * (inductive + capacitive);
