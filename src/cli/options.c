@@ -13,8 +13,9 @@ struct option {
 };
 
 static const struct option known[] = {
-    {"--output", "-o", 'o', true}, {"--jobs", "-j", 'j', true},    {"--quiet", "-q", 'q', false},
-    {"--json", NULL, 'J', false},  {"--strict", NULL, 's', false}, {"--study", NULL, 'S', true},
+    {"--output", "-o", 'o', true},    {"--jobs", "-j", 'j', true},    {"--quiet", "-q", 'q', false},
+    {"--json", NULL, 'J', false},     {"--strict", NULL, 's', false}, {"--study", NULL, 'S', true},
+    {"--markdown", NULL, 'm', false},
 };
 enum { KNOWN = sizeof known / sizeof *known };
 
@@ -43,6 +44,9 @@ static bool apply(struct options *options, char key, const char *value, struct e
         return true;
     case 'J':
         options->json = true;
+        return true;
+    case 'm':
+        options->markdown = true;
         return true;
     default:
         options->strict = true;

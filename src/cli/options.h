@@ -10,7 +10,7 @@ struct options {
     const char *output; /* -o, --output */
     const char *study;  /* --study */
     int jobs;           /* -j, --jobs; 0 = all cores */
-    bool quiet, json, strict;
+    bool quiet, json, strict, markdown;
     const char **words; /* points into argv; the words that are no options */
     size_t word_count;
 };
