@@ -6,9 +6,10 @@
 #include <math.h>
 #include <stdbool.h>
 
-static const size_t ladder[] = {2,  3,  4,  5,  6,  7,  8,  9,  10, 12, 14,
-                                16, 20, 24, 28, 32, 40, 48, 64, 80, 96, 128};
-enum { RUNGS = sizeof ladder / sizeof *ladder, FINE_NODES = 320 };
+static const size_t ladder[] = {2,  3,  4,   5,   6,   7,   8,   9,   10, 12, 14,
+                                16, 18, 20,  24,  28,  32,  36,  40,  48, 56, 64,
+                                80, 96, 112, 128, 160, 192, 224, 256, 320};
+enum { RUNGS = sizeof ladder / sizeof *ladder };
 
 double face_corner_exponent(size_t corner) {
     return corner == FACE_SHEET_EDGE ? 2.0 : 1.5 + 0.06 * (double)corner;
@@ -71,9 +72,9 @@ struct rule_key {
  */
 static void *make_rule(const void *data, struct arena *arena, struct error *error) {
     const struct rule_key *key = data;
-    size_t n = key->count;
+    size_t n = key->count, fine_nodes = 160 + 5 * n;
     struct face_rule *rule = arena_new(arena, 1, struct face_rule, error);
-    double *fine = arena_new(arena, 2 * FINE_NODES, double, error);
+    double *fine = arena_new(arena, 2 * fine_nodes, double, error);
     double *inner = arena_new(arena, FACE_MOST_TERMS * n, double, error);
     if (rule != NULL)
         rule->moment = arena_new(arena, FACE_MOST_TERMS * n, double, error);
@@ -82,11 +83,11 @@ static void *make_rule(const void *data, struct arena *arena, struct error *erro
     rule->count = n;
     double weight[FACE_MOST_NODES], t[FACE_MOST_NODES], p[FACE_MOST_TERMS],
         legendre[FACE_MOST_NODES];
-    quadrature_gauss(FINE_NODES, fine, fine + FINE_NODES);
-    for (size_t i = 0; i < FINE_NODES; i++) {
+    quadrature_gauss(fine_nodes, fine, fine + fine_nodes);
+    for (size_t i = 0; i < fine_nodes; i++) {
         double u = 0.5 * (1 + fine[i]);
         double s = u * u * u * (10 - 15 * u + 6 * u * u);
-        double w = 0.5 * fine[FINE_NODES + i] * 30 * u * u * (1 - u) * (1 - u);
+        double w = 0.5 * fine[fine_nodes + i] * 30 * u * u * (1 - u) * (1 - u);
         double x = face_position(key->kind, key->corner, s);
         double at = key->crowded ? -2 * sin(asin(1 - 2 * x) / 3) : 2 * x - 1;
         quadrature_legendre(FACE_MOST_TERMS, 2 * s - 1, p);

@@ -24,7 +24,7 @@ size_t face_foot_corner(double dk);
 /* Both ends alike (foot, top, sheet), or an upright whose upper end is an air corner. */
 enum face_kind { FACE_LEVEL, FACE_UPRIGHT, FACE_KINDS };
 
-enum { FACE_MOST_TERMS = 24, FACE_MOST_NODES = 128 };
+enum { FACE_MOST_TERMS = 24, FACE_MOST_NODES = 320 };
 
 /* I_s(a, b) for 0 <= s <= 1, within 1e-15. */
 double face_position(enum face_kind kind, size_t corner, double s);

@@ -7,11 +7,11 @@
 #include "section_image.h"
 #include "section_parts.h"
 
-#include <complex.h>
 #include <math.h>
 
-double tune_level_base = 3.0, tune_level_factor = 1.5, tune_up_base = 1.6, tune_up_factor = 0.8,
-       tune_node = 3e-4, tune_image = 2e-5, tune_step = 1.0;
+double tune_level_base = 3.3, tune_level_factor = 2.0, tune_up_base = 1.7, tune_up_factor = 0.8,
+       tune_node = 2e-4, tune_image = 2e-5, tune_step = 1.0, tune_inner = 0.7,
+       tune_inner_node = 0.3;
 
 static double gap_between(const struct section_problem *problem, size_t i, size_t j) {
     const struct section_conductor *one = &problem->conductors[i < j ? i : j];
@@ -39,33 +39,43 @@ void section_orders_choose(const struct section_problem *problem, int effort,
             near = fmin(near, gap_between(problem, i - 1, i));
         if (i + 1 < problem->count)
             near = fmin(near, gap_between(problem, i, i + 1));
-        double level = tune_level_base + tune_level_factor * cbrt(w / near) + 1.5 * raise;
+        bool inner = i > 0 && i + 1 < problem->count;
+        double factor = tune_level_factor + (inner ? tune_inner * log1p(0.5 * w) : 0);
+        double level = tune_level_base + factor * cbrt(w / near) + 1.5 * raise;
         double upright = tune_up_base + tune_up_factor * cbrt(t / near) + raise;
         orders->terms[i].level = at_most(level, FACE_MOST_TERMS, &orders->reached);
         orders->terms[i].upright =
             t > 0 ? at_most(upright, SECTION_MOST_UPRIGHT, &orders->reached) : 0;
     }
-    orders->node_error = tune_node * pow(10, -raise);
+    orders->node_error = (problem->count > 2 ? tune_inner_node : 1) * tune_node * pow(10, -raise);
     orders->images =
         section_image_count(section_reflection(problem->dk), tune_image * pow(10, -raise));
 }
 
-/* Ellipse through a singularity at z, the side being [-1, 1]. */
-static double ellipse(double complex z) {
-    double complex root = csqrt(z * z - 1);
-    double rho = cabs(z + root);
-    return rho > 1 ? rho : 1 / rho;
+/* Parameter of the ellipse with foci -1, 1: through 1 + 2 gap beyond the end, and through i height
+ * above the middle. */
+static double beyond_end(double gap) {
+    return 1 + 2 * gap + 2 * sqrt(gap * (gap + 1));
 }
 
-/* The same in t where z = (3t - t^3)/2 crowds nodes at the ends. */
-static double crowded_ellipse(double complex z) {
-    return ellipse(-2 * csin(casin(-z) / 3));
+static double above_middle(double height) {
+    return height + sqrt(height * height + 1);
 }
 
-static size_t count_for(double complex z, double error, bool *crowded) {
-    double plain = ellipse(z), dense = crowded_ellipse(z);
-    *crowded = dense > 1.05 * plain;
-    double count = ceil(log(1 / error) / log(fmax(plain, dense)));
+/* The same singularities in t, where x = (3t - t^3)/2 crowds nodes at the ends. */
+static double crowded_beyond_end(double gap) {
+    double third = acosh(1 + 2 * gap) / 3;
+    double re = cosh(third), im = sqrt(3) * sinh(third);
+    double sum = 0.5 * (hypot(re - 1, im) + hypot(re + 1, im));
+    return sum + sqrt(sum * sum - 1);
+}
+
+static double crowded_above_middle(double height) {
+    return above_middle(2 * sinh(asinh(height) / 3));
+}
+
+static size_t count_for(double rho, double error) {
+    double count = ceil(log(error) / -log(rho));
     return count > FACE_MOST_NODES ? FACE_MOST_NODES : count < 2 ? 2 : (size_t)count;
 }
 
@@ -73,20 +83,19 @@ struct section_nodes section_nodes(const struct section_problem *problem,
                                    const struct section_orders *orders, size_t i, size_t j) {
     const struct section_conductor *c = &problem->conductors[i];
     double w = c->width / problem->height, t = c->thickness / problem->height;
-    double error = orders->node_error;
+    /* Over a wide conductor the potential is the small difference of charge and image. */
+    double error = orders->node_error / (1 + 0.5 * w);
+    double gap = i == j ? 4 : gap_between(problem, i, j), end = gap / w, middle = 4 / w;
     struct section_nodes nodes = {0};
-    double gap = i == j ? 4 : gap_between(problem, i, j);
-    bool crowded;
-    nodes.level = count_for(1 + 2 * gap / w, error, &nodes.level_crowded);
-    size_t across = count_for(4 * I / w, error, &crowded);
-    if (across > nodes.level) {
-        nodes.level = across;
-        nodes.level_crowded = crowded;
+    nodes.level = count_for(fmin(beyond_end(end), above_middle(middle)), error);
+    if (end < 0.1) {
+        size_t crowded =
+            count_for(fmin(crowded_beyond_end(end), crowded_above_middle(middle)), error);
+        nodes.level_crowded = crowded < nodes.level;
+        nodes.level = nodes.level_crowded ? crowded : nodes.level;
     }
-    if (t > 0) {
-        nodes.upright =
-            count_for(i == j ? 1 + 4 / t : 2 * I * gap / t, error, &nodes.upright_crowded);
-    }
+    if (t > 0)
+        nodes.upright = count_for(i == j ? beyond_end(2 / t) : above_middle(2 * gap / t), error);
     return nodes;
 }
 

@@ -233,7 +233,9 @@ static void from_table(const struct table *table, double u, const size_t *at, si
             double sum = 0;
             for (size_t k = 0; k < COEFFICIENTS; k++)
                 sum += c[0][k] * chebyshev[0][k] + c[1][k] * chebyshev[1][k];
-            own[i * n + j] = own[j * n + i] = sum;
+            own[i * n + j] += sum;
+            if (j > i)
+                own[j * n + i] += sum;
         }
 }
 
@@ -242,7 +244,7 @@ static void from_matrices(const struct own_matrices *matrices, const size_t *at,
     for (size_t i = 0; i < n; i++)
         for (size_t j = 0; j < n; j++) {
             size_t k = at[i] * OWN + at[j];
-            own[i * n + j] = direct * matrices->direct[k] + mirrored * matrices->mirrored[k];
+            own[i * n + j] += direct * matrices->direct[k] + mirrored * matrices->mirrored[k];
         }
 }
 

@@ -16,7 +16,7 @@ static inline size_t section_own(struct section_terms terms) {
     return terms.upright == 0 ? terms.level : 2 * (terms.level + terms.upright);
 }
 
-/* Interaction of one rectangle with itself, direct: own[m * n + n'] = double integral of
+/* Interaction of one rectangle with itself; added to own[m * n + n']: double integral of
  * P_m P_n' (direct * ln r0 + mirrored * ln r1) ds ds', r1 the distance to the mirror image in the
  * line of the foot, for n = section_own(terms) functions; symmetric.  Corner exponent `corner` at
  * the foot.  Tabulated over thickness/width (Chebyshev series in its logarithm, made once per
