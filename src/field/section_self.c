@@ -15,13 +15,13 @@
 #include <math.h>
 #include <string.h>
 
-enum { FACES = 4, HALF_PANELS = 9, FACE_PANELS = 2 * HALF_PANELS, TERMS = PANEL_MOST_TERMS };
+enum { FACES = 4, HALF_PANELS = 10, FACE_PANELS = 2 * HALF_PANELS, TERMS = PANEL_MOST_TERMS };
 enum { PANELS = FACES * FACE_PANELS, PROJECTION_NODES = 16 };
 enum { OWN = SECTION_MOST_OWN, COEFFICIENTS = 10, RANGES = 5 };
 
 /* s = sin^2(theta/2): equal steps resolve the highest polynomials, the first ones the corner. */
-static const double theta[HALF_PANELS + 1] = {0,    0.03, 0.08, 0.2,  0.4,
-                                              0.63, 0.86, 1.1,  1.33, 1.57079632679489662};
+static const double theta[HALF_PANELS + 1] = {
+    0, 0.01, 0.03, 0.08, 0.2, 0.4, 0.63, 0.86, 1.1, 1.33, 1.57079632679489662};
 static const double range_end[RANGES + 1] = {1e-4, 2e-3, 2e-2, 0.1, 0.35, 1.25};
 
 struct own_matrices {
@@ -59,6 +59,16 @@ static double break_at(size_t i) {
     return i <= HALF_PANELS ? s : 1 - s;
 }
 
+/* s at a place x of the face, by bisection. */
+static double parameter_at(enum face_kind kind, size_t corner, double x) {
+    double low = 0, high = 1;
+    for (int round = 0; round < 60; round++) {
+        double middle = 0.5 * (low + high);
+        *(face_position(kind, corner, middle) < x ? &low : &high) = middle;
+    }
+    return x <= 0 ? 0 : x >= 1 ? 1 : high;
+}
+
 static void project(enum face_kind kind, size_t corner, double s0, double s1, double x0, double x1,
                     double (*projection)[TERMS]) {
     double t[PROJECTION_NODES], weight[PROJECTION_NODES];
@@ -84,8 +94,11 @@ static void make_panels(struct workspace *work, double thickness, size_t corner)
         size_t end = f == 1 ? FACE_AIR_CORNER : corner;
         for (size_t i = 0; i < FACE_PANELS; i++) {
             size_t p = f * FACE_PANELS + i;
-            double s0 = break_at(i), s1 = break_at(i + 1);
-            double x0 = face_position(kind, end, s0), x1 = face_position(kind, end, s1);
+            /* Foot and top break at the same places: where a thin trace's foot panel ends, the
+             * potential on its top has a kink, which must not fall inside a panel. */
+            double x0 = face_position(FACE_LEVEL, FACE_AIR_CORNER, break_at(i));
+            double x1 = face_position(FACE_LEVEL, FACE_AIR_CORNER, break_at(i + 1));
+            double s0 = parameter_at(kind, end, x0), s1 = parameter_at(kind, end, x1);
             struct panel *panel = &work->panels[p];
             panel->upright = kind == FACE_UPRIGHT;
             double middle = 0.5 * (x0 + x1), length = panel->upright ? thickness : 1;
