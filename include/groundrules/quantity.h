@@ -78,9 +78,11 @@ enum quantity_style {
 };
 enum quantity_lengths { QUANTITY_MILLIMETRES, QUANTITY_MILS };
 
-/* Writes `value` with `digits` significant digits and an engineering prefix; lengths in mm (µm
- * below 0.1 mm) or mil; INFINITY of a resistance as "open"; trailing zeros kept only as far as
- * `digits` says. Returns `buffer`. */
+/* Writes `value` with an engineering prefix; lengths in mm (µm below 0.1 mm) or mil, ratios in
+ * percent; INFINITY of a resistance as "open", NAN as "not defined".  `digits` > 0: exactly that
+ * many significant digits, trailing zeros kept ("0.350 mm"); `digits` < 0: at most -digits,
+ * trailing zeros cut ("0.35 mm").  The point never comes from a locale.  Returns `buffer`, cut at
+ * its end when `size` is short; 64 bytes are always enough. */
 char *quantity_print(char *buffer, size_t size, double value, enum dimension dimension, int digits,
                      enum quantity_style style, enum quantity_lengths lengths);
 

@@ -1,0 +1,10 @@
+#ifndef MODEL_REGISTRY_H
+#define MODEL_REGISTRY_H
+
+#include "groundrules/model.h"
+
+extern const struct model model_trace;
+extern const struct model model_coupled_traces;
+extern const struct model model_coupled_lines;
+
+#endif
