@@ -82,8 +82,8 @@ static void linear_ticks(struct axis *axis, double low, double high, struct step
         char label[24] = "";
         double shown = major ? n / parts * step.mantissa : n * fine;
         if (major)
-            shown = step.exponent >= 0 ? shown * power(step.exponent)
-                                       : shown / power(-step.exponent);
+            shown =
+                step.exponent >= 0 ? shown * power(step.exponent) : shown / power(-step.exponent);
         if (major)
             print_number(label, shown, axis->decimals);
         add_tick(axis, shown / axis->scale, major, label);
@@ -226,8 +226,7 @@ static void make_logarithmic(const struct axis_request *request, size_t most, st
     if (count_major(axis) >= 3)
         return;
     axis->count = 0;
-    linear_ticks(axis, shown_low, shown_high,
-                 choose_step(shown_low, shown_high, most, true, -30));
+    linear_ticks(axis, shown_low, shown_high, choose_step(shown_low, shown_high, most, true, -30));
 }
 
 bool axis_make(const struct axis_request *request, struct axis *axis, struct error *error) {
@@ -237,8 +236,7 @@ bool axis_make(const struct axis_request *request, struct axis *axis, struct err
                          request->highest);
     if (request->logarithmic && !(request->lowest > 0))
         return error_set(error, ERROR_INPUT,
-                         "a logarithmic axis cannot start at %g, must be above 0",
-                         request->lowest);
+                         "a logarithmic axis cannot start at %g, must be above 0", request->lowest);
     size_t most = request->most == 0 ? STANDARD_MOST : request->most;
     most = most < 2 ? 2 : most > LARGEST_MOST ? LARGEST_MOST : most;
     struct axis made = {.scale = 1};

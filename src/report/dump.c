@@ -34,7 +34,8 @@ static void write_bytes(struct dump *dump, const char *bytes, size_t length) {
     dump->text[dump->length] = '\0';
 }
 
-__attribute__((format(printf, 2, 3))) static void print(struct dump *dump, const char *format, ...) {
+__attribute__((format(printf, 2, 3))) static void print(struct dump *dump, const char *format,
+                                                        ...) {
     char line[512];
     va_list arguments;
     va_start(arguments, format);

@@ -219,8 +219,8 @@ bool paint_png(struct text_setter *setter, const struct scene *scene, double sca
     cairo_scale(cairo, scale, scale);
     bool ok = paint_scene(setter, scene, cairo, &nowhere, error) &&
               paint_cairo_ok(cairo_surface_status(surface), error) &&
-              paint_cairo_ok(
-                  cairo_surface_write_to_png_stream(surface, paint_sink_write, &sink), error) &&
+              paint_cairo_ok(cairo_surface_write_to_png_stream(surface, paint_sink_write, &sink),
+                             error) &&
               !sink.failed;
     cairo_destroy(cairo);
     cairo_surface_destroy(surface);

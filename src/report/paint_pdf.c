@@ -20,7 +20,8 @@ static int compare_names(const void *a, const void *b) {
 }
 
 static bool name_is_sound(const char *name) {
-    static const char ALLOWED[] = "abcdefghijklmnopqrstuvwxyzABCDEFGHIJKLMNOPQRSTUVWXYZ0123456789._-:/";
+    static const char ALLOWED[] =
+        "abcdefghijklmnopqrstuvwxyzABCDEFGHIJKLMNOPQRSTUVWXYZ0123456789._-:/";
     return name != NULL && *name != '\0' && strlen(name) < MOST_NAME &&
            strspn(name, ALLOWED) == strlen(name);
 }
@@ -58,8 +59,7 @@ static bool exists(const struct places *places, const char *name) {
                NULL;
 }
 
-static bool check_page(const struct scene *page, const struct places *places,
-                       struct error *error) {
+static bool check_page(const struct scene *page, const struct places *places, struct error *error) {
     if (!paint_check_scene(page, error))
         return false;
     if (page->width > LARGEST_PAGE || page->height > LARGEST_PAGE)
@@ -90,8 +90,7 @@ static bool check_document(const struct paint_document *document, struct arena *
                              entry->title);
         if (!exists(&places, entry->destination))
             return error_set(error, ERROR_INTERNAL,
-                             "outline entry \"%s\" leads to %s, which does not exist",
-                             entry->title,
+                             "outline entry \"%s\" leads to %s, which does not exist", entry->title,
                              entry->destination == NULL ? "nothing" : entry->destination);
     }
     return true;
@@ -184,8 +183,8 @@ bool paint_pdf(struct text_setter *setter, const struct paint_document *document
         return false;
     struct paint_sink sink = {.arena = arena, .error = error};
     const struct scene *first = document->pages[0];
-    cairo_surface_t *surface = cairo_pdf_surface_create_for_stream(paint_sink_write, &sink,
-                                                                   first->width, first->height);
+    cairo_surface_t *surface =
+        cairo_pdf_surface_create_for_stream(paint_sink_write, &sink, first->width, first->height);
     bool ok = paint_pages(setter, document, surface, &sink, error);
     cairo_surface_finish(surface);
     ok = ok && paint_cairo_ok(cairo_surface_status(surface), error) && !sink.failed;

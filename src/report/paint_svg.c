@@ -66,7 +66,10 @@ static void put_number(struct paint_sink *sink, double value, int decimals) {
     double rounding = pow(10, decimals), whole = round(value * rounding);
     if (whole == 0)
         whole = 0; /* no "-0" */
-    g_ascii_formatd(text, sizeof text, decimals == 2 ? "%.2f" : decimals == 4 ? "%.4f" : "%.0f",
+    g_ascii_formatd(text, sizeof text,
+                    decimals == 2   ? "%.2f"
+                    : decimals == 4 ? "%.4f"
+                                    : "%.0f",
                     whole / rounding);
     size_t length = strlen(text);
     if (strchr(text, '.') != NULL) {

@@ -76,18 +76,17 @@ bool scene_rectangle(struct scene *scene, double x, double y, double width, doub
         {SCENE_LINE, {x}, {y + height}},
         {SCENE_CLOSE, {0}, {0}},
     };
-    return scene_path(
-        scene, &(struct scene_path){.segments = segments, .count = 5, .filled = true, .fill = fill});
+    return scene_path(scene, &(struct scene_path){
+                                 .segments = segments, .count = 5, .filled = true, .fill = fill});
 }
 
 bool scene_line(struct scene *scene, double x0, double y0, double x1, double y1, double width,
                 struct scene_colour colour) {
     struct scene_segment segments[] = {{SCENE_MOVE, {x0}, {y0}}, {SCENE_LINE, {x1}, {y1}}};
-    return scene_path(scene, &(struct scene_path){.segments = segments,
-                                                  .count = 2,
-                                                  .stroked = true,
-                                                  .stroke = colour,
-                                                  .width = width});
+    return scene_path(
+        scene,
+        &(struct scene_path){
+            .segments = segments, .count = 2, .stroked = true, .stroke = colour, .width = width});
 }
 
 static bool append_box(struct scene *scene, enum scene_kind kind, double x, double y, double width,

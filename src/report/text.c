@@ -23,8 +23,8 @@ struct text_setter {
     PangoContext *context;
 };
 
-/* Named files instead of scanned folders: no font cache is read or written, and a face that somebody
- * adds to the folder changes nothing. */
+/* Named files instead of scanned folders: no font cache is read or written, and a face that
+ * somebody adds to the folder changes nothing. */
 static bool add_face(FcConfig *configuration, const char *face, struct error *error) {
     FcStrList *folders = FcConfigGetFontDirs(configuration);
     if (folders == NULL)
@@ -39,7 +39,8 @@ static bool add_face(FcConfig *configuration, const char *face, struct error *er
     FcStrListDone(folders);
     if (!found)
         return error_set(error, ERROR_SYSTEM,
-                         "the font file %s is missing: install the Debian package fonts-lato", face);
+                         "the font file %s is missing: install the Debian package fonts-lato",
+                         face);
     return true;
 }
 

@@ -75,8 +75,7 @@ static bool tag_read(struct parser *parser, const char *markup, struct error *er
     }
     if (parser->depth == MOST_DEPTH)
         return error_set(error, ERROR_INTERNAL, "tags too deep in markup \"%s\"", markup);
-    parser->open[parser->depth++] =
-        (struct open_tag){tag, (guint)parser->plain->len, parser->size};
+    parser->open[parser->depth++] = (struct open_tag){tag, (guint)parser->plain->len, parser->size};
     if (tag == TAG_SUB || tag == TAG_SUP)
         parser->size *= SCRIPT_SIZE;
     return true;

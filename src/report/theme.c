@@ -143,8 +143,8 @@ static double linear(double channel) {
 
 double theme_lightness(struct scene_colour colour) {
     /* Luminance of sRGB's primaries under D65 (IEC 61966-2-1), then CIE 15. */
-    double y = 0.2126 * linear(colour.red) + 0.7152 * linear(colour.green) +
-               0.0722 * linear(colour.blue);
+    double y =
+        0.2126 * linear(colour.red) + 0.7152 * linear(colour.green) + 0.0722 * linear(colour.blue);
     return y > 216.0 / 24389 ? 116 * cbrt(y) - 16 : y * 24389.0 / 27;
 }
 
@@ -154,14 +154,15 @@ struct theme_solid theme_solid(enum sketch_role role) {
     case SKETCH_PLANE:
         return (struct theme_solid){.fill = slate};
     case SKETCH_DIELECTRIC:
-        return (struct theme_solid){
-            .fill = rgb(0xF5F1E4), .hatch = 7, .hatching = rgb(0xE3DCC6)};
+        return (struct theme_solid){.fill = rgb(0xF5F1E4), .hatch = 7, .hatching = rgb(0xE3DCC6)};
     case SKETCH_TRACE:
         return (struct theme_solid){.fill = bronze, .edge = rgb(0x5F431A), .edge_width = 0.5};
     case SKETCH_AGGRESSOR:
-        return (struct theme_solid){.fill = rgb(0x5A1E3C), .edge = rgb(0x5A1E3C), .edge_width = 0.5};
+        return (struct theme_solid){
+            .fill = rgb(0x5A1E3C), .edge = rgb(0x5A1E3C), .edge_width = 0.5};
     case SKETCH_VICTIM:
-        return (struct theme_solid){.fill = rgb(0xE0B54A), .edge = rgb(0x5F431A), .edge_width = 0.7};
+        return (struct theme_solid){
+            .fill = rgb(0xE0B54A), .edge = rgb(0x5F431A), .edge_width = 0.7};
     case SKETCH_TIED:
         return (struct theme_solid){.fill = rgb(0x8B949D), .edge = slate, .edge_width = 0.6};
     case SKETCH_FLOATING:
