@@ -3,6 +3,7 @@
 #include <assert.h>
 #include <math.h>
 #include <stdio.h>
+#include <stdlib.h>
 #include <string.h>
 
 enum { STANDARD_MOST = 8, LARGEST_MOST = 20 };
@@ -45,11 +46,11 @@ static void add_tick(struct axis *axis, double value, bool major, const char *la
     snprintf(tick->label, sizeof tick->label, "%s", label);
 }
 
-static void print_number(char label[24], double shown, int decimals) {
+static void print_number(char label[40], double shown, int decimals) {
     char plain[64];
     snprintf(plain, sizeof plain, "%.*f", decimals, fabs(shown));
     bool zero = strspn(plain, "0.") == strlen(plain);
-    snprintf(label, 24, "%s%.18s", shown < 0 && !zero ? "\u2212" : "", plain);
+    snprintf(label, 40, "%s%.30s", shown < 0 && !zero ? "\u2212" : "", plain);
 }
 
 /* ---- linear ---- */
@@ -79,7 +80,7 @@ static void linear_ticks(struct axis *axis, double low, double high, struct step
     axis->decimals = decimals_of(step);
     for (double n = multiple_above(low, fine); n <= multiple_below(high, fine); n++) {
         bool major = fmod(n, parts) == 0;
-        char label[24] = "";
+        char label[40] = "";
         double shown = major ? n / parts * step.mantissa : n * fine;
         if (major)
             shown =
@@ -145,13 +146,13 @@ static double round_number(int mantissa, int exponent) {
 }
 
 /* Over more than three decades no single unit serves: each label carries its own. */
-static void wide_label(char label[24], double value, int exponent,
+static void wide_label(char label[40], double value, int exponent,
                        const struct axis_request *request) {
     if (request->dimension == DIMENSION_NUMBER || request->dimension == DIMENSION_RATIO ||
         request->dimension == DIMENSION_COUNT)
-        snprintf(label, 24, "10<sup>%s%d</sup>", exponent < 0 ? "\u2212" : "", abs(exponent));
+        snprintf(label, 40, "10<sup>%s%d</sup>", exponent < 0 ? "\u2212" : "", abs(exponent));
     else
-        quantity_print(label, 24, value, request->dimension, 1, QUANTITY_TYPOGRAPHIC,
+        quantity_print(label, 40, value, request->dimension, 1, QUANTITY_TYPOGRAPHIC,
                        request->lengths);
 }
 
@@ -172,7 +173,7 @@ static void decade_ticks(struct axis *axis, const struct axis_request *request,
                 continue;
             bool major = m == 1 ? ((decade - plan->first) % plan->stride) == 0
                                 : plan->fives && (m == 2 || m == 5);
-            char label[24] = "";
+            char label[40] = "";
             if (major && plan->wide)
                 wide_label(label, shown / axis->scale, decade, request);
             else if (major)

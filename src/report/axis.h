@@ -22,7 +22,7 @@ struct axis_request {
 struct axis_tick {
     double value;   /* SI */
     bool major;     /* labelled; the others are minor */
-    char label[24]; /* typographic: "−20", "0.5" */
+    char label[40]; /* markup, typographic: "−20", "0.5", "10<sup>6</sup>" */
 };
 
 struct axis {

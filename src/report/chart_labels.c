@@ -2,6 +2,7 @@
 #include "report/spread.h"
 
 #include <math.h>
+#include <stdint.h>
 #include <stdlib.h>
 #include <string.h>
 
