@@ -47,6 +47,9 @@ static struct range range_of_x(const struct chart *chart) {
         for (size_t i = 0; i < chart->series[s].count; i++)
             if (isfinite(chart->series[s].y[i]))
                 extend(&range, chart->series[s].x[i]);
+    /* A sweep that starts next to zero gets a scale that starts there. */
+    if (!chart->x.logarithmic && range.low > 0 && range.low < range.high / 8)
+        range.low = 0;
     return range;
 }
 

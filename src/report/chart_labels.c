@@ -6,7 +6,9 @@
 #include <stdlib.h>
 #include <string.h>
 
-static const double END_GAP = 11; /* from the plot to the labels */
+enum { MOST_ENDS = 10 };           /* beyond that leaders are a thicket */
+static const double END_GAP = 11;  /* from the plot to the labels */
+static const double WIDE_GAP = 18; /* the same when many leaders need flatter slopes */
 static const double END_LEADING = 9.4;
 static const double BARE_GUTTER = 14; /* right of a plot without labels */
 static const double SAMPLE = 20, SAMPLE_GAP = 4, ENTRY_GAP = 16;
@@ -21,6 +23,10 @@ struct scene_colour chart_text_colour(struct scene_colour colour) {
 }
 
 /* ---- labels at the ends ---- */
+
+static double end_gap(const struct chart_frame *frame) {
+    return frame->end_count > 4 ? WIDE_GAP : END_GAP;
+}
 
 static struct scene_text end_text(const struct chart_frame *frame, size_t series) {
     struct scene_style style = theme_style(THEME_LABEL);
@@ -48,10 +54,10 @@ double chart_plan_ends(struct chart_frame *frame, double width, double height) {
         widest = fmax(widest, size.width);
         total += end->height;
     }
-    frame->report.legend = total > height;
+    frame->report.legend = total > height || frame->end_count > MOST_ENDS;
     if (frame->report.legend || frame->end_count == 0)
         return BARE_GUTTER;
-    return END_GAP + widest + 1;
+    return end_gap(frame) + widest + 1;
 }
 
 static int compare_ends(const void *a, const void *b) {
@@ -84,7 +90,7 @@ static void draw_leader(struct chart_frame *frame, const struct chart_end *end, 
 }
 
 static void draw_end(struct chart_frame *frame, const struct chart_end *end) {
-    double x = frame->right + END_GAP;
+    double x = frame->right + end_gap(frame);
     const struct chart_series *series = &frame->chart->series[end->series];
     struct theme_curve style = chart_style(frame, series->style);
     draw_leader(frame, end, x - 2);
@@ -115,30 +121,62 @@ void chart_draw_ends(struct chart_frame *frame) {
         centres[i] = frame->ends[i].y;
         heights[i] = frame->ends[i].height;
     }
-    spread_apart(centres, heights, count, frame->top - 4, frame->bottom + 4);
+    double rise = frame->chart->mark_count > 0 ? -2 : 4; /* stay clear of the marks' flags */
+    spread_apart(centres, heights, count, frame->top - rise, frame->bottom + 4);
     for (size_t i = 0; i < count; i++) {
         frame->ends[i].centre = centres[i];
         draw_end(frame, &frame->ends[i]);
     }
 }
 
-/* ---- marks: flags above the plot, each to the right of its stem ---- */
+/* ---- marks: flags above the plot, beside their stems ---- */
 
 struct flag {
     size_t mark;
     double stem, x, width;
+    bool left; /* of its stem, for want of room on the right */
     size_t row;
 };
 
+static const double FLAG_GAP = 3, FLAG_CLEAR = 5;
+
+static bool spans(const struct flag *flag, double stem) {
+    return flag->left ? stem > flag->x - FLAG_CLEAR && stem < flag->stem
+                      : stem > flag->stem && stem < flag->x + flag->width + FLAG_CLEAR;
+}
+
+static bool touch(const struct flag *a, const struct flag *b) {
+    return a->x < b->x + b->width + FLAG_CLEAR && b->x < a->x + a->width + FLAG_CLEAR;
+}
+
+/* A flag that would run over the right edge turns to the left, and so does any whose text a
+ * turned flag's stem would cross. */
+static void turn_flags(struct flag *flags, size_t count, double width) {
+    for (bool changed = true; changed;) {
+        changed = false;
+        for (size_t i = 0; i < count; i++) {
+            bool turn = !flags[i].left && flags[i].x + flags[i].width > width;
+            for (size_t j = 0; j < count && !flags[i].left; j++)
+                turn = turn || (flags[j].left && spans(&flags[i], flags[j].stem));
+            if (!turn)
+                continue;
+            flags[i].left = changed = true;
+            flags[i].x = fmax(0, flags[i].stem - FLAG_GAP - flags[i].width);
+        }
+    }
+}
+
+/* Flags to the right come first, from the right to the left, then those to the left, from the left
+ * to the right: each takes the row above all that it touches or spans, so nothing is crossed. */
 static int compare_flags(const void *a, const void *b) {
     const struct flag *p = a, *q = b;
+    if (p->left != q->left)
+        return p->left ? 1 : -1;
     if (p->stem != q->stem)
-        return p->stem > q->stem ? -1 : 1;
+        return (p->stem < q->stem) == p->left ? -1 : 1;
     return p->mark > q->mark ? -1 : p->mark < q->mark;
 }
 
-/* From the right to the left each flag takes the row above all stems and flags that it spans, so
- * nothing crosses. */
 static size_t place_flags(struct chart_frame *frame, double width, struct flag *flags,
                           size_t *count) {
     const struct chart *chart = frame->chart;
@@ -150,16 +188,15 @@ static size_t place_flags(struct chart_frame *frame, double width, struct flag *
             continue;
         double wide = text_width(frame->setter, chart->marks[m].label, theme_style(THEME_LABEL),
                                  frame->error);
-        flags[(*count)++] = (struct flag){m, stem, fmin(stem + 3, width - wide), wide, 0};
+        flags[(*count)++] = (struct flag){m, stem, stem + FLAG_GAP, wide, false, 0};
     }
+    turn_flags(flags, *count, width);
     qsort(flags, *count, sizeof *flags, compare_flags);
     for (size_t i = 0; i < *count; i++) {
-        for (size_t j = 0; j < i; j++) {
-            bool spans = flags[j].stem < flags[i].x + flags[i].width + 5;
-            bool touches = flags[j].x < flags[i].x + flags[i].width + 5;
-            if ((spans || touches) && flags[j].row + 1 > flags[i].row)
+        for (size_t j = 0; j < i; j++)
+            if ((touch(&flags[i], &flags[j]) || spans(&flags[i], flags[j].stem)) &&
+                flags[j].row + 1 > flags[i].row)
                 flags[i].row = flags[j].row + 1;
-        }
         if (flags[i].row + 1 > rows)
             rows = flags[i].row + 1;
     }
@@ -218,29 +255,27 @@ static void draw_sample(struct chart_frame *frame, const struct chart_series *se
         chart_draw_marker(frame->scene, &style, x + SAMPLE / 2, y);
 }
 
-/* Entries flow into rows; draws them when `draw` is set; returns the height. */
+/* Entries stand in columns of one width; draws them when `draw` is set; returns the height. */
 static double flow_legend(struct chart_frame *frame, double width, double y, bool draw) {
-    double x = 0;
-    size_t rows = 1;
-    for (size_t i = 0; i < frame->end_count; i++) {
+    struct scene_style style = theme_style(THEME_LABEL);
+    double widest = 0;
+    for (size_t i = 0; i < frame->end_count; i++)
+        widest = fmax(widest,
+                      text_width(frame->setter, frame->chart->series[frame->ends[i].series].label,
+                                 style, frame->error));
+    double column = SAMPLE + SAMPLE_GAP + widest + ENTRY_GAP;
+    size_t columns = (size_t)fmax(1, floor((width + ENTRY_GAP) / column));
+    for (size_t i = 0; i < frame->end_count && draw; i++) {
         const struct chart_series *series = &frame->chart->series[frame->ends[i].series];
-        struct scene_style style = theme_style(THEME_LABEL);
-        double wide =
-            SAMPLE + SAMPLE_GAP + text_width(frame->setter, series->label, style, frame->error);
-        if (x > 0 && x + wide > width) {
-            x = 0;
-            rows++;
-        }
-        double baseline = y + CHART_LEGEND_ROW * (double)rows - 3;
-        if (draw) {
-            draw_sample(frame, series, x, baseline - 2.7);
-            scene_text(frame->scene, &(struct scene_text){.markup = series->label,
-                                                          .style = style,
-                                                          .x = x + SAMPLE + SAMPLE_GAP,
-                                                          .y = baseline});
-        }
-        x += wide + ENTRY_GAP;
+        double x = (double)(i % columns) * column;
+        double baseline = y + CHART_LEGEND_ROW * (double)(i / columns + 1) - 3;
+        draw_sample(frame, series, x, baseline - 2.7);
+        scene_text(frame->scene, &(struct scene_text){.markup = series->label,
+                                                      .style = style,
+                                                      .x = x + SAMPLE + SAMPLE_GAP,
+                                                      .y = baseline});
     }
+    size_t rows = (frame->end_count + columns - 1) / columns;
     return frame->end_count == 0 ? 0 : CHART_LEGEND_ROW * (double)rows + 4;
 }
 

@@ -10,6 +10,7 @@ static const double LEAST_COPPER = 2.4, LEAST_PLANE = 4; /* pt */
 static const double BELOW = 20;                          /* under the plane: scale bar, note */
 static const double LABEL_ROOM = 20; /* pt of dielectric that labels under the copper need */
 static const double LEGEND_ROW = 12;
+static const double LEAST_NAMED = 11; /* pt of dielectric that hold its own name */
 static const double HEADROOM = 3;
 
 double drawing_x(const struct drawing_frame *frame, double x) {
@@ -207,9 +208,15 @@ static void name_copper(struct drawing_frame *frame, const struct sketch *sketch
     }
 }
 
+/* The plane is named under itself, a dielectric within itself when it is tall enough. */
+static bool named_elsewhere(const struct drawing_frame *frame, const struct sketch_solid *solid) {
+    bool tall = (solid->top - solid->bottom) * frame->scale >= LEAST_NAMED;
+    return solid->role == SKETCH_PLANE || (solid->role == SKETCH_DIELECTRIC && tall);
+}
+
 static bool named_before(const struct sketch *sketch, size_t index) {
     for (size_t i = 0; i < index; i++)
-        if (is_copper(&sketch->solids[i]) && sketch->solids[i].label != NULL &&
+        if (sketch->solids[i].label != NULL &&
             sketch->solids[i].role == sketch->solids[index].role &&
             strcmp(sketch->solids[i].label, sketch->solids[index].label) == 0)
             return true;
@@ -220,7 +227,7 @@ static void draw_legend(struct drawing_frame *frame, const struct sketch *sketch
     double x = frame->left;
     for (size_t i = 0; i < sketch->solid_count; i++) {
         const struct sketch_solid *solid = &sketch->solids[i];
-        if (!is_copper(solid) || solid->label == NULL || named_before(sketch, i))
+        if (solid->label == NULL || named_elsewhere(frame, solid) || named_before(sketch, i))
             continue;
         struct theme_solid look = theme_solid(solid->role);
         drawing_solid(frame, &look, x + 0.5, y - 5.5, 12, 5.5);
@@ -235,10 +242,9 @@ static void name_layers(struct drawing_frame *frame, const struct sketch *sketch
         const struct sketch_solid *solid = &sketch->solids[i];
         if (solid->label == NULL || is_copper(solid))
             continue;
-        double tall = (solid->top - solid->bottom) * frame->scale;
         if (solid->role == SKETCH_PLANE)
             drawing_label(frame, solid->label, frame->left, below, SCENE_LEFT);
-        else if (tall >= 11)
+        else if (named_elsewhere(frame, solid))
             drawing_label(frame, solid->label, frame->left + 5,
                           drawing_y(frame, solid->bottom) - 3.5, SCENE_LEFT);
     }
@@ -253,7 +259,7 @@ static double draw_below(struct drawing_frame *frame, const struct sketch *sketc
         draw_legend(frame, sketch, y);
     }
     if (frame->report.copper_enlarged || frame->report.plane_enlarged) {
-        y += 10;
+        y += LEGEND_ROW;
         scene_text(frame->scene,
                    &(struct scene_text){.markup = frame->report.copper_enlarged
                                                       ? "Copper drawn thicker than to scale."

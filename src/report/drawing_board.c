@@ -69,20 +69,24 @@ static void draw_copper(struct drawing_frame *frame, const struct study_layer *l
                       height);
 }
 
+/* Copper lies over the dielectrics, so that no hatch line's end peeps over its edge. */
 static void draw_layers(struct drawing_frame *frame, const struct study_stackup *stackup,
                         double *middles) {
     struct theme_solid dielectric = theme_solid(SKETCH_DIELECTRIC);
-    double y = frame->top;
+    double tops[MOST_LAYERS], y = frame->top;
     for (size_t i = 0; i < stackup->layer_count; i++) {
         const struct study_layer *layer = &stackup->layers[i];
         double height = drawn(layer, frame->scale);
         if (layer->kind == STUDY_LAYER_DIELECTRIC)
             drawing_solid(frame, &dielectric, frame->left, y, frame->right - frame->left, height);
-        else
-            draw_copper(frame, layer, y, height);
+        tops[i] = y;
         middles[i] = y + height / 2;
         y += height;
     }
+    for (size_t i = 0; i < stackup->layer_count; i++)
+        if (stackup->layers[i].kind == STUDY_LAYER_COPPER)
+            draw_copper(frame, &stackup->layers[i], tops[i],
+                        drawn(&stackup->layers[i], frame->scale));
     frame->bottom = y;
 }
 
@@ -164,15 +168,14 @@ static void draw(struct drawing_frame *frame, const struct study_stackup *stacku
     draw_labels(frame, stackup, middles);
     draw_total(frame, stackup);
     double y = fmax(frame->bottom, frame->top + LABEL_ROW * (double)stackup->layer_count / 2) + 12;
-    drawing_scale_bar(frame, frame->right, y, 0.4 * (frame->right - frame->left));
     bool enlarged = frame->report.copper_enlarged || frame->report.plane_enlarged;
-    if (enlarged)
-        scene_text(frame->scene,
-                   &(struct scene_text){.markup = "Height to scale; copper drawn thicker.",
-                                        .style = theme_style(THEME_NOTE),
-                                        .x = frame->right + LEADER + 3,
-                                        .y = y + 2.8});
-    frame->scene->height = y + 8;
+    scene_text(frame->scene,
+               &(struct scene_text){.markup = enlarged ? "Heights to scale; copper drawn thicker."
+                                                       : "Heights to scale.",
+                                    .style = theme_style(THEME_NOTE),
+                                    .x = frame->left,
+                                    .y = y});
+    frame->scene->height = y + 4;
     scene_end(frame->scene);
 }
 

@@ -25,18 +25,18 @@ struct text_setter {
 
 /* Named files instead of scanned folders: no font cache is read or written, and a face that
  * somebody adds to the folder changes nothing. */
-static bool add_face(FcConfig *configuration, const char *face, struct error *error) {
-    FcStrList *folders = FcConfigGetFontDirs(configuration);
-    if (folders == NULL)
+static bool add_face(FcConfig *faces, FcConfig *folders, const char *face, struct error *error) {
+    FcStrList *list = FcConfigGetFontDirs(folders);
+    if (list == NULL)
         return error_set(error, ERROR_MEMORY, "out of memory");
     bool found = false;
-    for (const FcChar8 *folder = NULL; !found && (folder = FcStrListNext(folders)) != NULL;) {
+    for (const FcChar8 *folder = NULL; !found && (folder = FcStrListNext(list)) != NULL;) {
         char path[4096];
         int length = snprintf(path, sizeof path, "%s/%s", (const char *)folder, face);
         if (length > 0 && (size_t)length < sizeof path)
-            found = FcConfigAppFontAddFile(configuration, (const FcChar8 *)path) == FcTrue;
+            found = FcConfigAppFontAddFile(faces, (const FcChar8 *)path) == FcTrue;
     }
-    FcStrListDone(folders);
+    FcStrListDone(list);
     if (!found)
         return error_set(error, ERROR_SYSTEM,
                          "the font file %s is missing: install the Debian package fonts-lato",
@@ -44,20 +44,33 @@ static bool add_face(FcConfig *configuration, const char *face, struct error *er
     return true;
 }
 
+/* The configuration only says which folders to look into; the one in use holds the faces and no
+ * folder, so fontconfig has nothing to scan. */
 static bool load_faces(struct text_setter *setter, const char *configuration, struct error *error) {
+    bool ok = false;
+    FcConfig *folders = FcConfigCreate();
     setter->configuration = FcConfigCreate();
-    if (setter->configuration == NULL)
-        return error_set(error, ERROR_MEMORY, "out of memory");
-    if (!FcConfigParseAndLoadFromMemory(setter->configuration, (const FcChar8 *)configuration,
-                                        FcTrue))
-        return error_set(error, ERROR_SYSTEM, "the font configuration cannot be read");
-    for (size_t i = 0; i < sizeof FACES / sizeof FACES[0]; i++)
-        if (!add_face(setter->configuration, FACES[i], error))
-            return false;
-    return true;
+    if (folders == NULL || setter->configuration == NULL) {
+        error_set(error, ERROR_MEMORY, "out of memory");
+        goto out;
+    }
+    if (!FcConfigParseAndLoadFromMemory(folders, (const FcChar8 *)configuration, FcFalse)) {
+        error_set(error, ERROR_SYSTEM, "the font configuration cannot be read");
+        goto out;
+    }
+    ok = true;
+    for (size_t i = 0; ok && i < sizeof FACES / sizeof FACES[0]; i++)
+        ok = add_face(setter->configuration, folders, FACES[i], error);
+out:
+    if (folders != NULL)
+        FcConfigDestroy(folders);
+    return ok;
 }
 
 static bool open_context(struct text_setter *setter, struct error *error) {
+    /* Pango would otherwise read the machine's configuration in a thread of its own. */
+    if (!FcConfigSetCurrent(setter->configuration))
+        return error_set(error, ERROR_MEMORY, "out of memory");
     setter->map = pango_cairo_font_map_new_for_font_type(CAIRO_FONT_TYPE_FT);
     if (setter->map == NULL)
         return error_set(error, ERROR_SYSTEM, "this cairo has no FreeType fonts");

@@ -114,10 +114,13 @@ static bool parse(struct parser *parser, const char *markup, struct error *error
     return true;
 }
 
-/* A value and its unit stay together: no break at a thin space. */
-static void forbid_breaks(struct parser *parser) {
-    static const char THIN[] = "\u2009";
-    const char *plain = parser->plain->str;
+/* Lato's thin space is an eighth of an em, too tight between a value and its unit; its six-per-em
+ * space has the customary width and as many bytes.  No line may break there. */
+static void set_thin_spaces(struct parser *parser) {
+    static const char WRITTEN[] = "\u2009", THIN[] = "\u2006";
+    char *plain = parser->plain->str;
+    for (char *at = strstr(plain, WRITTEN); at != NULL; at = strstr(at, WRITTEN))
+        memcpy(at, THIN, strlen(THIN));
     for (const char *at = strstr(plain, THIN); at != NULL; at = strstr(at + 1, THIN)) {
         PangoAttribute *attribute = pango_attr_allow_breaks_new(FALSE);
         attribute->start_index =
@@ -142,7 +145,7 @@ bool text_markup_parse(const char *markup, struct scene_style style, char **plai
     }
     PangoAttribute *features = pango_attr_font_features_new("tnum=1, lnum=1");
     insert(&parser, features, 0);
-    forbid_breaks(&parser);
+    set_thin_spaces(&parser);
     *attributes = parser.attributes;
     *plain = g_string_free(parser.plain, FALSE);
     return true;

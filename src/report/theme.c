@@ -128,10 +128,11 @@ struct theme_curve theme_curve(size_t index, size_t count) {
     size_t dash = index % (sizeof DASHES / sizeof DASHES[0]);
     struct theme_curve curve = {
         .colour = rgb(RAMP[CHOICE[shown][index % shown]]),
-        .width = 1.35,
         .dash_count = DASHES[dash].count,
         .marker = (enum theme_marker)(index % THEME_MARKERS),
     };
+    /* Lighter inks look thinner. */
+    curve.width = 1.25 + 0.4 * theme_lightness(curve.colour) / 70;
     for (size_t i = 0; i < curve.dash_count; i++)
         curve.dashes[i] = DASHES[dash].lengths[i];
     return curve;
