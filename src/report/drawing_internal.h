@@ -1,0 +1,58 @@
+#ifndef REPORT_DRAWING_INTERNAL_H
+#define REPORT_DRAWING_INTERNAL_H
+
+#include "report/drawing.h"
+#include "report/theme.h"
+
+/* What drawing.c, drawing_dimension.c and drawing_board.c share. */
+
+struct drawing_frame {
+    const struct drawing_options *options;
+    struct text_setter *setter;
+    struct arena *arena;
+    struct scene *scene;
+    struct error *error;
+    double scale;                    /* pt per m */
+    double x0;                       /* pt of x = 0 m */
+    double y0;                       /* pt of y = 0 m */
+    double left, top, right, bottom; /* of the picture, pt */
+    double copper;                   /* pt, the least thickness that copper is drawn with */
+    struct drawing_report report;
+};
+
+double drawing_x(const struct drawing_frame *frame, double x);
+double drawing_y(const struct drawing_frame *frame, double y);
+
+struct scene_style drawing_style(void); /* of labels */
+/* Width of a label; 0 after a failure. */
+double drawing_width(const struct drawing_frame *frame, const char *markup);
+void drawing_label(struct drawing_frame *frame, const char *markup, double x, double y,
+                   enum scene_align align);
+
+/* A rectangle with the role's fill, hatch and edge. */
+void drawing_solid(struct drawing_frame *frame, const struct theme_solid *solid, double x, double y,
+                   double width, double height);
+
+/* ---- drawing_dimension.c ---- */
+
+#define DRAWING_DIMENSION_ROW 13.0
+
+/* "gap 0.3 mm", owned by the arena; "" after a failure. */
+const char *drawing_dimension_text(struct drawing_frame *frame,
+                                   const struct sketch_dimension *dimension);
+
+/* Rows above the copper that the horizontal dimensions need; room right of the picture for the
+ * vertical ones. */
+size_t drawing_dimension_rows(struct drawing_frame *frame, const struct sketch *sketch);
+double drawing_dimension_room(struct drawing_frame *frame, const struct sketch *sketch);
+/* `surface`: y in pt of what lies highest; rows stand above it. */
+void drawing_dimensions(struct drawing_frame *frame, const struct sketch *sketch, double surface);
+
+/* A bar of a round length at most `most` pt long, its right end at x, with its length above. */
+void drawing_scale_bar(struct drawing_frame *frame, double x, double y, double most);
+
+/* A dimension line between two points along x or y with arrows at both ends, inside when there is
+ * room. */
+void drawing_arrows(struct drawing_frame *frame, bool vertical, double from, double to, double at);
+
+#endif
