@@ -29,6 +29,7 @@ enum {
     STUDY_MOST_POINTS = 1000,  /* of one sweep */
     STUDY_MOST_CASES = 200000, /* points x variants of one chapter */
     STUDY_MOST_VARIANTS = 12,
+    STUDY_MOST_RULES = 1000,
 };
 
 /* ---- the document ---- */

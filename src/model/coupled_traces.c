@@ -104,9 +104,9 @@ static bool check(const double *values, struct error *error) {
     if (!has_strip(values))
         return true;
     char strip[40], gap[40];
-    quantity_print(strip, sizeof strip, values[BETWEEN_WIDTH], DIMENSION_LENGTH, 6, QUANTITY_ASCII,
+    quantity_print(strip, sizeof strip, values[BETWEEN_WIDTH], DIMENSION_LENGTH, -6, QUANTITY_ASCII,
                    QUANTITY_MILLIMETRES);
-    quantity_print(gap, sizeof gap, values[GAP], DIMENSION_LENGTH, 6, QUANTITY_ASCII,
+    quantity_print(gap, sizeof gap, values[GAP], DIMENSION_LENGTH, -6, QUANTITY_ASCII,
                    QUANTITY_MILLIMETRES);
     if (!(values[BETWEEN_WIDTH] >= 10e-6))
         return error_set(

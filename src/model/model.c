@@ -48,11 +48,11 @@ bool model_check_input(const struct model_input *input, double value, struct err
     if (value >= input->lowest && value <= input->highest)
         return true;
     char found[64], low[64], high[64];
-    quantity_print(found, sizeof found, value, input->dimension, 6, QUANTITY_ASCII,
+    quantity_print(found, sizeof found, value, input->dimension, -6, QUANTITY_ASCII,
                    QUANTITY_MILLIMETRES);
-    quantity_print(low, sizeof low, input->lowest, input->dimension, 6, QUANTITY_ASCII,
+    quantity_print(low, sizeof low, input->lowest, input->dimension, -6, QUANTITY_ASCII,
                    QUANTITY_MILLIMETRES);
-    quantity_print(high, sizeof high, input->highest, input->dimension, 6, QUANTITY_ASCII,
+    quantity_print(high, sizeof high, input->highest, input->dimension, -6, QUANTITY_ASCII,
                    QUANTITY_MILLIMETRES);
     return error_set(error, ERROR_INPUT, "%s is %s; allowed: %s to %s%s", input->name, found, low,
                      high, input->open ? ", or open" : "");

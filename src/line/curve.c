@@ -1,0 +1,268 @@
+/* Peak search.  With R the integral of the step response S, the response to a ramp of length e is
+ * v(t) = (R(t) - R(t - e)) / e and its slope (S(t) - S(t - e)) / e.
+ *   1. v on the grid (0 .. end, then e .. e + end) and at every front and one edge after it;
+ *   2. cells that by their own and their neighbours' variation could hold more than the best so far
+ *      are cut at fronts, at fronts + e and at the sample of t - e; inside a piece v is smooth and
+ *      an extremum is a zero of its slope. */
+#include "curve.h"
+
+#include <math.h>
+#include <stdint.h>
+#include <string.h>
+
+enum { MOST_CUTS = 24, BLOCK = 256 };
+
+bool curves_build(const struct march *march, const struct fronts *fronts, bool near,
+                  struct arena *arena, struct curve *curves, struct error *error) {
+    size_t samples = march->samples, count = march->count, end = near ? 0 : 1, held = 0;
+    size_t *first = arena_new(arena, samples + 1, size_t, error);
+    struct curve_front *front = arena_new(arena, fronts->count * count, struct curve_front, error);
+    size_t *cell = arena_new(arena, fronts->count, size_t, error);
+    if (first == NULL || front == NULL || cell == NULL)
+        return false;
+    for (size_t f = 0; f < fronts->count; f++) {
+        /* On a sample means: the sample has it, so it lies at the end of the cell before. */
+        double position = fronts->front[f].time / march->step;
+        double before = ceil(position - 1e-6) - 1;
+        cell[f] = fronts->front[f].near != near || before < 0 || before + 1 >= (double)samples
+                      ? SIZE_MAX
+                      : (size_t)before;
+        if (cell[f] != SIZE_MAX)
+            first[cell[f] + 1]++;
+    }
+    for (size_t i = 0; i < samples; i++)
+        first[i + 1] += first[i];
+    held = first[samples];
+    for (size_t f = fronts->count; f-- > 0;) {
+        if (cell[f] == SIZE_MAX)
+            continue;
+        size_t slot = --first[cell[f] + 1];
+        for (size_t k = 0; k < count; k++) {
+            struct curve_front *to = &front[k * held + slot];
+            to->time = fronts->front[f].time;
+            for (size_t p = 0; p < fronts->orders; p++)
+                to->jump[p] = fronts->front[f].voltage[p * count + k];
+        }
+    }
+    /* The countdown left each start one cell late. */
+    memmove(first, first + 1, samples * sizeof *first);
+    first[samples] = held;
+    for (size_t k = 0; k < count; k++)
+        curves[k] = (struct curve){.step = march->step,
+                                   .samples = samples,
+                                   .value = march->value[end] + k * samples,
+                                   .integral = march->integral[end] + k * samples,
+                                   .first = first,
+                                   .front = front + k * held,
+                                   .fronts = held};
+    return true;
+}
+
+static void add_front(const struct curve_front *front, double t, double sign, double *value,
+                      double *integral) {
+    const double *j = front->jump;
+    *value += sign * (j[0] + t * (j[1] + t / 2 * (j[2] + t / 3 * j[3])));
+    *integral += sign * t * (j[0] + t / 2 * (j[1] + t / 3 * (j[2] + t / 4 * j[3])));
+}
+
+static void curve_at(const struct curve *curve, double time, double *value, double *integral) {
+    double h = curve->step, position = time / h;
+    size_t last = curve->samples - 1;
+    *value = *integral = 0;
+    if (time < 0)
+        return;
+    if (position >= (double)last) {
+        *value = curve->value[last];
+        *integral = curve->integral[last] + curve->value[last] * (time - (double)last * h);
+        return;
+    }
+    size_t cell = (size_t)position;
+    double u = position - (double)cell, end = ((double)cell + 1) * h;
+    double s0 = curve->value[cell], s1 = curve->value[cell + 1];
+    double r0 = curve->integral[cell], r1 = curve->integral[cell + 1];
+    for (size_t f = curve->first[cell]; f < curve->first[cell + 1]; f++)
+        add_front(&curve->front[f], end - curve->front[f].time, -1, &s1, &r1);
+    double rise = r1 - r0, bend = h * (s0 + s1) - 2 * rise;
+    *integral = r0 + u * (h * s0 + u * (3 * rise - h * (2 * s0 + s1) + u * bend));
+    *value = s0 + u * (2 * (3 * rise / h - 2 * s0 - s1) + u * 3 * bend / h);
+    for (size_t f = curve->first[cell]; f < curve->first[cell + 1]; f++)
+        if (time >= curve->front[f].time)
+            add_front(&curve->front[f], time - curve->front[f].time, 1, value, integral);
+}
+
+struct response {
+    double value, slope;
+};
+
+static struct response response_at(const struct curve *curve, double edge, double time) {
+    double s1, r1, s0, r0;
+    curve_at(curve, time, &s1, &r1);
+    curve_at(curve, time - edge, &s0, &r0);
+    return (struct response){(r1 - r0) / edge, (s1 - s0) / edge};
+}
+
+double curve_response(const struct curve *curve, double edge, double time) {
+    return response_at(curve, edge, time).value;
+}
+
+static void offer(struct line_peak *peak, double value, double time) {
+    if (fabs(value) > peak->highest)
+        *peak = (struct line_peak){.highest = fabs(value), .time = time};
+}
+
+/* A zero of the slope between two times where its signs differ: regula falsi, the stale end halved
+ * (Illinois). */
+static void offer_extremum(const struct curve *curve, double edge, double low, double high,
+                           double slope_low, double slope_high, struct line_peak *peak) {
+    double width = high - low;
+    for (int round = 0; round < 12 && high - low > 1e-7 * width; round++) {
+        double middle = low + (high - low) * slope_low / (slope_low - slope_high);
+        struct response at = response_at(curve, edge, middle);
+        offer(peak, at.value, middle);
+        if (fabs(at.slope) * curve->step < 1e-9 * peak->highest)
+            return;
+        if ((at.slope > 0) == (slope_low > 0)) {
+            low = middle;
+            slope_low = at.slope;
+            slope_high /= 2;
+        } else {
+            high = middle;
+            slope_high = at.slope;
+            slope_low /= 2;
+        }
+    }
+}
+
+static size_t add_cut(double *cut, size_t cuts, double time, double low, double high) {
+    if (!(time > low && time < high) || cuts >= MOST_CUTS)
+        return cuts;
+    size_t at = cuts;
+    while (at > 0 && cut[at - 1] > time) {
+        cut[at] = cut[at - 1];
+        at--;
+    }
+    cut[at] = time;
+    return cuts + 1;
+}
+
+static size_t add_front_cuts(const struct curve *curve, double from, double shift, double low,
+                             double high, double *cut, size_t cuts) {
+    double position = floor(from / curve->step);
+    for (int c = 0; c < 2; c++) {
+        double cell = position + c;
+        if (cell < 0 || cell + 1 >= (double)curve->samples)
+            continue;
+        size_t i = (size_t)cell;
+        for (size_t f = curve->first[i]; f < curve->first[i + 1]; f++)
+            cuts = add_cut(cut, cuts, curve->front[f].time + shift, low, high);
+    }
+    return cuts;
+}
+
+static void search_cell(const struct curve *curve, double edge, double low, double high,
+                        struct line_peak *peak) {
+    double cut[MOST_CUTS];
+    double h = curve->step, before = ceil((low - edge) / h) * h + edge;
+    size_t cuts = add_cut(cut, 0, before, low, high);
+    cuts = add_front_cuts(curve, low, 0, low, high, cut, cuts);
+    cuts = add_front_cuts(curve, low - edge, edge, low, high, cut, cuts);
+    for (size_t k = 0; k <= cuts; k++) {
+        double from = k == 0 ? low : cut[k - 1], to = k == cuts ? high : cut[k];
+        double inside = 1e-9 * h; /* one-sided slopes */
+        if (to - from <= 4 * inside)
+            continue;
+        struct response a = response_at(curve, edge, from + inside);
+        struct response b = response_at(curve, edge, to - inside);
+        offer(peak, a.value, from);
+        offer(peak, b.value, to);
+        if (a.slope * b.slope < 0)
+            offer_extremum(curve, edge, from + inside, to - inside, a.slope, b.slope, peak);
+    }
+}
+
+/* v at `count` grid times: t_i (falling = false) or t_i + e (falling = true), fronts inside cells
+ * not looked at.  (R(t_i + e) - R(t_i)) and (R(t_i) - R(t_i - e)) share the shifted reading. */
+static void grid_values(const struct curve *curve, double edge, bool falling, size_t start,
+                        size_t count, double *values) {
+    double h = curve->step, shift = (falling ? edge : -edge) / h, whole = floor(shift);
+    double u = shift - whole, last = (double)(curve->samples - 1);
+    double w0 = (1 + 2 * u) * (1 - u) * (1 - u), w1 = u * u * (3 - 2 * u);
+    double d0 = h * u * (1 - u) * (1 - u), d1 = -h * u * u * (1 - u);
+    double sign = falling ? 1 / edge : -1 / edge;
+    for (size_t k = 0; k < count; k++) {
+        double cell = (double)(start + k) + whole, shifted;
+        if (cell < 0)
+            shifted = 0;
+        else if (cell >= last)
+            shifted = curve->integral[curve->samples - 1] +
+                      curve->value[curve->samples - 1] * h * (cell + u - last);
+        else {
+            size_t i = (size_t)cell;
+            shifted = w0 * curve->integral[i] + d0 * curve->value[i] +
+                      w1 * curve->integral[i + 1] + d1 * curve->value[i + 1];
+        }
+        values[k] = sign * (shifted - curve->integral[start + k]);
+    }
+}
+
+typedef void grid_visit(const struct curve *curve, double edge, double offset, size_t start,
+                        size_t count, const double *values, struct line_peak *peak);
+
+static void walk_grid(const struct curve *curve, double edge, bool falling, grid_visit *visit,
+                      struct line_peak *peak) {
+    double values[BLOCK];
+    size_t samples = curve->samples, start = 0;
+    double offset = falling ? edge : 0;
+    if (falling) { /* times up to the last sample were visited without */
+        double skip = floor((double)(samples - 1) - edge / curve->step);
+        start = skip > 0 ? (size_t)skip : 0;
+    }
+    while (start + 1 < samples) {
+        size_t count = samples - start < BLOCK ? samples - start : BLOCK;
+        grid_values(curve, edge, falling, start, count, values);
+        visit(curve, edge, offset, start, count, values, peak);
+        if (start + count == samples)
+            return;
+        start += count - 3; /* overlap: a cell is judged with both neighbours */
+    }
+}
+
+static void visit_coarse(const struct curve *curve, double edge, double offset, size_t start,
+                         size_t count, const double *values, struct line_peak *peak) {
+    (void)edge;
+    size_t best = 0;
+    for (size_t k = 1; k < count; k++)
+        if (fabs(values[k]) > fabs(values[best]))
+            best = k;
+    double time = (double)(start + best) * curve->step + offset;
+    offer(peak, response_at(curve, edge, time).value, time);
+}
+
+static void visit_fine(const struct curve *curve, double edge, double offset, size_t start,
+                       size_t count, const double *values, struct line_peak *peak) {
+    double h = curve->step;
+    for (size_t k = 0; k + 1 < count; k++) {
+        double here = fabs(values[k + 1] - values[k]);
+        double left = k > 0 ? fabs(values[k] - values[k - 1]) : here;
+        double right = k + 2 < count ? fabs(values[k + 2] - values[k + 1]) : here;
+        double highest = fmax(fabs(values[k]), fabs(values[k + 1]));
+        if (highest + fmin(here, fmax(left, right)) + fmax(left, right) / 4 < peak->highest)
+            continue;
+        double low = (double)(start + k) * h + offset;
+        search_cell(curve, edge, low, low + h, peak);
+    }
+}
+
+struct line_peak curve_peak(const struct curve *curve, double edge) {
+    struct line_peak peak = {0};
+    for (size_t f = 0; f < curve->fronts; f++) {
+        double time = curve->front[f].time;
+        offer(&peak, curve_response(curve, edge, time), time);
+        offer(&peak, curve_response(curve, edge, time + edge), time + edge);
+    }
+    walk_grid(curve, edge, false, visit_coarse, &peak);
+    walk_grid(curve, edge, true, visit_coarse, &peak);
+    walk_grid(curve, edge, false, visit_fine, &peak);
+    walk_grid(curve, edge, true, visit_fine, &peak);
+    return peak;
+}

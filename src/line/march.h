@@ -1,0 +1,37 @@
+#ifndef LINE_MARCH_H
+#define LINE_MARCH_H
+
+#include "fronts.h"
+
+/* The step response of all ends on a uniform grid by the method of characteristics (Branin 1967,
+ * for N modes): every mode carries its wave to the other end unchanged after its own delay, the
+ * ends are integrated in time.  Delays are not rounded: the grid divides the fastest mode's delay,
+ * the others are read by cubic interpolation, and the fronts correct both interpolation and
+ * integration, so that everything between them is of fourth order in the step. */
+
+struct march_setup {
+    const struct line_modes *modes;
+    double length;
+    const struct end_system *end[2]; /* near, far */
+    const struct fronts *fronts;
+    double step;       /* s; fastest delay / step is an integer of at least 3 */
+    size_t window;     /* steps over which everything must have come to rest */
+    double rest;       /* ... to this share of its whole range */
+    size_t most_steps; /* give up then */
+    size_t exact_steps; /* > 0: take exactly so many, without looking for rest */
+};
+
+struct march {
+    size_t count;
+    double step;
+    size_t samples;
+    bool at_rest;
+    double *value[2];    /* [count][samples] step response, V, near and far */
+    double *integral[2]; /* [count][samples] its integral, V s */
+};
+
+/* Results and scratch are both taken from `arena`. */
+bool march_run(const struct march_setup *setup, struct arena *arena, struct march *march,
+               struct error *error);
+
+#endif

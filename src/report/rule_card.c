@@ -1,0 +1,219 @@
+/* A rule as a card: what it asks, on which board, over what it was proven, why, and how to check
+ * it. */
+
+#include "pages.h"
+
+#include "words.h"
+
+#include <math.h>
+#include <string.h>
+
+static const char STANDING_NOTE[] = "Valid over uncut ground, for the stated drivers, terminations "
+                                    "and lengths; crosstalk only, no promise on "
+                                    "emission, immunity, electrostatic discharge or insulation.";
+
+enum { CARD_COLUMNS = 6 };
+
+/* ---- over what it was proven ---- */
+
+static bool is_range(const struct study_setting *setting) {
+    return setting->range.to > setting->range.from;
+}
+
+static const char *range_words(struct flow *flow, const struct model_input *input,
+                               const struct study_setting *setting) {
+    if (input->words != NULL)
+        return flow_print(flow, "%s %s or %s", words_name(flow, input->name),
+                          words_input(flow, input, setting->range.from),
+                          words_input(flow, input, setting->range.to));
+    return flow_print(flow, "%s %s", words_name(flow, input->name),
+                      words_range(flow, setting->range, input->dimension));
+}
+
+/* Ranges and tolerances that all variants share; what differs by board is the board's own. */
+static const char *proven_over(struct flow *flow, const struct study_chapter *chapter,
+                               const struct study_rule *rule) {
+    const char *text = "";
+    bool tolerance = false;
+    for (size_t i = 0; i < chapter->model->input_count; i++) {
+        const struct study_setting *setting = &rule->variants[0].settings[i];
+        if (i != rule->find && is_range(setting))
+            text = flow_print(flow, "%s%s%s", text, *text != '\0' ? "; " : "",
+                              range_words(flow, &chapter->model->inputs[i], setting));
+        tolerance = tolerance || setting->minus > 0.0 || setting->plus > 0.0;
+    }
+    const char *found = flow_print(
+        flow, "every %s %s %s", words_name(flow, chapter->model->inputs[rule->find].name),
+        rule->find_smallest ? "from the bound up to" : "from the bound down to",
+        words_value(flow, rule->find_smallest ? rule->within.to : rule->within.from,
+                    chapter->model->inputs[rule->find].dimension));
+    text = flow_print(flow, "%s%s%s", text, *text != '\0' ? "; " : "", found);
+    if (rule->nominal)
+        return flow_print(flow, "%s; nominal boards, tolerances left out on purpose.", text);
+    return flow_print(flow, "%s%s.", text, tolerance ? "; all tolerances of the board" : "");
+}
+
+/* ---- the table of findings ---- */
+
+/* Where the worst case was: only inputs that may vary. */
+static const char *where(struct flow *flow, const struct study_chapter *chapter,
+                         const struct study_rule *rule, const struct study_variant *variant,
+                         const struct guideline_finding *finding) {
+    const char *text = "";
+    for (size_t i = 0; i < chapter->model->input_count; i++) {
+        const struct study_setting *setting = &variant->settings[i];
+        bool varies = i == rule->find || is_range(setting) ||
+                      (!rule->nominal && (setting->minus > 0.0 || setting->plus > 0.0));
+        if (varies)
+            text =
+                flow_print(flow, "%s%s%s %s", text, *text != '\0' ? ", " : "",
+                           words_name(flow, chapter->model->inputs[i].name),
+                           words_input(flow, &chapter->model->inputs[i], finding->worst_inputs[i]));
+    }
+    return text;
+}
+
+static void finding_cells(struct flow *flow, const struct study_chapter *chapter,
+                          const struct guideline_rule *rule, size_t v, const char **cells) {
+    const struct guideline_finding *finding = &rule->findings[v];
+    const struct study_variant *variant = &rule->rule->variants[v];
+    enum dimension dimension = chapter->model->outputs[rule->rule->condition.output].dimension;
+    cells[0] = variant->label != NULL ? flow_escape(flow, variant->label) : "As given";
+    cells[1] = words_finding(flow, rule->rule, chapter, finding);
+    if (finding->status == GUIDELINE_BELOW_FAB || isnan(finding->worst))
+        return;
+    cells[2] = words_value(flow, finding->worst, dimension);
+    cells[3] = words_value(flow, finding->limit, dimension);
+    cells[4] = where(flow, chapter, rule->rule, variant, finding);
+    cells[5] = flow_print(flow, "%zu", finding->solutions);
+}
+
+static struct table_layout *findings(struct flow *flow, const struct study_chapter *chapter,
+                                     const struct guideline_rule *rule, double width) {
+    size_t count = rule->rule->variant_count;
+    struct table_row *rows = arena_new(flow->arena, count, struct table_row, flow->error);
+    struct table_column *columns =
+        arena_new(flow->arena, CARD_COLUMNS, struct table_column, flow->error);
+    struct table_head *heads = arena_new(flow->arena, CARD_COLUMNS, struct table_head, flow->error);
+    struct table_head_row *head = arena_new(flow->arena, 1, struct table_head_row, flow->error);
+    struct table *table = arena_new(flow->arena, 1, struct table, flow->error);
+    if (rows == NULL || columns == NULL || heads == NULL || head == NULL || table == NULL)
+        return NULL;
+    const char *found = words_name(flow, chapter->model->inputs[rule->rule->find].name);
+    const char *titles[CARD_COLUMNS] = {
+        "Board or case", flow_print(flow, "%c%s", found[0] - 32, found + 1),
+        "Worst",         "Limit",
+        "Worst where",   "Solutions"};
+    for (size_t i = 0; i < CARD_COLUMNS; i++)
+        heads[i].text = titles[i];
+    columns[0].most = 90.0;
+    columns[1].most = 110.0;
+    columns[4].most = 165.0;
+    columns[5].align = TABLE_RIGHT;
+    for (size_t v = 0; v < count; v++) {
+        const char **cells = arena_new(flow->arena, CARD_COLUMNS, const char *, flow->error);
+        if (cells == NULL)
+            return NULL;
+        finding_cells(flow, chapter, rule, v, cells);
+        rows[v] = (struct table_row){.cells = cells};
+    }
+    *head = (struct table_head_row){heads, CARD_COLUMNS};
+    *table = (struct table){.name = rule->rule->id,
+                            .columns = columns,
+                            .column_count = CARD_COLUMNS,
+                            .heads = head,
+                            .head_count = 1,
+                            .rows = rows,
+                            .row_count = count,
+                            .stretch = true};
+    return table_layout(table, width, flow->setter, flow->arena, flow->error);
+}
+
+/* ---- the card ---- */
+
+struct line {
+    const char *name, *text;
+};
+
+enum { MOST_LINES = 6 };
+
+static size_t lines_of(struct flow *flow, const struct study_chapter *chapter,
+                       const struct study_rule *rule, struct line *lines) {
+    size_t count = 0;
+    lines[count++] =
+        (struct line){"So that", words_condition(flow, rule, chapter, &rule->variants[0])};
+    if (rule->applies_to != NULL)
+        lines[count++] = (struct line){"Applies to", flow_escape(flow, rule->applies_to)};
+    lines[count++] = (struct line){"Proven over", proven_over(flow, chapter, rule)};
+    if (rule->why != NULL)
+        lines[count++] = (struct line){"Why", flow_escape(flow, rule->why)};
+    if (rule->check != NULL)
+        lines[count++] = (struct line){"Check", flow_escape(flow, rule->check)};
+    lines[count++] = (struct line){"Standing", STANDING_NOTE};
+    return count;
+}
+
+static const double INSET = 10.0, NAME_WIDTH = 58.0, PAD = 8.0;
+
+static double head_height(void) {
+    return theme_leading(THEME_SECTION) + 2.0;
+}
+
+static void card_head(struct flow *flow, const struct study_chapter *chapter,
+                      const struct study_rule *rule, double x, double y, double width) {
+    const char *title = rule->title != NULL ? rule->title : chapter->title;
+    const char *left =
+        flow_print(flow, "%s   %s", flow_escape(flow, rule->id), flow_escape(flow, title));
+    flow_text_box(flow, THEME_SECTION, left, x, y, width - 60.0);
+    const char *strength = words_strength(rule->strength);
+    double strength_width =
+        text_width(flow->setter, strength, theme_style(THEME_STRONG), flow->error);
+    flow_text_box(flow, THEME_STRONG, strength, x + width - strength_width, y + 2.0, 0.0);
+}
+
+static double lines_height(struct flow *flow, const struct line *lines, size_t count,
+                           double width) {
+    double height = 0.0;
+    for (size_t i = 0; i < count; i++)
+        height +=
+            flow_text_height(flow, i + 1 == count ? THEME_NOTE : THEME_BODY, lines[i].text, width) +
+            2.0;
+    return height;
+}
+
+void pages_rule_card(struct flow *flow, const struct guideline_chapter *chapter,
+                     const struct guideline_rule *rule) {
+    double x = flow->page.left + INSET, width = flow->page.right - x;
+    struct line lines[MOST_LINES];
+    size_t line_count = lines_of(flow, chapter->chapter, rule->rule, lines);
+    struct table_layout *layout = findings(flow, chapter->chapter, rule, width);
+    if (layout == NULL || flow_failed(flow))
+        return;
+    double table = table_height(layout, 0, rule->rule->variant_count);
+    double height = 2.0 * PAD + head_height() + table + 6.0 +
+                    lines_height(flow, lines, line_count, width - NAME_WIDTH);
+    flow_gap(flow, 14.0);
+    flow_need(flow, height);
+    if (flow_failed(flow))
+        return;
+    flow_entry(flow, 2,
+               flow_print(flow, "%s %s", rule->rule->id,
+                          rule->rule->title != NULL ? rule->rule->title : ""),
+               pages_destination(flow, "rule", rule->rule->id));
+    double top = flow->y;
+    scene_rectangle(flow->scene, flow->page.left, top, 3.0, height, theme_colour(THEME_ACCENT));
+    flow->y += PAD;
+    card_head(flow, chapter->chapter, rule->rule, x, flow->y, width);
+    flow->y += head_height();
+    table_draw(layout, 0, rule->rule->variant_count, flow->scene, x, flow->y);
+    flow->y += table + 6.0;
+    for (size_t i = 0; i < line_count; i++) {
+        enum theme_text style = i + 1 == line_count ? THEME_NOTE : THEME_BODY;
+        flow_text_box(flow, THEME_NOTE, lines[i].name, x,
+                      flow->y + (style == THEME_BODY ? 1.0 : 0.0), NAME_WIDTH);
+        flow->y +=
+            flow_text_box(flow, style, lines[i].text, x + NAME_WIDTH, flow->y, width - NAME_WIDTH) +
+            2.0;
+    }
+    flow->y = top + height;
+}

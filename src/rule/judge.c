@@ -1,0 +1,67 @@
+#include "judge.h"
+
+#include <math.h>
+#include <string.h>
+
+/* Everything as in the case judged, but on the other board, at nominal values. */
+static void reference_inputs(const struct judge *judge, const double *inputs, double *reference) {
+    const struct model *model = judge->solver->model;
+    memcpy(reference, inputs, model->input_count * sizeof *inputs);
+    for (size_t i = judge->region->range_count; i < judge->region->axis_count; i++)
+        reference[judge->region->axes[i].input] = judge->region->axes[i].nominal;
+    static const char *const board[] = {"height", "thickness", "dk"};
+    for (size_t i = 0; i < sizeof board / sizeof *board; i++) {
+        size_t input = model_input_index(model, board[i]);
+        if (input < model->input_count)
+            reference[input] = NAN;
+    }
+    study_apply_stackup(judge->reference->stackup, model, reference);
+    if (judge->reference->kept == STUDY_KEEP_IMPEDANCE) {
+        static const char *const widths[] = {"width", "victim_width"};
+        for (size_t i = 0; i < 2; i++) {
+            size_t input = model_input_index(model, widths[i]);
+            if (input < model->input_count)
+                reference[input] = judge->reference_width;
+        }
+    }
+    for (size_t i = 0; i < model->input_count; i++)
+        if (!isnan(judge->reference->values[i]))
+            reference[i] = judge->reference->values[i];
+}
+
+static bool limit_for(const struct judge *judge, const double *inputs, double *limit,
+                      double *uncertain, struct error *error) {
+    *limit = judge->limit;
+    *uncertain = 0.0;
+    if (judge->reference == NULL)
+        return true;
+    double reference[MODEL_MOST_INPUTS];
+    reference_inputs(judge, inputs, reference);
+    const struct solver_case *solved = solver_ask(judge->solver, reference, error);
+    if (solved == NULL)
+        return error_in(error, "reference board");
+    *limit = solved->outputs[judge->output];
+    *uncertain = solved->errors[judge->output];
+    return true;
+}
+
+bool judge_case(const struct judge *judge, const double *inputs, struct verdict *verdict,
+                struct error *error) {
+    const struct solver_case *solved = solver_ask(judge->solver, inputs, error);
+    double limit, uncertain;
+    if (solved == NULL)
+        return false;
+    double value = solved->outputs[judge->output], own = solved->errors[judge->output];
+    if (judge->curve) {
+        double badness = isnan(value) ? -INFINITY : judge->at_most ? value : -value;
+        *verdict = (struct verdict){badness, value, NAN, own, solved->flags};
+        return true;
+    }
+    if (!limit_for(judge, inputs, &limit, &uncertain, error))
+        return false;
+    double beyond = judge->at_most ? value - limit : limit - value;
+    double scale = fmax(fabs(limit), 1e-30);
+    double badness = isnan(value) || isnan(limit) ? INFINITY : (beyond + own + uncertain) / scale;
+    *verdict = (struct verdict){badness, value, limit, own, solved->flags};
+    return true;
+}

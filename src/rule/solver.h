@@ -1,0 +1,40 @@
+#ifndef RULE_SOLVER_H
+#define RULE_SOLVER_H
+
+#include "groundrules/model.h"
+
+/* One thread's way to ask a model for many cases: solved fields come from the shared memo, the last
+ * prepared state and the last line response are kept, and no case is solved twice while the solver
+ * lives. */
+
+struct solver {
+    const struct model *model;
+    struct model_memo *memo; /* shared, borrowed */
+    struct model_worker *worker;
+    struct arena *arena; /* owns the store */
+    struct solver_case **buckets;
+    size_t asked, solved;
+    double prepared[MODEL_MOST_PREPARED];
+    double prepared_for[MODEL_MOST_INPUTS];
+    bool has_prepared;
+};
+
+struct solver_case {
+    const double *inputs;  /* [input_count] */
+    const double *outputs; /* [output_count] */
+    const double *errors;  /* [output_count], absolute */
+    unsigned flags;
+    struct solver_case *next;
+};
+
+bool solver_start(struct solver *solver, const struct model *model, struct model_memo *memo,
+                  struct error *error);
+/* Takes a solver that was zeroed and never started, too. */
+void solver_end(struct solver *solver);
+
+/* Inputs that are NAN take their standard or same_as value.  NULL on failure: the message names the inputs.  Lives as long as the
+ * solver. */
+const struct solver_case *solver_ask(struct solver *solver, const double *inputs,
+                                     struct error *error);
+
+#endif

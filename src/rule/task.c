@@ -1,0 +1,176 @@
+#include "task.h"
+
+#include "find.h"
+
+#include <math.h>
+#include <string.h>
+
+/* ---- a point of the curves ---- */
+
+struct band {
+    double low, high;
+};
+
+/* The worst case's own ranges at every corner of the tolerances. */
+static bool band_of(struct solver *solver, const struct region *tolerant, const struct worst *worst,
+                    size_t output, struct band *band, struct error *error) {
+    double inputs[MODEL_MOST_INPUTS];
+    size_t count = tolerant->axis_count - tolerant->range_count;
+    memcpy(inputs, worst->inputs, sizeof inputs);
+    band->low = band->high = worst->verdict.value;
+    for (size_t corner = 0; count > 0 && corner < (size_t)1 << count; corner++) {
+        for (size_t i = 0; i < count; i++) {
+            const struct region_axis *axis = &tolerant->axes[tolerant->range_count + i];
+            inputs[axis->input] = (corner >> i & 1u) != 0 ? axis->high : axis->low;
+        }
+        const struct solver_case *solved = solver_ask(solver, inputs, error);
+        if (solved == NULL)
+            return false;
+        band->low = fmin(band->low, solved->outputs[output]);
+        band->high = fmax(band->high, solved->outputs[output]);
+    }
+    return true;
+}
+
+static bool point(struct task *task, struct solver *solver) {
+    const struct study_chapter *chapter = task->chapter->chapter;
+    const struct study_variant *variant = &chapter->variants[task->variant];
+    size_t varied = chapter->vary.input, each = task->chapter->curve_count / chapter->variant_count;
+    struct region nominal, tolerant;
+    region_of(chapter->model, variant, varied, true, &nominal);
+    region_of(chapter->model, variant, varied, false, &tolerant);
+    nominal.base[varied] = tolerant.base[varied] = chapter->vary.points[task->index];
+    for (size_t o = 0; o < each; o++) {
+        const struct guideline_curve *curve = &task->chapter->curves[task->variant * each + o];
+        const struct model_output *output = &chapter->model->outputs[curve->output];
+        struct judge judge = {.solver = solver,
+                              .region = &nominal,
+                              .output = curve->output,
+                              .at_most = output->worse != MODEL_LOWER_IS_WORSE,
+                              .curve = true};
+        struct worst worst;
+        struct band band;
+        if (!worst_of(&judge, &nominal, WORST_QUICK, &worst, &task->error) ||
+            !band_of(solver, &tolerant, &worst, curve->output, &band, &task->error))
+            return false;
+        /* The arrays were made for this: each task writes its own place. */
+        ((double *)curve->y)[task->index] = worst.verdict.value;
+        ((double *)curve->low)[task->index] = band.low;
+        ((double *)curve->high)[task->index] = band.high;
+        ((unsigned *)curve->flags)[task->index] = worst.verdict.flags;
+        task->relative_error[o] =
+            worst.verdict.value != 0.0 ? fabs(worst.verdict.error / worst.verdict.value) : 0.0;
+    }
+    return true;
+}
+
+/* ---- a rule ---- */
+
+static double budget_of(const struct study_rule *rule, const struct study_variant *variant) {
+    if (rule->condition.against == STUDY_BUDGET && variant->victim != NULL)
+        return variant->victim->noise_margin * variant->victim->share;
+    return rule->condition.limit;
+}
+
+static bool impedance_at(struct solver *solver, const double *inputs, double width,
+                         double *impedance, struct error *error) {
+    double tried[MODEL_MOST_INPUTS];
+    const struct model *model = solver->model;
+    size_t own = model_input_index(model, "width"),
+           victim = model_input_index(model, "victim_width");
+    memcpy(tried, inputs, sizeof tried);
+    tried[own] = width;
+    if (victim < model->input_count)
+        tried[victim] = width;
+    const struct solver_case *solved = solver_ask(solver, tried, error);
+    if (solved == NULL)
+        return false;
+    *impedance = solved->outputs[model_output_index(model, "impedance")];
+    return true;
+}
+
+/* The width on the judged board whose impedance is that of the variant's width on the reference
+ * board.  Impedance falls steadily with width, so bisection cannot miss it. */
+static bool keep_impedance(struct judge *judge, struct region *region, struct error *error) {
+    struct solver *solver = judge->solver;
+    const struct model *model = solver->model;
+    size_t own = model_input_index(model, "width"),
+           victim = model_input_index(model, "victim_width");
+    double other[MODEL_MOST_INPUTS], wanted, got;
+    if (own >= model->input_count || model_output_index(model, "impedance") >= model->output_count)
+        return error_set(error, ERROR_INPUT, "%s has no width and impedance to keep", model->name);
+    memcpy(other, region->base, sizeof other);
+    for (size_t i = 0; i < model->input_count; i++)
+        if (strcmp(model->inputs[i].name, "height") == 0 ||
+            strcmp(model->inputs[i].name, "thickness") == 0 ||
+            strcmp(model->inputs[i].name, "dk") == 0)
+            other[i] = NAN;
+    study_apply_stackup(judge->reference->stackup, model, other);
+    for (size_t i = 0; i < model->input_count; i++)
+        if (!isnan(judge->reference->values[i]))
+            other[i] = judge->reference->values[i];
+    judge->reference_width = other[own];
+    if (!impedance_at(solver, other, other[own], &wanted, error))
+        return false;
+    double low = model->inputs[own].lowest, high = model->inputs[own].highest;
+    for (int step = 0; step < 50; step++) {
+        double middle = sqrt(low * high);
+        if (!impedance_at(solver, region->base, middle, &got, error))
+            return false;
+        if (got > wanted)
+            low = middle;
+        else
+            high = middle;
+    }
+    region->base[own] = sqrt(low * high);
+    if (victim < model->input_count)
+        region->base[victim] = region->base[own];
+    return true;
+}
+
+static bool find(struct task *task, struct solver *solver, struct region *region,
+                 struct guideline_finding *finding) {
+    const struct study_rule *rule = task->rule->rule;
+    const struct study_variant *variant = &rule->variants[task->variant];
+    struct judge judge = {.solver = solver,
+                          .region = region,
+                          .output = rule->condition.output,
+                          .at_most = rule->condition.at_most,
+                          .limit = budget_of(rule, variant)};
+    region->base[rule->find] = rule->find_smallest ? rule->within.to : rule->within.from;
+    if (rule->condition.against == STUDY_REFERENCE) {
+        judge.reference = &rule->reference;
+        if (rule->reference.kept == STUDY_KEEP_IMPEDANCE &&
+            !keep_impedance(&judge, region, &task->error))
+            return false;
+    }
+    return find_bound(rule, variant, &judge, region, finding, &task->error);
+}
+
+static bool rule_or_cell(struct task *task, struct solver *solver) {
+    const struct study_rule *rule = task->rule->rule;
+    struct region region;
+    region_of(solver->model, &rule->variants[task->variant], rule->find, rule->nominal, &region);
+    if (task->kind == TASK_RULE)
+        return find(task, solver, &region,
+                    (struct guideline_finding *)&task->rule->findings[task->variant]);
+    size_t columns = rule->columns.count > 0 ? rule->columns.count : 1;
+    region_restrict(&region, rule->rows.input, rule->rows.ranges[task->index / columns]);
+    if (rule->columns.count > 0)
+        region_restrict(&region, rule->columns.input, rule->columns.ranges[task->index % columns]);
+    size_t place = task->variant * rule->rows.count * columns + task->index;
+    return find(task, solver, &region, (struct guideline_finding *)&task->rule->cells[place]);
+}
+
+void task_run(struct task *task, struct model_memo *memo) {
+    struct solver solver;
+    if (!solver_start(&solver, task->chapter->chapter->model, memo, &task->error))
+        return;
+    if (task->kind == TASK_POINT)
+        point(task, &solver);
+    else if (!rule_or_cell(task, &solver))
+        error_in(&task->error, "rule %s", task->rule->rule->id);
+    task->asked = solver.asked;
+    task->solved = solver.solved;
+    solver_end(&solver);
+}

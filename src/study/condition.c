@@ -1,0 +1,122 @@
+#include "rule.h"
+
+#include <stdint.h>
+#include <string.h>
+
+struct parts {
+    const char *output;
+    bool at_most;
+    const char *against;
+};
+
+static char *trimmed(const struct reader *reader, const char *from, const char *to) {
+    while (from < to && *from == ' ')
+        from++;
+    while (to > from && to[-1] == ' ')
+        to--;
+    return arena_copy_length(reader->arena, from, (size_t)(to - from), reader->error);
+}
+
+static const char form[] =
+    "expected \"OUTPUT <= VALUE\" or \"OUTPUT >= VALUE\"; in place of the value, \"budget\" or "
+    "\"reference\"";
+
+static bool split(const struct reader *reader, const struct node *node, struct parts *parts) {
+    static const struct {
+        const char *sign;
+        bool at_most;
+    } signs[] = {{"<=", true}, {">=", false}, {"\xE2\x89\xA4", true}, {"\xE2\x89\xA5", false}};
+    for (size_t i = 0; i < sizeof signs / sizeof signs[0]; i++) {
+        const char *sign = strstr(node->text, signs[i].sign);
+        if (sign == NULL)
+            continue;
+        const char *rest = sign + strlen(signs[i].sign);
+        parts->at_most = signs[i].at_most;
+        parts->output = trimmed(reader, node->text, sign);
+        parts->against = trimmed(reader, rest, rest + strlen(rest));
+        if (parts->output == NULL || parts->against == NULL)
+            return false;
+        if (parts->output[0] == '\0' || parts->against[0] == '\0')
+            break;
+        return true;
+    }
+    return reader_refuse(reader, node, "\"%s\" is no condition; %s", reader_shown(reader, node),
+                         form);
+}
+
+static bool check_budget(const struct reader *reader, const struct node *node,
+                         const struct model_output *output, const struct rule_draft *rule) {
+    if (output->dimension != DIMENSION_VOLTAGE)
+        return reader_refuse(reader, node, "a budget is a voltage, %s is %s", output->name,
+                             dimension_name(output->dimension));
+    if (!rule->rule.condition.at_most)
+        return reader_refuse(reader, node, "a budget is not to be exceeded: write \"%s <= budget\"",
+                             output->name);
+    for (size_t i = 0; i < rule->variant_count; i++) {
+        const struct study_signal *victim = rule->variants[i].victim;
+        if (victim == NULL)
+            return reader_refuse(reader, node,
+                                 "a budget needs a \"victim\" in \"given\" or \"compare\"");
+        if (!victim->is_victim)
+            return reader_refuse(reader, node,
+                                 "the signal \"%s\" has no \"victim\" with a noise margin and a "
+                                 "share, so it has no budget",
+                                 victim->id);
+    }
+    return true;
+}
+
+static bool is_signed(enum dimension dimension) {
+    return dimension == DIMENSION_LEVEL || dimension == DIMENSION_SLOWNESS ||
+           dimension == DIMENSION_ATTENUATION || dimension == DIMENSION_NUMBER;
+}
+
+static bool read_constant(const struct reader *reader, const struct node *node,
+                          const struct model_output *output, const char *text, double *limit) {
+    struct error error = {0};
+    struct quantity quantity;
+    if (!quantity_parse(text, output->dimension, &quantity, &error))
+        return reader_refuse(reader, node, "%s; or \"budget\" or \"reference\"", error.message);
+    if (quantity.minus > 0 || quantity.plus > 0)
+        return reader_refuse(reader, node, "\"%s\": no tolerance is accepted here", text);
+    if (!(quantity.value < 1e30) || (!is_signed(output->dimension) && !(quantity.value > 0)))
+        return reader_refuse(reader, node,
+                             "%s can never meet \"%s\"; the limit must be above zero "
+                             "and finite",
+                             output->name, reader_shown(reader, node));
+    *limit = quantity.value;
+    return true;
+}
+
+bool rule_read_condition(const struct reader *reader, const struct draft *draft,
+                         struct rule_draft *rule) {
+    const struct node *node = tree_get(rule->node, "so_that");
+    const struct node *reference = tree_get(rule->node, "reference");
+    const struct model *model = draft->chapter.model;
+    struct study_condition *condition = &rule->rule.condition;
+    struct parts parts = {0};
+    if (node == NULL || !split(reader, node, &parts))
+        return false;
+    condition->text = node->text;
+    condition->at_most = parts.at_most;
+    condition->output = given_output_word(reader, node, parts.output, model);
+    if (condition->output == SIZE_MAX)
+        return false;
+    const struct model_output *output = &model->outputs[condition->output];
+    if (strcmp(parts.against, "reference") == 0) {
+        condition->against = STUDY_REFERENCE;
+        return reference != NULL ||
+               reader_refuse(reader, node, "\"<= reference\" needs a \"reference\" in the rule");
+    }
+    if (reference != NULL)
+        reader_refuse_key(reader, reference,
+                          "the condition does not speak of the reference; write \"%s %s "
+                          "reference\" or leave it out",
+                          output->name, parts.at_most ? "<=" : ">=");
+    if (strcmp(parts.against, "budget") == 0) {
+        condition->against = STUDY_BUDGET;
+        return check_budget(reader, node, output, rule);
+    }
+    condition->against = STUDY_CONSTANT;
+    return read_constant(reader, node, output, parts.against, &condition->limit);
+}
