@@ -196,7 +196,7 @@ void pages_rule_card(struct flow *flow, const struct guideline_chapter *chapter,
     flow_need(flow, height);
     if (flow_failed(flow))
         return;
-    flow_entry(flow, 2,
+    flow_entry(flow, 1,
                flow_print(flow, "%s %s", rule->rule->id,
                           rule->rule->title != NULL ? rule->rule->title : ""),
                pages_destination(flow, "rule", rule->rule->id));

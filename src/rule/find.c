@@ -78,8 +78,8 @@ static bool climb_hump(const struct finder *finder, size_t i, long *top, struct 
     while (labs(b - a) > 2) {
         long left = *top - (*top - a) / 2, right = *top + (b - *top) / 2;
         struct worst at_left, at_right;
-        if (!worst_at(finder, left, WORST_QUICK, &at_left, error) ||
-            !worst_at(finder, right, WORST_QUICK, &at_right, error))
+        if (!worst_at(finder, left, WORST_PROBE, &at_left, error) ||
+            !worst_at(finder, right, WORST_PROBE, &at_right, error))
             return false;
         if (left != *top && at_left.verdict.badness > worst->verdict.badness) {
             b = *top, *top = left, *worst = at_left;
@@ -100,7 +100,7 @@ static bool first_failure(struct finder *finder, long *good, long *bad, struct e
     const double near_limit = -0.25;
     *good = *bad = finder->first;
     for (size_t i = 0; i < finder->count; i++) {
-        if (!worst_at(finder, finder->samples[i], WORST_QUICK, &finder->worst[i], error))
+        if (!worst_at(finder, finder->samples[i], WORST_PROBE, &finder->worst[i], error))
             return false;
         if (i >= 2 && finder->worst[i - 1].verdict.badness > near_limit &&
             finder->worst[i - 1].verdict.badness >= finder->worst[i - 2].verdict.badness &&
@@ -128,7 +128,7 @@ static bool bisect(const struct finder *finder, long *good, long bad, struct err
     while (labs(bad - *good) > 1) {
         long middle = *good + (bad - *good) / 2;
         struct worst worst;
-        if (!worst_at(finder, middle, WORST_QUICK, &worst, error))
+        if (!worst_at(finder, middle, WORST_PROBE, &worst, error))
             return false;
         if (holds(&worst))
             *good = middle;
@@ -158,8 +158,11 @@ static bool prove(const struct finder *finder, long bound, struct worst *worst, 
         struct worst there;
         if (!permitted)
             continue;
-        enum worst_effort effort =
-            i < 3 || finder->worst[i - 3].verdict.badness > -0.5 ? WORST_FULL : WORST_QUICK;
+        /* Samples far from the limit were judged on the way in. */
+        bool near = i < 3 || finder->worst[i - 3].verdict.badness > -0.15;
+        if (!near && finder->worst[i - 3].verdict.badness < worst->verdict.badness)
+            continue;
+        enum worst_effort effort = i == 0 || (i >= 3 && near) ? WORST_FULL : WORST_PROBE;
         if (!worst_at(finder, at, effort, &there, error))
             return false;
         if (there.verdict.badness > worst->verdict.badness)
@@ -247,7 +250,7 @@ static bool answer(struct finder *finder, struct guideline_finding *finding, str
     if (finding->status == GUIDELINE_MET_EVERYWHERE)
         return true;
     struct worst nearest;
-    if (!worst_at(finder, good + finder->inward, WORST_QUICK, &nearest, error))
+    if (!worst_at(finder, good + finder->inward, WORST_PROBE, &nearest, error))
         return false;
     finding->nearest = nearest.verdict.value;
     return true;

@@ -50,7 +50,7 @@ static bool point(struct task *task, struct solver *solver) {
                               .curve = true};
         struct worst worst;
         struct band band;
-        if (!worst_of(&judge, &nominal, WORST_QUICK, &worst, &task->error) ||
+        if (!worst_of(&judge, &nominal, WORST_PROBE, &worst, &task->error) ||
             !band_of(solver, &tolerant, &worst, curve->output, &band, &task->error))
             return false;
         /* The arrays were made for this: each task writes its own place. */

@@ -20,30 +20,45 @@ struct search {
     const struct judge *judge;
     const struct region *region;
     size_t samples[MODEL_MOST_INPUTS]; /* per range axis */
+    double low[MODEL_MOST_INPUTS];     /* where sampling starts */
     struct start starts[MOST_STARTS];
     size_t start_count, most_starts;
+    bool full;
 };
 
-static size_t samples_for(const struct region *region, const struct region_axis *axis,
-                          enum worst_effort effort) {
+static bool is_named(const struct region *region, const struct region_axis *axis,
+                     const char *name) {
+    return strcmp(region->model->inputs[axis->input].name, name) == 0;
+}
+
+/* A run a twelfth as long couples at most about a twelfth as much while it is short against the
+ * edge, and costs the most to solve (its bounces are the finest): a probe leaves such runs to the
+ * proof. */
+static double sample_from(const struct region *region, const struct region_axis *axis, bool full) {
+    if (full || !is_named(region, axis, "length"))
+        return axis->low;
+    return fmax(axis->low, axis->high / 12.0);
+}
+
+static size_t samples_for(const struct region *region, const struct region_axis *axis, double low,
+                          bool full) {
     if (axis->kind == REGION_CHOICE)
         return (size_t)(axis->high - axis->low) + 1;
-    const char *name = region->model->inputs[axis->input].name;
-    double spread = axis->low > 0.0 ? log2(axis->high / axis->low) : 3.0;
+    double spread = low > 0.0 ? log2(axis->high / low) : 3.0;
     /* Crosstalk is not monotone in length and edge; in resistances it bends gently. */
-    bool wavy =
-        strcmp(name, "length") == 0 || strcmp(name, "edge") == 0 || strcmp(name, "gap") == 0;
-    size_t count = wavy ? 2 + (size_t)ceil(1.5 * spread) : 2;
-    if (effort == WORST_FULL)
-        count = 2 * count - 1;
-    return count < 2 ? 2 : count > MOST_SAMPLES ? MOST_SAMPLES : count;
+    bool wavy = is_named(region, axis, "length") || is_named(region, axis, "edge") ||
+                is_named(region, axis, "gap");
+    size_t count = wavy ? 2 + (size_t)ceil((full ? 1.3 : 0.7) * spread) : full ? 3 : 2;
+    return count > MOST_SAMPLES ? MOST_SAMPLES : count;
 }
 
 /* Too many ranges at once: thin out the finest axis until the scan is payable. */
-static void plan(struct search *search, enum worst_effort effort) {
+static void plan(struct search *search) {
     size_t total = 1;
     for (size_t i = 0; i < search->region->range_count; i++) {
-        search->samples[i] = samples_for(search->region, &search->region->axes[i], effort);
+        const struct region_axis *axis = &search->region->axes[i];
+        search->low[i] = sample_from(search->region, axis, search->full);
+        search->samples[i] = samples_for(search->region, axis, search->low[i], search->full);
         total *= search->samples[i];
     }
     while (total > MOST_SCAN) {
@@ -94,6 +109,12 @@ static void offer(struct search *search, const size_t *at, const struct worst *c
     search->start_count = last + 1;
 }
 
+static double sample(const struct search *search, size_t i, size_t at) {
+    struct region_axis axis = search->region->axes[i];
+    axis.low = search->low[i];
+    return region_sample(&axis, at, search->samples[i]);
+}
+
 static bool scan(struct search *search, struct error *error) {
     const struct region *region = search->region;
     size_t at[MODEL_MOST_INPUTS] = {0};
@@ -101,8 +122,7 @@ static bool scan(struct search *search, struct error *error) {
     memcpy(candidate.inputs, region->base, sizeof candidate.inputs);
     for (;;) {
         for (size_t i = 0; i < region->range_count; i++)
-            candidate.inputs[region->axes[i].input] =
-                region_sample(&region->axes[i], at[i], search->samples[i]);
+            candidate.inputs[region->axes[i].input] = sample(search, i, at[i]);
         if (!judge_case(search->judge, candidate.inputs, &candidate.verdict, error))
             return false;
         offer(search, at, &candidate);
@@ -202,9 +222,10 @@ static bool climb_axis(const struct search *search, struct worst *worst, size_t 
 }
 
 static bool climb(const struct search *search, struct worst *worst, struct error *error) {
-    for (int round = 0; round < ROUNDS; round++) {
+    size_t axes = search->full ? search->region->axis_count : search->region->range_count;
+    for (int round = 0; round < (search->full ? ROUNDS : 1); round++) {
         double before = worst->verdict.badness;
-        for (size_t i = 0; i < search->region->axis_count; i++)
+        for (size_t i = 0; i < axes; i++)
             if (search->region->axes[i].kind != REGION_CHOICE &&
                 !climb_axis(search, worst, i, error))
                 return false;
@@ -216,9 +237,9 @@ static bool climb(const struct search *search, struct worst *worst, struct error
 
 bool worst_of(const struct judge *judge, const struct region *region, enum worst_effort effort,
               struct worst *worst, struct error *error) {
-    struct search search = {
-        .judge = judge, .region = region, .most_starts = effort == WORST_FULL ? 6 : 2};
-    plan(&search, effort);
+    struct search search = {.judge = judge, .region = region, .full = effort == WORST_FULL};
+    search.most_starts = search.full ? 5 : 2;
+    plan(&search);
     if (!scan(&search, error))
         return false;
     for (size_t i = 0; i < search.start_count; i++) {

@@ -8,8 +8,8 @@
  * of their neighbours. */
 
 enum worst_effort {
-    WORST_QUICK, /* to find where a bound lies */
-    WORST_FULL,  /* to prove it: twice the samples, more starts */
+    WORST_PROBE, /* to see where a bound may lie, and for curves */
+    WORST_FULL,  /* to prove it: finer samples, more starts, tolerances searched inside their ends too */
 };
 
 struct worst {
