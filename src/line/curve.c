@@ -52,6 +52,7 @@ bool curves_build(const struct march *march, const struct fronts *fronts, bool n
                                    .samples = samples,
                                    .value = march->value[end] + k * samples,
                                    .integral = march->integral[end] + k * samples,
+                                   .final = march->final[end][k],
                                    .first = first,
                                    .front = front + k * held,
                                    .fronts = held};
@@ -72,8 +73,8 @@ static void curve_at(const struct curve *curve, double time, double *value, doub
     if (time < 0)
         return;
     if (position >= (double)last) {
-        *value = curve->value[last];
-        *integral = curve->integral[last] + curve->value[last] * (time - (double)last * h);
+        *value = curve->final;
+        *integral = curve->integral[last] + curve->final * (time - (double)last * h);
         return;
     }
     size_t cell = (size_t)position;
@@ -195,7 +196,7 @@ static void grid_values(const struct curve *curve, double edge, bool falling, si
             shifted = 0;
         else if (cell >= last)
             shifted = curve->integral[curve->samples - 1] +
-                      curve->value[curve->samples - 1] * h * (cell + u - last);
+                      curve->final * h * (cell + u - last);
         else {
             size_t i = (size_t)cell;
             shifted = w0 * curve->integral[i] + d0 * curve->value[i] +

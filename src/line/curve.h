@@ -16,6 +16,7 @@ struct curve {
     double step;
     size_t samples;
     const double *value, *integral; /* [samples] */
+    double final;                   /* V, after the last sample */
     const size_t *first;            /* [samples + 1]: fronts of cell i are first[i] .. first[i+1]-1 */
     const struct curve_front *front;
     size_t fronts;

@@ -120,7 +120,9 @@ static void scatter(const struct lattice *lattice, double emf, struct front *fro
 }
 
 /* Largest jump, derivatives weighed over `scale`.  Late fronts of capacitive ends oscillate faster
- * and faster; once their power series has no use over `scale` they are no longer followed. */
+ * and faster; once the last term of their power series says that it no longer converges within
+ * `scale` they are left to the grid, which blurs them within a step: a wrong series does more harm
+ * than none. */
 static double strength(const struct lattice *lattice, const double *jumps) {
     double largest[FRONT_ORDERS] = {0}, factor = 1, best = 0;
     for (size_t p = 0; p < lattice->orders; p++) {
@@ -131,7 +133,8 @@ static double strength(const struct lattice *lattice, const double *jumps) {
         best = fmax(best, largest[p]);
     }
     bool converges = lattice->orders == 1 ||
-                     largest[FRONT_ORDERS - 1] <= 0.5 * fmax(fmax(largest[0], largest[1]), largest[2]);
+                     largest[FRONT_ORDERS - 1] <= lattice->limit->converged *
+                                                    fmax(fmax(largest[0], largest[1]), largest[2]);
     return converges ? best : 0;
 }
 

@@ -34,6 +34,7 @@ struct fronts_limit {
     size_t most;     /* no more fronts than this */
     double latest;   /* s */
     double scale;    /* s, the time over which derivatives are compared with jumps */
+    double converged; /* largest share of the last derivative in a front that is followed */
 };
 
 bool fronts_follow(const struct line_modes *modes, double length, const struct end_system *near,

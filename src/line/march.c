@@ -8,6 +8,8 @@ enum { MOST = LINE_MOST_CONDUCTORS, STENCIL = 4, SERIES = 18 };
 /* A front within this share of a step after a sample counts as being on it: fronts of the fastest
  * mode lie on samples but for rounding. */
 static const double ON_SAMPLE = 1e-6;
+/* Of the peak or of the range; what remains is reported. */
+static const double AT_REST = 1e-4;
 
 struct delay {
     size_t samples; /* whole samples, rounded up */
@@ -18,7 +20,7 @@ struct delay {
 struct stepper {
     size_t states;
     double decay[MOST * MOST];          /* exp(A h) */
-    double gain[STENCIL][MOST * MOST];  /* of the waves at the new sample and the three before */
+    double gain[STENCIL][MOST * MOST];  /* of the waves one sample ahead, now, and two before */
     double drive[MOST];                 /* of the EMF, constant from 0 on */
 };
 
@@ -33,7 +35,7 @@ struct grid {
     double *wave_correction[2];  /* [corrected][count] of arriving waves */
     double *state_correction[2]; /* [corrected][states] */
     double state[2][MOST];
-    double arriving[2][STENCIL][MOST]; /* the newest first */
+    double arriving[2][STENCIL][MOST]; /* one sample ahead, now, and two before */
 };
 
 static struct delay delay_of(double delay, double step) {
@@ -78,12 +80,16 @@ static void phi(const double *z, size_t n, unsigned k, double *out) {
 }
 
 /* x(t + h) = exp(A h) x + integral of exp(A (h - u)) B b(t + u) du, b the cubic through the samples
- * at u = h, 0, -h, -2h (columns: powers of u/h). */
+ * at u = 2h, h, 0, -h (columns: powers of u/h).  The cubic kernel between its middle samples has a
+ * Fourier transform that is nowhere negative, so the reflection of the sampled end is an average of
+ * true reflections and passive like them: the march cannot blow up at any step.  (A cubic that does
+ * not look ahead is active near the Nyquist frequency and does.)  Looking ahead is possible because
+ * a wave that arrives at 2h left the other end long before. */
 static struct stepper stepper_of(const struct end_system *end, double step) {
-    static const double cubic[STENCIL][STENCIL] = {{0, 1.0 / 3, 1.0 / 2, 1.0 / 6},
-                                                   {1, 1.0 / 2, -1, -1.0 / 2},
-                                                   {0, -1, 1.0 / 2, 1.0 / 2},
-                                                   {0, 1.0 / 6, 0, -1.0 / 6}};
+    static const double cubic[STENCIL][STENCIL] = {{0, -1.0 / 6, 0, 1.0 / 6},
+                                                   {0, 1, 1.0 / 2, -1.0 / 2},
+                                                   {1, -1.0 / 2, -1, 1.0 / 2},
+                                                   {0, -1.0 / 3, 1.0 / 2, -1.0 / 6}};
     static const double factorial[STENCIL] = {1, 1, 2, 6};
     struct stepper made = {.states = end->states};
     size_t n = end->states, count = end->count;
@@ -157,26 +163,26 @@ static void correct_states(struct grid *grid, const struct front *front) {
     size_t states = stepper->states, orders = grid->setup->fronts->orders;
     double h = grid->setup->step, before[MOST] = {0};
     size_t first = sample_of(front->time, h);
-    for (size_t ahead = 0; ahead < STENCIL - 1; ahead++) {
-        double now = ((double)(first + ahead)) * h - front->time, after[MOST];
-        for (size_t i = 0; i < states; i++) {
-            after[i] = now * series(front->state + i, states, 1, 0);
-            double power = now;
-            for (size_t p = 1; p < orders; p++) {
+    /* The three steps whose samples lie on both sides, by the sample they lead to. */
+    for (size_t i = first > 0 ? first - 1 : 0; i < first + 2; i++) {
+        double now = (double)i * h - front->time, after[MOST] = {0};
+        for (size_t k = 0; k < states && i >= first; k++) {
+            double power = 1;
+            for (size_t p = 0; p < orders; p++) {
                 power *= now / (double)(p + 1);
-                after[i] += power * front->state[p * states + i];
+                after[k] += power * front->state[p * states + k];
             }
         }
-        for (size_t i = 0; i < states; i++) {
-            double correction = after[i];
+        for (size_t k = 0; k < states; k++) {
+            double correction = after[k];
             for (size_t j = 0; j < states; j++)
-                correction -= stepper->decay[i * states + j] * before[j];
-            for (size_t s = 0; s <= ahead; s++)
+                correction -= stepper->decay[k * states + j] * before[j];
+            for (size_t s = 0; s < STENCIL && i + 1 >= first + s; s++)
                 for (size_t m = 0; m < count; m++)
-                    correction -= stepper->gain[s][i * count + m] *
-                                  series(front->wave + m, count, orders, now - (double)s * h);
-            if (first + ahead < grid->corrected)
-                grid->state_correction[end][(first + ahead) * states + i] += correction;
+                    correction -= stepper->gain[s][k * count + m] *
+                                  series(front->wave + m, count, orders, now + (1 - (double)s) * h);
+            if (i < grid->corrected)
+                grid->state_correction[end][i * states + k] += correction;
         }
         memcpy(before, after, sizeof before);
     }
@@ -226,6 +232,7 @@ static bool grid_reserve(struct grid *grid, size_t room, struct arena *arena, st
     return true;
 }
 
+/* Sample i becomes the newest one of the end's history. */
 static void read_arriving(struct grid *grid, size_t end, size_t i) {
     double(*history)[MOST] = grid->arriving[end];
     size_t count = grid->count;
@@ -266,10 +273,10 @@ static void advance_state(struct grid *grid, size_t end, size_t i) {
 static void take_sample(struct grid *grid, size_t end, size_t i) {
     const struct end_system *system = grid->setup->end[end];
     size_t count = grid->count, states = system->states;
-    read_arriving(grid, end, i);
+    read_arriving(grid, end, i + 1);
     if (states > 0 && i > 0)
         advance_state(grid, end, i);
-    const double *wave = grid->arriving[end][0], *state = grid->state[end];
+    const double *wave = grid->arriving[end][1], *state = grid->state[end];
     for (size_t k = 0; k < count; k++) {
         double voltage = system->voltage_of_emf[k], leaving = system->leaving_of_emf[k];
         for (size_t j = 0; j < states; j++) {
@@ -285,37 +292,64 @@ static void take_sample(struct grid *grid, size_t end, size_t i) {
     }
 }
 
-/* At rest: over the last window the voltage varies by no more than `rest` of its range, and its
- * integral about the last value by no more than `rest` of that integral's range (slow edges ask
- * for the integral). */
-static bool curve_at_rest(const double *value, size_t samples, size_t window, double rest) {
-    double last = value[samples - 1], integral = 0, low = 0, high = 0, largest = 0;
-    double low_late = last, high_late = last, late_start = 0;
-    for (size_t i = 0; i < samples; i++) {
-        if (i + window == samples)
-            late_start = integral;
-        if (i + window >= samples) {
-            low_late = fmin(low_late, value[i]);
-            high_late = fmax(high_late, value[i]);
-        }
-        low = fmin(low, value[i]);
-        high = fmax(high, value[i]);
-        integral += value[i] - last;
-        largest = fmax(largest, fabs(integral));
-    }
-    return high_late - low_late <= rest * (high - low) + 1e-13 &&
-           fabs(integral - late_start) <= rest * largest + 1e-13 * (double)window;
+/* Ways of a step response to be settled, judged on its integral R less the part of its final value:
+ *   - of a ramp as short as is asked for, (R(t) - R(t - e)) / e, what the last window still shows is
+ *     far below the peak already seen, or a small share of it;
+ *   - R itself, to which slow ramps come down, moves by a small share of its range.
+ * Fast ringing that no ramp will show (capacitances at both ends of a lossless line keep it up) is
+ * no reason to go on. */
+struct rest {
+    double final;  /* mean of the last window */
+    double unrest; /* the worse of both, as a share; 0 when the peak stands well above */
+};
+
+static double moved(const double *sum, size_t i, size_t width, double final) {
+    return sum[i] - (i >= width ? sum[i - width] : 0) - final * (double)(i < width ? i : width);
 }
 
-static bool all_at_rest(const struct grid *grid, size_t samples) {
-    if (samples < 2 * grid->setup->window)
-        return false;
+/* sum[samples]: running sum of the samples (trapezoids), in steps. */
+static struct rest curve_rest(const double *sum, size_t samples, size_t window, size_t width) {
+    size_t last = samples - 1, late = last - window;
+    struct rest rest = {.final = (sum[last] - sum[late]) / (double)window};
+    double peak = 0, deviation = 0, low = 0, high = 0, low_late = INFINITY, high_late = -INFINITY;
+    for (size_t i = 0; i < samples; i++) {
+        double slow = sum[i] - rest.final * (double)i, fast = moved(sum, i, width, rest.final);
+        double ramp = fast + rest.final * (double)(i < width ? i : width);
+        peak = fmax(peak, fabs(ramp));
+        low = fmin(low, slow);
+        high = fmax(high, slow);
+        if (i >= late) {
+            if (i >= width)
+                deviation = fmax(deviation, fabs(fast));
+            low_late = fmin(low_late, slow);
+            high_late = fmax(high_late, slow);
+        }
+    }
+    double floor = 1e-13 * (double)width;
+    double of_ramp = fmax(deviation - floor, 0) / fmax(peak, floor);
+    if (fabs(rest.final) * (double)width + 2 * deviation < 0.9 * peak)
+        of_ramp = 0;
+    double of_slow = fmax(high_late - low_late - floor, 0) / fmax(high - low, floor);
+    rest.unrest = fmax(of_ramp, of_slow);
+    return rest;
+}
+
+static double worst_unrest(const struct grid *grid, size_t samples, double *sum,
+                           struct march *march) {
+    double width = ceil(grid->setup->edge / grid->setup->step), worst = 0;
+    size_t steps = width < (double)samples ? (size_t)width : samples;
     for (size_t end = 0; end < 2; end++)
-        for (size_t k = 0; k < grid->count; k++)
-            if (!curve_at_rest(grid->value[end] + k * grid->room, samples, grid->setup->window,
-                               grid->setup->rest))
-                return false;
-    return true;
+        for (size_t k = 0; k < grid->count; k++) {
+            const double *value = grid->value[end] + k * grid->room;
+            sum[0] = 0;
+            for (size_t i = 1; i < samples; i++)
+                sum[i] = sum[i - 1] + 0.5 * (value[i] + value[i - 1]);
+            struct rest rest = curve_rest(sum, samples, grid->setup->window, steps);
+            march->final[end][k] = rest.final;
+            march->unrest[end][k] = rest.unrest;
+            worst = fmax(worst, rest.unrest);
+        }
+    return worst;
 }
 
 static bool step_on(struct grid *grid, struct arena *arena, struct march *march,
@@ -323,18 +357,29 @@ static bool step_on(struct grid *grid, struct arena *arena, struct march *march,
     const struct march_setup *setup = grid->setup;
     size_t exact = setup->exact_steps, next_check = 2 * setup->window, samples = 0;
     size_t most = exact > 0 ? exact : setup->most_steps;
-    while (samples < most) {
-        if (samples == grid->room &&
-            !grid_reserve(grid, samples == 0 ? (exact > 0 ? exact : next_check + next_check / 2)
-                                             : 2 * samples,
-                          arena, error))
+    double *sum = NULL;
+    for (size_t end = 0; end < 2; end++) {
+        march->final[end] = arena_new(arena, grid->count, double, error);
+        march->unrest[end] = arena_new(arena, grid->count, double, error);
+        if (!march->final[end] || !march->unrest[end])
             return false;
+    }
+    while (samples < most) {
+        if (samples == grid->room) {
+            size_t room = samples > 0  ? 2 * samples
+                          : exact > 0 ? exact
+                                      : next_check + next_check / 2;
+            if (!grid_reserve(grid, room, arena, error))
+                return false;
+            sum = exact > 0 ? NULL : arena_new(arena, room, double, error);
+            if (exact == 0 && sum == NULL)
+                return false;
+        }
         take_sample(grid, 0, samples);
         take_sample(grid, 1, samples);
         samples++;
-        if (exact == 0 && samples == next_check) {
-            march->at_rest = all_at_rest(grid, samples);
-            if (march->at_rest)
+        if (exact == 0 && (samples == next_check || samples == most)) {
+            if (samples > setup->window && worst_unrest(grid, samples, sum, march) <= AT_REST)
                 break;
             next_check = samples + (setup->window > samples / 4 ? setup->window : samples / 4);
         }

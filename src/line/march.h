@@ -14,9 +14,9 @@ struct march_setup {
     double length;
     const struct end_system *end[2]; /* near, far */
     const struct fronts *fronts;
-    double step;       /* s; fastest delay / step is an integer of at least 3 */
+    double step;       /* s; fastest delay / step is an integer of at least 3: see stepper_of */
     size_t window;     /* steps over which everything must have come to rest */
-    double rest;       /* ... to this share of its whole range */
+    double edge;       /* s, > 0: the shortest that will be asked for */
     size_t most_steps; /* give up then */
     size_t exact_steps; /* > 0: take exactly so many, without looking for rest */
 };
@@ -25,9 +25,10 @@ struct march {
     size_t count;
     double step;
     size_t samples;
-    bool at_rest;
     double *value[2];    /* [count][samples] step response, V, near and far */
     double *integral[2]; /* [count][samples] its integral, V s */
+    double *final[2];    /* [count] mean of the last window, V */
+    double *unrest[2];   /* [count] what may still come, as a share of any peak; 0 = nothing */
 };
 
 /* Results and scratch are both taken from `arena`. */

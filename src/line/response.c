@@ -8,14 +8,13 @@
 /* Shares of the EMF below which a front no longer matters: as exact bounces every front is kept
  * that could still add up to a visible crosstalk; on the grid a front only sharpens what the
  * samples already contain. */
-static const double EXACT_FRONT = 1e-10, GRID_FRONT = 3e-5;
+static const double EXACT_FRONT = 1e-10, GRID_FRONT = 3e-6;
 enum { MOST_EXACT_FRONTS = 20000, MOST_GRID_FRONTS = 4000, MOST_STEPS = 200000 };
 /* Grid steps per fastest time constant of the ends, and per passage of the fastest mode. */
-static const double STEPS_PER_CONSTANT = 10;
-enum { STEPS_PER_PASSAGE = 6 };
+static const double STEPS_PER_CONSTANT = 16;
+enum { STEPS_PER_PASSAGE = 12 };
 /* Steps per shortest edge where fronts that no longer are followed blur over a step. */
 static const double STEPS_PER_EDGE = 16;
-static const double AT_REST = 1e-4;
 /* A capacitance this much faster than the shortest edge is left out. */
 static const double NEGLIGIBLE = 1e-4;
 
@@ -25,9 +24,8 @@ struct line_response {
     bool exact;
     struct staircase staircase[2];
     struct curve curve[2][LINE_MOST_CONDUCTORS];
-    double value_error[2][LINE_MOST_CONDUCTORS];    /* V, of the step response */
-    double integral_error[2][LINE_MOST_CONDUCTORS]; /* V s */
-    double rest_error;                              /* relative: what may follow the window */
+    struct curve coarse[2][LINE_MOST_CONDUCTORS];   /* the same on twice the step */
+    double rest_error[2][LINE_MOST_CONDUCTORS];     /* relative: what may follow the window */
 };
 
 struct line_setup {
@@ -55,7 +53,8 @@ static double settling_time(const struct line_problem *problem) {
 }
 
 static bool grid_at(const struct line_setup *setup, const struct fronts *fronts, size_t passage,
-                    double window, size_t exact_steps, struct arena *arena, struct march *march,
+                    double window, double edge, size_t exact_steps, struct arena *arena,
+                    struct march *march,
                     struct error *error) {
     const struct line_modes *modes = &setup->modes;
     double step = modes->slowness[0] * setup->problem->length / (double)passage;
@@ -66,30 +65,10 @@ static bool grid_at(const struct line_setup *setup, const struct fronts *fronts,
                                       .fronts = fronts,
                                       .step = step,
                                       .window = (size_t)steps,
-                                      .rest = AT_REST,
+                                      .edge = edge,
                                       .most_steps = MOST_STEPS,
                                       .exact_steps = exact_steps};
     return march_run(&march_setup, arena, march, error);
-}
-
-/* The same on twice the step: fourth order would leave a fifteenth of the difference; a quarter is
- * claimed, because fronts that blur leave lower orders. */
-static void compare(const struct march *fine, const struct march *coarse,
-                    struct line_response *response) {
-    for (size_t end = 0; end < 2; end++)
-        for (size_t k = 0; k < fine->count; k++) {
-            const double *value = fine->value[end] + k * fine->samples;
-            const double *integral = fine->integral[end] + k * fine->samples;
-            const double *value2 = coarse->value[end] + k * coarse->samples;
-            const double *integral2 = coarse->integral[end] + k * coarse->samples;
-            double of_value = 0, of_integral = 0;
-            for (size_t i = 0; i + 1 < coarse->samples && 2 * i < fine->samples; i++) {
-                of_value = fmax(of_value, fabs(value[2 * i] - value2[i]));
-                of_integral = fmax(of_integral, fabs(integral[2 * i] - integral2[i]));
-            }
-            response->value_error[end][k] = of_value / 4;
-            response->integral_error[end][k] = of_integral / 4;
-        }
 }
 
 static bool build_curves(const struct line_setup *setup, struct arena *arena,
@@ -99,11 +78,15 @@ static bool build_curves(const struct line_setup *setup, struct arena *arena,
     double slowest = setup->modes.slowness[problem->count - 1] * problem->length;
     double fastest = fmin(setup->near.fastest, setup->far.fastest);
     double per_passage = ceil(passage * STEPS_PER_CONSTANT / fastest);
+    double scale = fmin(fastest / STEPS_PER_CONSTANT, passage / STEPS_PER_PASSAGE);
+    /* A front that is dropped is late or early by part of a step; one that is kept with a series
+     * that does not converge is wrong by its last term: the lesser evil of the two. */
+    double converged = fmin(fmax(scale / response->shortest_edge, 0.01), 0.2);
     struct fronts_limit limit = {.smallest = GRID_FRONT,
                                  .most = MOST_GRID_FRONTS,
                                  .latest = INFINITY,
-                                 .scale = fmin(fastest / STEPS_PER_CONSTANT,
-                                               passage / STEPS_PER_PASSAGE)};
+                                 .scale = scale,
+                                 .converged = converged};
     struct fronts fronts;
     if (!fronts_follow(&setup->modes, problem->length, &setup->near, &setup->far, &limit, arena,
                        &fronts, error))
@@ -117,13 +100,20 @@ static bool build_curves(const struct line_setup *setup, struct arena *arena,
     steps += steps % 2;
     double window = fmax(4 * slowest, 2 * settling_time(problem));
     struct march fine, coarse;
-    if (!grid_at(setup, &fronts, steps, window, 0, arena, &fine, error) ||
-        !grid_at(setup, &fronts, steps / 2, window, fine.samples / 2, arena, &coarse, error))
+    if (!grid_at(setup, &fronts, steps, window, response->shortest_edge, 0, arena, &fine, error) ||
+        !grid_at(setup, &fronts, steps / 2, window, response->shortest_edge,
+                 fine.samples / 2, arena, &coarse, error))
         return false;
-    compare(&fine, &coarse, response);
-    response->rest_error = fine.at_rest ? AT_REST : 1;
-    return curves_build(&fine, &fronts, true, arena, response->curve[0], error) &&
-           curves_build(&fine, &fronts, false, arena, response->curve[1], error);
+    for (size_t end = 0; end < 2; end++) {
+        if (!curves_build(&fine, &fronts, end == 0, arena, response->curve[end], error) ||
+            !curves_build(&coarse, &fronts, end == 0, arena, response->coarse[end], error))
+            return false;
+        for (size_t k = 0; k < problem->count; k++) {
+            response->coarse[end][k].final = response->curve[end][k].final;
+            response->rest_error[end][k] = fine.unrest[end][k];
+        }
+    }
+    return true;
 }
 
 struct line_response *line_response_create(const struct line_problem *problem, size_t driven,
@@ -157,7 +147,8 @@ struct line_response *line_response_create(const struct line_problem *problem, s
             return NULL;
         if (isinf(fronts.complete_until)) {
             response->exact = true;
-            response->rest_error = 1e-6;
+            for (size_t k = 0; k < problem->count; k++)
+                response->rest_error[0][k] = response->rest_error[1][k] = 1e-6;
             if (!staircase_build(&fronts, problem->count, true, arena, &response->staircase[0],
                                  error) ||
                 !staircase_build(&fronts, problem->count, false, arena, &response->staircase[1],
@@ -184,13 +175,15 @@ static struct line_peak peak_at(const struct line_response *response, size_t end
                                 double edge) {
     if (response->exact) {
         struct line_peak peak = staircase_peak(&response->staircase[end], victim, edge);
-        peak.error = response->rest_error;
+        peak.error = response->rest_error[end][victim];
         return peak;
     }
     struct line_peak peak = curve_peak(&response->curve[end][victim], edge);
-    double absolute = fmin(response->value_error[end][victim],
-                           2 * response->integral_error[end][victim] / edge);
-    peak.error = response->rest_error + (peak.highest > 0 ? absolute / peak.highest : 0);
+    struct line_peak coarse = curve_peak(&response->coarse[end][victim], edge);
+    /* Fourth order would leave a fifteenth of the difference, fronts that blur all of it. */
+    peak.error = response->rest_error[end][victim];
+    if (peak.highest > 0)
+        peak.error += fabs(peak.highest - coarse.highest) / peak.highest;
     return peak;
 }
 
