@@ -119,23 +119,32 @@ static void scatter(const struct lattice *lattice, double emf, struct front *fro
     }
 }
 
-/* Largest jump, derivatives weighed over `scale`.  Late fronts of capacitive ends oscillate faster
- * and faster; once the last term of their power series says that it no longer converges within
- * `scale` they are left to the grid, which blurs them within a step: a wrong series does more harm
- * than none. */
-static double strength(const struct lattice *lattice, const double *jumps) {
-    double largest[FRONT_ORDERS] = {0}, factor = 1, best = 0;
+/* The largest jump of a front and the last term of its power series, both over `scale`. */
+struct strength {
+    double best, last;
+};
+
+static struct strength strength_of(const struct lattice *lattice, const double *jumps) {
+    double factor = 1;
+    struct strength found = {0};
     for (size_t p = 0; p < lattice->orders; p++) {
+        double largest = 0;
         for (size_t m = 0; m < lattice->count; m++)
-            largest[p] = fmax(largest[p], factor * lattice->unit[m] *
-                                              fabs(jumps[p * lattice->count + m]));
+            largest = fmax(largest,
+                           factor * lattice->unit[m] * fabs(jumps[p * lattice->count + m]));
         factor *= lattice->limit->scale / (double)(p + 1);
-        best = fmax(best, largest[p]);
+        found.best = fmax(found.best, largest);
+        found.last = p + 1 == FRONT_ORDERS ? largest : 0;
     }
-    bool converges = lattice->orders == 1 ||
-                     largest[FRONT_ORDERS - 1] <= lattice->limit->converged *
-                                                    fmax(fmax(largest[0], largest[1]), largest[2]);
-    return converges ? best : 0;
+    return found;
+}
+
+/* Late fronts of capacitive ends oscillate faster and faster; once their power series no longer
+ * converges within `scale` they are left to the grid, which blurs them within a step: a wrong
+ * series does more harm than none.  One passage is followed or left as a whole: crosstalk is the
+ * small difference of modes, and to follow one and blur the other would drown it. */
+static bool converges(const struct lattice *lattice, const struct strength *level) {
+    return lattice->orders == 1 || level->last <= lattice->limit->converged * level->best;
 }
 
 static double time_of(const struct lattice *lattice, uint64_t key) {
@@ -147,11 +156,11 @@ static double time_of(const struct lattice *lattice, uint64_t key) {
     return time;
 }
 
-/* The next front in key order, fed by every group whose predecessor exists.  NULL with `*end` set
- * when there is none left, NULL otherwise when it was left out. */
-static struct front *merge_one(const struct lattice *lattice, const struct level *level,
-                               struct fronts *fronts, size_t *head, uint64_t *key,
-                               double *time) {
+/* The next front in key order, fed by every group whose predecessor exists: parent[group], or NULL.
+ * False when there is none left. */
+static bool merge_one(const struct lattice *lattice, const struct level *level,
+                      const struct fronts *fronts, size_t *head, uint64_t *key,
+                      struct front **parent) {
     *key = UINT64_MAX;
     for (size_t g = 0; g < lattice->groups; g++)
         if (head[g] < level->count) {
@@ -159,21 +168,44 @@ static struct front *merge_one(const struct lattice *lattice, const struct level
             *key = candidate < *key ? candidate : *key;
         }
     if (*key == UINT64_MAX)
-        return NULL;
-    *time = time_of(lattice, *key);
+        return false;
     struct front *front = &fronts->front[fronts->count];
     memset(front->wave, 0, lattice->orders * lattice->count * sizeof(double));
     for (size_t g = 0; g < lattice->groups; g++) {
-        if (head[g] >= level->count ||
-            level->key[head[g]] + (UINT64_C(1) << (g * lattice->bits)) != *key)
-            continue;
-        const struct front *from = &fronts->front[level->front[head[g]++]];
-        for (size_t m = 0; m < lattice->count; m++)
-            if (lattice->group_of[m] == g)
-                for (size_t p = 0; p < lattice->orders; p++)
-                    front->wave[p * lattice->count + m] = from->leaving[p * lattice->count + m];
+        parent[g] = NULL;
+        if (head[g] < level->count &&
+            level->key[head[g]] + (UINT64_C(1) << (g * lattice->bits)) == *key)
+            parent[g] = &fronts->front[level->front[head[g]++]];
     }
-    return front;
+    for (size_t m = 0; m < lattice->count; m++)
+        if (parent[lattice->group_of[m]] != NULL)
+            for (size_t p = 0; p < lattice->orders; p++)
+                front->wave[p * lattice->count + m] =
+                    parent[lattice->group_of[m]]->leaving[p * lattice->count + m];
+    return true;
+}
+
+static void mark_followed(const struct lattice *lattice, struct front *const *parent) {
+    for (size_t m = 0; m < lattice->count; m++)
+        if (parent[lattice->group_of[m]] != NULL)
+            parent[lattice->group_of[m]]->followed[m] = true;
+}
+
+static bool next_slot(const struct lattice *lattice, struct fronts *fronts, bool near,
+                      struct arena *arena, struct error *error) {
+    struct front *front = &fronts->front[fronts->count];
+    front->near = near;
+    return front->wave != NULL || front_take(lattice, arena, front, error);
+}
+
+/* The level is left to the grid as a whole. */
+static void discard(const struct level *level, struct fronts *fronts, size_t before,
+                    struct level *next) {
+    for (size_t k = 0; k < level->count; k++)
+        memset(fronts->front[level->front[k]].followed, 0,
+               sizeof fronts->front[level->front[k]].followed);
+    fronts->count = before;
+    next->count = 0;
 }
 
 /* Every front of `level` goes on in each group of modes; the successors along one group keep the
@@ -181,32 +213,34 @@ static struct front *merge_one(const struct lattice *lattice, const struct level
 static bool next_level(const struct lattice *lattice, const struct level *level, bool near,
                        struct fronts *fronts, struct arena *arena, struct level *next,
                        struct error *error) {
-    size_t head[MOST] = {0};
+    size_t head[MOST] = {0}, before = fronts->count;
     uint64_t key = 0;
-    double time = 0;
+    struct front *parent[MOST];
+    struct strength strongest = {0};
     next->count = 0;
     if (!level_reserve(next, lattice->groups * level->count, arena, error) ||
         !fronts_reserve(fronts, fronts->count + lattice->groups * level->count + 1, arena, error))
         return false;
     for (;;) {
-        struct front *front = &fronts->front[fronts->count];
-        if (front->wave == NULL) {
-            front->near = near;
-            if (!front_take(lattice, arena, front, error))
-                return false;
-        }
-        front->near = near;
-        if (merge_one(lattice, level, fronts, head, &key, &time) == NULL)
+        if (!next_slot(lattice, fronts, near, arena, error))
+            return false;
+        if (!merge_one(lattice, level, fronts, head, &key, parent))
             break;
-        if (time > lattice->limit->latest ||
-            strength(lattice, front->wave) <= lattice->limit->smallest)
+        struct front *front = &fronts->front[fronts->count];
+        struct strength strength = strength_of(lattice, front->wave);
+        strongest.best = fmax(strongest.best, strength.best);
+        strongest.last = fmax(strongest.last, strength.last);
+        front->time = time_of(lattice, key);
+        if (front->time > lattice->limit->latest || strength.best <= lattice->limit->smallest)
             continue;
-        front->time = time;
         scatter(lattice, 0, front);
+        mark_followed(lattice, parent);
         next->key[next->count] = key;
         next->front[next->count++] = fronts->count++;
         fronts->front[fronts->count].wave = NULL;
     }
+    if (!converges(lattice, &strongest))
+        discard(level, fronts, before, next);
     /* The slot left over belongs to this level's kind of end. */
     fronts->front[fronts->count].wave = NULL;
     return true;

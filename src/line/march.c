@@ -34,6 +34,7 @@ struct grid {
     size_t corrected;   /* samples that corrections reach */
     double *wave_correction[2];  /* [corrected][count] of arriving waves */
     double *state_correction[2]; /* [corrected][states] */
+    double *leaving_correction[2]; /* [corrected][count] of leaving waves */
     double state[2][MOST];
     double arriving[2][STENCIL][MOST]; /* one sample ahead, now, and two before */
 };
@@ -135,7 +136,7 @@ static void correct_waves(struct grid *grid, const struct front *front) {
     size_t orders = grid->setup->fronts->orders, to = front->near ? 1 : 0;
     for (size_t m = 0; m < count; m++) {
         const struct delay *delay = &grid->delay[m];
-        if (delay->fraction == 0)
+        if (delay->fraction == 0 || !front->followed[m])
             continue;
         for (size_t back = 0; back < 3; back++) {
             double base = (double)first - (double)back; /* second stencil point */
@@ -188,6 +189,62 @@ static void correct_states(struct grid *grid, const struct front *front) {
     }
 }
 
+/* The cubic kernel that also interpolates and integrates, u in samples. */
+static double kernel(double u) {
+    u = fabs(u);
+    if (u >= 2)
+        return 0;
+    return u <= 1 ? (1 - u * u) * (2 - u) / 2 : (1 - u) * (2 - u) * (3 - u) / 6;
+}
+
+/* Mean of (u - from)^power / power!, 0 before `from`, weighed by the kernel about 0; u in samples.
+ * Four Gauss-Legendre points are exact between the kernel's knots. */
+static double blurred_power(double from, size_t power) {
+    static const double point[2] = {0.33998104358485626, 0.86113631159405258};
+    static const double weight[2] = {0.65214515486254614, 0.34785484513745386};
+    double sum = 0, factorial = power == 3 ? 6 : power == 2 ? 2 : 1;
+    for (int knot = -2; knot < 2; knot++) {
+        double low = fmax(from, knot), half = (knot + 1 - low) / 2;
+        for (int k = 0; k < 4 && half > 0; k++) {
+            double u = low + half + half * (k % 2 ? -1 : 1) * point[k / 2];
+            double value = 1;
+            for (size_t p = 0; p < power; p++)
+                value *= u - from;
+            sum += half * weight[k / 2] * value / factorial * kernel(u);
+        }
+    }
+    return sum;
+}
+
+/* A wave whose next arrival is left to the grid: its samples are blurred by the kernel, which keeps
+ * their slow part to fourth order and depends smoothly on where between samples the front lies.
+ * Sharp samples would move it by up to a step, and differently in two modes that hardly differ. */
+static void blur_leaving(struct grid *grid, const struct front *front) {
+    size_t from = front->near ? 0 : 1, count = grid->count;
+    double h = grid->setup->step, position = front->time / h;
+    size_t first = sample_of(front->time, h);
+    for (size_t i = position > 2 ? (size_t)(position - 2) : 0; (double)i < position + 2; i++) {
+        if (i >= grid->corrected)
+            return;
+        double scale = 1, mean[FRONT_ORDERS];
+        for (size_t p = 0; p < FRONT_ORDERS; p++) {
+            mean[p] = scale * blurred_power(position - (double)i, p);
+            scale *= h;
+        }
+        for (size_t m = 0; m < count; m++) {
+            if (front->followed[m])
+                continue;
+            const double *jump = front->leaving + m;
+            double correction = 0;
+            for (size_t p = 0; p < FRONT_ORDERS; p++)
+                correction += mean[p] * jump[p * count];
+            if (i >= first)
+                correction -= series(jump, count, FRONT_ORDERS, (double)i * h - front->time);
+            grid->leaving_correction[from][i * count + m] += correction;
+        }
+    }
+}
+
 static bool corrections_take(struct grid *grid, struct arena *arena, struct error *error) {
     const struct fronts *fronts = grid->setup->fronts;
     double latest = 0;
@@ -200,11 +257,15 @@ static bool corrections_take(struct grid *grid, struct arena *arena, struct erro
             arena_new(arena, grid->corrected * grid->count, double, error);
         grid->state_correction[end] =
             arena_new(arena, grid->corrected * grid->stepper[end].states + 1, double, error);
-        if (!grid->wave_correction[end] || !grid->state_correction[end])
+        grid->leaving_correction[end] =
+            arena_new(arena, grid->corrected * grid->count, double, error);
+        if (!grid->wave_correction[end] || !grid->state_correction[end] ||
+            !grid->leaving_correction[end])
             return false;
     }
     for (size_t k = 0; k < fronts->count; k++) {
         correct_waves(grid, &fronts->front[k]);
+        blur_leaving(grid, &fronts->front[k]);
         if (k > 0) /* the first is the EMF's own step, integrated exactly by `drive` */
             correct_states(grid, &fronts->front[k]);
     }
@@ -287,6 +348,8 @@ static void take_sample(struct grid *grid, size_t end, size_t i) {
             voltage += system->voltage_of_wave[k * count + m] * wave[m];
             leaving += system->leaving_of_wave[k * count + m] * wave[m];
         }
+        if (i < grid->corrected)
+            leaving += grid->leaving_correction[end][i * count + k];
         grid->value[end][k * grid->room + i] = voltage;
         grid->leaving[end][k * (grid->pad + grid->room) + grid->pad + i] = leaving;
     }
