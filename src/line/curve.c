@@ -12,9 +12,10 @@
 
 enum { MOST_CUTS = 24, BLOCK = 256 };
 
-bool curves_build(const struct march *march, const struct fronts *fronts, bool near,
-                  struct arena *arena, struct curve *curves, struct error *error) {
+bool curves_build(const struct march *march, const struct rest *rest, const struct fronts *fronts,
+                  bool near, struct arena *arena, struct curve *curves, struct error *error) {
     size_t samples = march->samples, count = march->count, end = near ? 0 : 1, held = 0;
+    size_t window = march->window < samples ? march->window : samples - 1;
     size_t *first = arena_new(arena, samples + 1, size_t, error);
     struct curve_front *front = arena_new(arena, fronts->count * count, struct curve_front, error);
     size_t *cell = arena_new(arena, fronts->count, size_t, error);
@@ -52,7 +53,9 @@ bool curves_build(const struct march *march, const struct fronts *fronts, bool n
                                    .samples = samples,
                                    .value = march->value[end] + k * samples,
                                    .integral = march->integral[end] + k * samples,
-                                   .final = march->final[end][k],
+                                   .final = rest[k].final,
+                                   .settled = rest_settled(march->integral[end] + k * samples, samples,
+                                                           window, march->step, rest[k].final),
                                    .first = first,
                                    .front = front + k * held,
                                    .fronts = held};
@@ -74,7 +77,7 @@ static void curve_at(const struct curve *curve, double time, double *value, doub
         return;
     if (position >= (double)last) {
         *value = curve->final;
-        *integral = curve->integral[last] + curve->final * (time - (double)last * h);
+        *integral = curve->settled + curve->final * time;
         return;
     }
     size_t cell = (size_t)position;
@@ -195,8 +198,7 @@ static void grid_values(const struct curve *curve, double edge, bool falling, si
         if (cell < 0)
             shifted = 0;
         else if (cell >= last)
-            shifted = curve->integral[curve->samples - 1] +
-                      curve->final * h * (cell + u - last);
+            shifted = curve->settled + curve->final * h * (cell + u);
         else {
             size_t i = (size_t)cell;
             shifted = w0 * curve->integral[i] + d0 * curve->value[i] +
@@ -246,8 +248,10 @@ static void visit_fine(const struct curve *curve, double edge, double offset, si
         double here = fabs(values[k + 1] - values[k]);
         double left = k > 0 ? fabs(values[k] - values[k - 1]) : here;
         double right = k + 2 < count ? fabs(values[k + 2] - values[k + 1]) : here;
-        double highest = fmax(fabs(values[k]), fabs(values[k + 1]));
-        if (highest + fmin(here, fmax(left, right)) + fmax(left, right) / 4 < peak->highest)
+        /* fmax is a call. */
+        double first = fabs(values[k]), second = fabs(values[k + 1]);
+        double highest = first > second ? first : second, beside = left > right ? left : right;
+        if (highest + (here < beside ? here : beside) + beside / 4 < peak->highest)
             continue;
         double low = (double)(start + k) * h + offset;
         search_cell(curve, edge, low, low + h, peak);

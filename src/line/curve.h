@@ -16,15 +16,16 @@ struct curve {
     double step;
     size_t samples;
     const double *value, *integral; /* [samples] */
-    double final;                   /* V, after the last sample */
+    double final, settled; /* after the last sample: final V, integral settled + final * time */
     const size_t *first;            /* [samples + 1]: fronts of cell i are first[i] .. first[i+1]-1 */
     const struct curve_front *front;
     size_t fronts;
 };
 
-/* A curve for each conductor at the near or the far end; `curves` has march->count places. */
-bool curves_build(const struct march *march, const struct fronts *fronts, bool near,
-                  struct arena *arena, struct curve *curves, struct error *error);
+/* A curve for each conductor at the near or the far end; `curves` and `rest` (which may
+ * come from a finer march) have march->count places. */
+bool curves_build(const struct march *march, const struct rest *rest, const struct fronts *fronts,
+                  bool near, struct arena *arena, struct curve *curves, struct error *error);
 
 /* The response at time t to a ramp of `edge`. */
 double curve_response(const struct curve *curve, double edge, double time);

@@ -8,8 +8,6 @@ enum { MOST = LINE_MOST_CONDUCTORS, STENCIL = 4, SERIES = 18 };
 /* A front within this share of a step after a sample counts as being on it: fronts of the fastest
  * mode lie on samples but for rounding. */
 static const double ON_SAMPLE = 1e-6;
-/* Of the peak or of the range; what remains is reported. */
-static const double AT_REST = 1e-4;
 
 struct delay {
     size_t samples; /* whole samples, rounded up */
@@ -293,12 +291,13 @@ static bool grid_reserve(struct grid *grid, size_t room, struct arena *arena, st
     return true;
 }
 
+/* The steps below are compiled for one, two and any number of conductors: with the count known the
+ * small products are straight-line code, several times as fast. */
+#define FOR_COUNT static inline __attribute__((always_inline))
+
 /* Sample i becomes the newest one of the end's history. */
-static void read_arriving(struct grid *grid, size_t end, size_t i) {
+FOR_COUNT void read_arriving(struct grid *grid, size_t end, size_t i, size_t count) {
     double(*history)[MOST] = grid->arriving[end];
-    size_t count = grid->count;
-    for (size_t s = STENCIL - 1; s > 0; s--)
-        memcpy(history[s], history[s - 1], count * sizeof(double));
     for (size_t m = 0; m < count; m++) {
         const struct delay *delay = &grid->delay[m];
         const double *wave =
@@ -309,34 +308,38 @@ static void read_arriving(struct grid *grid, size_t end, size_t i) {
                    delay->weight[3] * wave[2];
         if (i < grid->corrected)
             sum += grid->wave_correction[end][i * count + m];
+        history[3][m] = history[2][m];
+        history[2][m] = history[1][m];
+        history[1][m] = history[0][m];
         history[0][m] = sum;
     }
 }
 
-static void advance_state(struct grid *grid, size_t end, size_t i) {
+FOR_COUNT void advance_state(struct grid *grid, size_t end, size_t i, size_t count) {
     const struct stepper *stepper = &grid->stepper[end];
-    size_t states = stepper->states, count = grid->count;
+    size_t states = stepper->states;
     double next[MOST];
     for (size_t k = 0; k < states; k++) {
         double sum = stepper->drive[k];
         for (size_t j = 0; j < states; j++)
             sum += stepper->decay[k * states + j] * grid->state[end][j];
-        for (size_t s = 0; s < STENCIL; s++)
-            for (size_t m = 0; m < count; m++)
+        for (size_t m = 0; m < count; m++)
+            for (size_t s = 0; s < STENCIL; s++)
                 sum += stepper->gain[s][k * count + m] * grid->arriving[end][s][m];
         if (i < grid->corrected)
             sum += grid->state_correction[end][i * states + k];
         next[k] = sum;
     }
-    memcpy(grid->state[end], next, states * sizeof(double));
+    for (size_t k = 0; k < states; k++)
+        grid->state[end][k] = next[k];
 }
 
-static void take_sample(struct grid *grid, size_t end, size_t i) {
+FOR_COUNT void take_sample(struct grid *grid, size_t end, size_t i, size_t count) {
     const struct end_system *system = grid->setup->end[end];
-    size_t count = grid->count, states = system->states;
-    read_arriving(grid, end, i + 1);
+    size_t states = system->states;
+    read_arriving(grid, end, i + 1, count);
     if (states > 0 && i > 0)
-        advance_state(grid, end, i);
+        advance_state(grid, end, i, count);
     const double *wave = grid->arriving[end][1], *state = grid->state[end];
     for (size_t k = 0; k < count; k++) {
         double voltage = system->voltage_of_emf[k], leaving = system->leaving_of_emf[k];
@@ -355,64 +358,38 @@ static void take_sample(struct grid *grid, size_t end, size_t i) {
     }
 }
 
-/* Ways of a step response to be settled, judged on its integral R less the part of its final value:
- *   - of a ramp as short as is asked for, (R(t) - R(t - e)) / e, what the last window still shows is
- *     far below the peak already seen, or a small share of it;
- *   - R itself, to which slow ramps come down, moves by a small share of its range.
- * Fast ringing that no ramp will show (capacitances at both ends of a lossless line keep it up) is
- * no reason to go on. */
-struct rest {
-    double final;  /* mean of the last window */
-    double unrest; /* the worse of both, as a share; 0 when the peak stands well above */
-};
-
-static double moved(const double *sum, size_t i, size_t width, double final) {
-    return sum[i] - (i >= width ? sum[i - width] : 0) - final * (double)(i < width ? i : width);
-}
-
-/* sum[samples]: running sum of the samples (trapezoids), in steps. */
-static struct rest curve_rest(const double *sum, size_t samples, size_t window, size_t width) {
-    size_t last = samples - 1, late = last - window;
-    struct rest rest = {.final = (sum[last] - sum[late]) / (double)window};
-    double peak = 0, deviation = 0, low = 0, high = 0, low_late = INFINITY, high_late = -INFINITY;
-    for (size_t i = 0; i < samples; i++) {
-        double slow = sum[i] - rest.final * (double)i, fast = moved(sum, i, width, rest.final);
-        double ramp = fast + rest.final * (double)(i < width ? i : width);
-        peak = fmax(peak, fabs(ramp));
-        low = fmin(low, slow);
-        high = fmax(high, slow);
-        if (i >= late) {
-            if (i >= width)
-                deviation = fmax(deviation, fabs(fast));
-            low_late = fmin(low_late, slow);
-            high_late = fmax(high_late, slow);
-        }
+FOR_COUNT void take_samples_of(struct grid *grid, size_t from, size_t to, size_t count) {
+    for (size_t i = from; i < to; i++) {
+        take_sample(grid, 0, i, count);
+        take_sample(grid, 1, i, count);
     }
-    double floor = 1e-13 * (double)width;
-    double of_ramp = fmax(deviation - floor, 0) / fmax(peak, floor);
-    if (fabs(rest.final) * (double)width + 2 * deviation < 0.9 * peak)
-        of_ramp = 0;
-    double of_slow = fmax(high_late - low_late - floor, 0) / fmax(high - low, floor);
-    rest.unrest = fmax(of_ramp, of_slow);
-    return rest;
 }
 
-static double worst_unrest(const struct grid *grid, size_t samples, double *sum,
-                           struct march *march) {
-    double width = ceil(grid->setup->edge / grid->setup->step), worst = 0;
-    size_t steps = width < (double)samples ? (size_t)width : samples;
+static void take_samples(struct grid *grid, size_t from, size_t to) {
+    if (grid->count == 1)
+        take_samples_of(grid, from, to, 1);
+    else if (grid->count == 2)
+        take_samples_of(grid, from, to, 2);
+    else
+        take_samples_of(grid, from, to, grid->count);
+}
+
+static bool all_at_rest(const struct grid *grid, size_t samples, double *sum,
+                        struct march *march) {
+    const struct march_setup *setup = grid->setup;
+    double width = ceil(setup->edge / setup->step);
+    size_t edge = width < (double)samples ? (size_t)width : samples;
+    bool reached = true;
     for (size_t end = 0; end < 2; end++)
         for (size_t k = 0; k < grid->count; k++) {
             const double *value = grid->value[end] + k * grid->room;
             sum[0] = 0;
             for (size_t i = 1; i < samples; i++)
                 sum[i] = sum[i - 1] + 0.5 * (value[i] + value[i - 1]);
-            struct rest rest = curve_rest(sum, samples, grid->setup->window, steps);
-            march->final[end][k] = rest.final;
-            march->unrest[end][k] = rest.unrest;
-            worst = fmax(worst, rest.unrest);
+            march->rest[end][k] = rest_of(sum, samples, setup->window, edge, setup->final[end][k]);
+            reached = reached && march->rest[end][k].reached;
         }
-    return worst;
+    return reached;
 }
 
 static bool step_on(struct grid *grid, struct arena *arena, struct march *march,
@@ -421,12 +398,6 @@ static bool step_on(struct grid *grid, struct arena *arena, struct march *march,
     size_t exact = setup->exact_steps, next_check = 2 * setup->window, samples = 0;
     size_t most = exact > 0 ? exact : setup->most_steps;
     double *sum = NULL;
-    for (size_t end = 0; end < 2; end++) {
-        march->final[end] = arena_new(arena, grid->count, double, error);
-        march->unrest[end] = arena_new(arena, grid->count, double, error);
-        if (!march->final[end] || !march->unrest[end])
-            return false;
-    }
     while (samples < most) {
         if (samples == grid->room) {
             size_t room = samples > 0  ? 2 * samples
@@ -438,11 +409,13 @@ static bool step_on(struct grid *grid, struct arena *arena, struct march *march,
             if (exact == 0 && sum == NULL)
                 return false;
         }
-        take_sample(grid, 0, samples);
-        take_sample(grid, 1, samples);
-        samples++;
+        size_t to = grid->room < most ? grid->room : most;
+        if (exact == 0 && next_check < to)
+            to = next_check;
+        take_samples(grid, samples, to);
+        samples = to;
         if (exact == 0 && (samples == next_check || samples == most)) {
-            if (samples > setup->window && worst_unrest(grid, samples, sum, march) <= AT_REST)
+            if (samples > setup->window && all_at_rest(grid, samples, sum, march))
                 break;
             next_check = samples + (setup->window > samples / 4 ? setup->window : samples / 4);
         }
@@ -535,7 +508,7 @@ bool march_run(const struct march_setup *setup, struct arena *arena, struct marc
     }
     for (size_t end = 0; end < 2; end++)
         grid.stepper[end] = stepper_of(setup->end[end], setup->step);
-    struct march run = {.count = grid.count, .step = setup->step};
+    struct march run = {.count = grid.count, .step = setup->step, .window = setup->window};
     if (!corrections_take(&grid, arena, error) || !step_on(&grid, arena, &run, error) ||
         !finish(&grid, arena, &run, error))
         return false;

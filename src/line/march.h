@@ -2,6 +2,7 @@
 #define LINE_MARCH_H
 
 #include "fronts.h"
+#include "rest.h"
 
 /* The step response of all ends on a uniform grid by the method of characteristics (Branin 1967,
  * for N modes): every mode carries its wave to the other end unchanged after its own delay, the
@@ -17,6 +18,7 @@ struct march_setup {
     double step;       /* s; fastest delay / step is an integer of at least 3: see stepper_of */
     size_t window;     /* steps over which everything must have come to rest */
     double edge;       /* s, > 0: the shortest that will be asked for */
+    double final[2][LINE_MOST_CONDUCTORS]; /* V, what all ends settle to; NAN where not known */
     size_t most_steps; /* give up then */
     size_t exact_steps; /* > 0: take exactly so many, without looking for rest */
 };
@@ -24,11 +26,10 @@ struct march_setup {
 struct march {
     size_t count;
     double step;
-    size_t samples;
+    size_t samples, window;
     double *value[2];    /* [count][samples] step response, V, near and far */
     double *integral[2]; /* [count][samples] its integral, V s */
-    double *final[2];    /* [count] mean of the last window, V */
-    double *unrest[2];   /* [count] what may still come, as a share of any peak; 0 = nothing */
+    struct rest rest[2][LINE_MOST_CONDUCTORS]; /* not set with exact_steps */
 };
 
 /* Results and scratch are both taken from `arena`. */

@@ -31,6 +31,7 @@ struct line_response {
 struct line_setup {
     const struct line_problem *problem;
     struct line_modes modes;
+    size_t driven;
     struct end_system near, far;
 };
 
@@ -52,6 +53,17 @@ static double settling_time(const struct line_problem *problem) {
     return slowest;
 }
 
+/* The lines are wires in the end: the EMF divides between the resistances of its conductor.  One
+ * with none at either end keeps a charge that only the march knows. */
+static double final_voltage(const struct line_problem *problem, size_t driven, size_t conductor) {
+    double near = problem->near[conductor].resistance, far = problem->far[conductor].resistance;
+    if (isinf(near) && isinf(far))
+        return NAN;
+    if (conductor != driven || isinf(near))
+        return 0;
+    return isinf(far) ? 1 : near + far > 0 ? far / (near + far) : NAN;
+}
+
 static bool grid_at(const struct line_setup *setup, const struct fronts *fronts, size_t passage,
                     double window, double edge, size_t exact_steps, struct arena *arena,
                     struct march *march,
@@ -68,6 +80,9 @@ static bool grid_at(const struct line_setup *setup, const struct fronts *fronts,
                                       .edge = edge,
                                       .most_steps = MOST_STEPS,
                                       .exact_steps = exact_steps};
+    for (size_t end = 0; end < 2; end++)
+        for (size_t k = 0; k < modes->count; k++)
+            march_setup.final[end][k] = final_voltage(setup->problem, setup->driven, k);
     return march_run(&march_setup, arena, march, error);
 }
 
@@ -105,13 +120,13 @@ static bool build_curves(const struct line_setup *setup, struct arena *arena,
                  fine.samples / 2, arena, &coarse, error))
         return false;
     for (size_t end = 0; end < 2; end++) {
-        if (!curves_build(&fine, &fronts, end == 0, arena, response->curve[end], error) ||
-            !curves_build(&coarse, &fronts, end == 0, arena, response->coarse[end], error))
+        if (!curves_build(&fine, fine.rest[end], &fronts, end == 0, arena, response->curve[end],
+                          error) ||
+            !curves_build(&coarse, fine.rest[end], &fronts, end == 0, arena,
+                          response->coarse[end], error))
             return false;
-        for (size_t k = 0; k < problem->count; k++) {
-            response->coarse[end][k].final = response->curve[end][k].final;
-            response->rest_error[end][k] = fine.unrest[end][k];
-        }
+        for (size_t k = 0; k < problem->count; k++)
+            response->rest_error[end][k] = fine.rest[end][k].error;
     }
     return true;
 }
@@ -119,7 +134,7 @@ static bool build_curves(const struct line_setup *setup, struct arena *arena,
 struct line_response *line_response_create(const struct line_problem *problem, size_t driven,
                                            double shortest_edge, struct arena *arena,
                                            struct error *error) {
-    struct line_setup setup = {.problem = problem};
+    struct line_setup setup = {.problem = problem, .driven = driven};
     if (!problem_check(problem, driven, error) || !line_modes(problem, &setup.modes, error))
         return NULL;
     if (!(shortest_edge > 0 && shortest_edge <= 1e6)) {
