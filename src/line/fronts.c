@@ -156,11 +156,10 @@ static double time_of(const struct lattice *lattice, uint64_t key) {
     return time;
 }
 
-/* The next front in key order, fed by every group whose predecessor exists: parent[group], or NULL.
- * False when there is none left. */
+/* The next front in key order, fed by every group whose predecessor exists; false when there is
+ * none left. */
 static bool merge_one(const struct lattice *lattice, const struct level *level,
-                      const struct fronts *fronts, size_t *head, uint64_t *key,
-                      struct front **parent) {
+                      const struct fronts *fronts, size_t *head, uint64_t *key) {
     *key = UINT64_MAX;
     for (size_t g = 0; g < lattice->groups; g++)
         if (head[g] < level->count) {
@@ -172,23 +171,16 @@ static bool merge_one(const struct lattice *lattice, const struct level *level,
     struct front *front = &fronts->front[fronts->count];
     memset(front->wave, 0, lattice->orders * lattice->count * sizeof(double));
     for (size_t g = 0; g < lattice->groups; g++) {
-        parent[g] = NULL;
-        if (head[g] < level->count &&
-            level->key[head[g]] + (UINT64_C(1) << (g * lattice->bits)) == *key)
-            parent[g] = &fronts->front[level->front[head[g]++]];
+        if (head[g] >= level->count ||
+            level->key[head[g]] + (UINT64_C(1) << (g * lattice->bits)) != *key)
+            continue;
+        const struct front *from = &fronts->front[level->front[head[g]++]];
+        for (size_t m = 0; m < lattice->count; m++)
+            if (lattice->group_of[m] == g)
+                for (size_t p = 0; p < lattice->orders; p++)
+                    front->wave[p * lattice->count + m] = from->leaving[p * lattice->count + m];
     }
-    for (size_t m = 0; m < lattice->count; m++)
-        if (parent[lattice->group_of[m]] != NULL)
-            for (size_t p = 0; p < lattice->orders; p++)
-                front->wave[p * lattice->count + m] =
-                    parent[lattice->group_of[m]]->leaving[p * lattice->count + m];
     return true;
-}
-
-static void mark_followed(const struct lattice *lattice, struct front *const *parent) {
-    for (size_t m = 0; m < lattice->count; m++)
-        if (parent[lattice->group_of[m]] != NULL)
-            parent[lattice->group_of[m]]->followed[m] = true;
 }
 
 static bool next_slot(const struct lattice *lattice, struct fronts *fronts, bool near,
@@ -198,16 +190,6 @@ static bool next_slot(const struct lattice *lattice, struct fronts *fronts, bool
     return front->wave != NULL || front_take(lattice, arena, front, error);
 }
 
-/* The level is left to the grid as a whole. */
-static void discard(const struct level *level, struct fronts *fronts, size_t before,
-                    struct level *next) {
-    for (size_t k = 0; k < level->count; k++)
-        memset(fronts->front[level->front[k]].followed, 0,
-               sizeof fronts->front[level->front[k]].followed);
-    fronts->count = before;
-    next->count = 0;
-}
-
 /* Every front of `level` goes on in each group of modes; the successors along one group keep the
  * order of their keys, so the next level is a merge of `groups` sorted lists. */
 static bool next_level(const struct lattice *lattice, const struct level *level, bool near,
@@ -215,7 +197,6 @@ static bool next_level(const struct lattice *lattice, const struct level *level,
                        struct error *error) {
     size_t head[MOST] = {0}, before = fronts->count;
     uint64_t key = 0;
-    struct front *parent[MOST];
     struct strength strongest = {0};
     next->count = 0;
     if (!level_reserve(next, lattice->groups * level->count, arena, error) ||
@@ -224,7 +205,7 @@ static bool next_level(const struct lattice *lattice, const struct level *level,
     for (;;) {
         if (!next_slot(lattice, fronts, near, arena, error))
             return false;
-        if (!merge_one(lattice, level, fronts, head, &key, parent))
+        if (!merge_one(lattice, level, fronts, head, &key))
             break;
         struct front *front = &fronts->front[fronts->count];
         struct strength strength = strength_of(lattice, front->wave);
@@ -234,13 +215,14 @@ static bool next_level(const struct lattice *lattice, const struct level *level,
         if (front->time > lattice->limit->latest || strength.best <= lattice->limit->smallest)
             continue;
         scatter(lattice, 0, front);
-        mark_followed(lattice, parent);
         next->key[next->count] = key;
         next->front[next->count++] = fronts->count++;
         fronts->front[fronts->count].wave = NULL;
     }
-    if (!converges(lattice, &strongest))
-        discard(level, fronts, before, next);
+    if (!converges(lattice, &strongest)) {
+        fronts->count = before;
+        next->count = 0;
+    }
     /* The slot left over belongs to this level's kind of end. */
     fronts->front[fronts->count].wave = NULL;
     return true;
@@ -263,12 +245,17 @@ bool fronts_follow(const struct line_modes *modes, double length, const struct e
     while (level.count > 0 && passages < most_passages &&
            followed.count + lattice.groups * level.count < limit->most) {
         passages++;
-        if (!next_level(&lattice, &level, passages % 2 == 0, &followed, arena, &next, error))
+        bool near_next = passages % 2 == 0;
+        if (!next_level(&lattice, &level, near_next, &followed, arena, &next, error))
             return false;
+        for (size_t k = 0; k < level.count && next.count == 0; k++)
+            followed.front[level.front[k]].last = true;
         struct level swap = level;
         level = next;
         next = swap;
     }
+    for (size_t k = 0; k < level.count; k++)
+        followed.front[level.front[k]].last = true;
     if (level.count > 0)
         followed.complete_until = lattice.delay[0] * (double)(passages + 1);
     *fronts = followed;

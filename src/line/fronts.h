@@ -20,7 +20,7 @@ struct front {
     double *leaving; /* [orders][count] jumps of the leaving modal waves */
     double *voltage; /* [orders][count] */
     double *state;   /* [orders][states] jumps of dx/dt, d2x/dt2 ... */
-    bool followed[LINE_MOST_CONDUCTORS]; /* per mode: its arrival at the other end is in the list */
+    bool last; /* what it sends on is not followed */
 };
 
 struct fronts {

@@ -134,7 +134,7 @@ static void correct_waves(struct grid *grid, const struct front *front) {
     size_t orders = grid->setup->fronts->orders, to = front->near ? 1 : 0;
     for (size_t m = 0; m < count; m++) {
         const struct delay *delay = &grid->delay[m];
-        if (delay->fraction == 0 || !front->followed[m])
+        if (delay->fraction == 0)
             continue;
         for (size_t back = 0; back < 3; back++) {
             double base = (double)first - (double)back; /* second stencil point */
@@ -230,8 +230,6 @@ static void blur_leaving(struct grid *grid, const struct front *front) {
             scale *= h;
         }
         for (size_t m = 0; m < count; m++) {
-            if (front->followed[m])
-                continue;
             const double *jump = front->leaving + m;
             double correction = 0;
             for (size_t p = 0; p < FRONT_ORDERS; p++)
@@ -262,8 +260,10 @@ static bool corrections_take(struct grid *grid, struct arena *arena, struct erro
             return false;
     }
     for (size_t k = 0; k < fronts->count; k++) {
-        correct_waves(grid, &fronts->front[k]);
-        blur_leaving(grid, &fronts->front[k]);
+        if (fronts->front[k].last)
+            blur_leaving(grid, &fronts->front[k]);
+        else
+            correct_waves(grid, &fronts->front[k]);
         if (k > 0) /* the first is the EMF's own step, integrated exactly by `drive` */
             correct_states(grid, &fronts->front[k]);
     }

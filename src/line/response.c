@@ -12,7 +12,9 @@ static const double EXACT_FRONT = 1e-10, GRID_FRONT = 3e-6;
 enum { MOST_EXACT_FRONTS = 20000, MOST_GRID_FRONTS = 4000, MOST_STEPS = 200000 };
 /* Grid steps per fastest time constant of the ends, and per passage of the fastest mode. */
 static const double STEPS_PER_CONSTANT = 16;
-enum { STEPS_PER_PASSAGE = 12 };
+enum { STEPS_PER_PASSAGE = 12, STEPS_PER_SHORT_PASSAGE = 6 };
+/* A passage is short when the shortest edge takes so many of them: hardly more than a lump. */
+static const double SHORT_PASSAGE = 30;
 /* Steps per shortest edge where fronts that no longer are followed blur over a step. */
 static const double STEPS_PER_EDGE = 16;
 /* A capacitance this much faster than the shortest edge is left out. */
@@ -92,8 +94,10 @@ static bool build_curves(const struct line_setup *setup, struct arena *arena,
     double passage = setup->modes.slowness[0] * problem->length;
     double slowest = setup->modes.slowness[problem->count - 1] * problem->length;
     double fastest = fmin(setup->near.fastest, setup->far.fastest);
+    size_t steps = passage * SHORT_PASSAGE < response->shortest_edge ? STEPS_PER_SHORT_PASSAGE
+                                                                       : STEPS_PER_PASSAGE;
     double per_passage = ceil(passage * STEPS_PER_CONSTANT / fastest);
-    double scale = fmin(fastest / STEPS_PER_CONSTANT, passage / STEPS_PER_PASSAGE);
+    double scale = fmin(fastest / STEPS_PER_CONSTANT, passage / (double)steps);
     /* A front that is dropped is late or early by part of a step; one that is kept with a series
      * that does not converge is wrong by its last term: the lesser evil of the two. */
     double converged = fmin(fmax(scale / response->shortest_edge, 0.01), 0.2);
@@ -109,7 +113,6 @@ static bool build_curves(const struct line_setup *setup, struct arena *arena,
     if (isfinite(fronts.complete_until))
         per_passage = fmax(per_passage,
                            ceil(passage * STEPS_PER_EDGE / response->shortest_edge));
-    size_t steps = STEPS_PER_PASSAGE;
     if (per_passage > (double)steps)
         steps = (size_t)fmin(per_passage, 1e5);
     steps += steps % 2;
