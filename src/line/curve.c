@@ -1,6 +1,6 @@
 /* Peak search.  With R the integral of the step response S, the response to a ramp of length e is
  * v(t) = (R(t) - R(t - e)) / e and its slope (S(t) - S(t - e)) / e.
- *   1. v on the grid (0 .. end, then e .. e + end) and at every front and one edge after it;
+ *   1. v on the grid, 0 .. end, then e .. e + end;
  *   2. cells that by their own and their neighbours' variation could hold more than the best so far
  *      are cut at fronts, at fronts + e and at the sample of t - e; inside a piece v is smooth and
  *      an extremum is a zero of its slope. */
@@ -260,11 +260,6 @@ static void visit_fine(const struct curve *curve, double edge, double offset, si
 
 struct line_peak curve_peak(const struct curve *curve, double edge) {
     struct line_peak peak = {0};
-    for (size_t f = 0; f < curve->fronts; f++) {
-        double time = curve->front[f].time;
-        offer(&peak, curve_response(curve, edge, time), time);
-        offer(&peak, curve_response(curve, edge, time + edge), time + edge);
-    }
     walk_grid(curve, edge, false, visit_coarse, &peak);
     walk_grid(curve, edge, true, visit_coarse, &peak);
     walk_grid(curve, edge, false, visit_fine, &peak);
