@@ -17,7 +17,7 @@ const struct model_output coupled_outputs[COUPLED_OUTPUT_COUNT] = {
     [COUPLED_FAR_END_PEAK] = {"far_end_peak", "far-end peak", "V<sub>far</sub>",
                               "Largest voltage at the victim's far end for one edge.",
                               DIMENSION_VOLTAGE, MODEL_HIGHER_IS_WORSE, NULL},
-    [COUPLED_WORST_PEAK] = {"worst_peak", "crosstalk peak, larger end", "V<sub>peak</sub>",
+    [COUPLED_WORST_PEAK] = {"worst_peak", "larger crosstalk peak", "V<sub>peak</sub>",
                             "The larger of the near-end and the far-end peak.", DIMENSION_VOLTAGE,
                             MODEL_HIGHER_IS_WORSE, NULL},
     [COUPLED_RECEIVER_PEAK] = {"receiver_peak", "crosstalk peak at the receiver", "V<sub>rec</sub>",

@@ -48,7 +48,7 @@ static const char *const aggressor_words[] = {"1", "2", "4", NULL};
 static const struct model_input inputs[INPUT_COUNT] = {
     [HEIGHT] = BOARD_HEIGHT,
     [WIDTH] = BOARD_WIDTH,
-    [VICTIM_WIDTH] = {"victim_width", "width of the victim; not given: as `width`",
+    [VICTIM_WIDTH] = {"victim_width", "width of the victim; not given: as the width",
                       DIMENSION_LENGTH, MODEL_SHAPE, NAN, 10e-6, 50e-3, false, "width", NULL, 0,
                       NULL},
     [GAP] = {"gap", "free distance between the feet of aggressor and victim", DIMENSION_LENGTH,

@@ -64,10 +64,10 @@ static const struct model_output outputs[OUTPUT_COUNT] = {
     [CAPACITANCE] = {"capacitance", "capacitance per length", "C",
                      "Capacitance to the plane per metre.", DIMENSION_CAPACITANCE_PER_LENGTH,
                      MODEL_NEITHER, NULL},
-    [RESISTANCE] = {"resistance", "resistance per length", "R", "Series resistance at `frequency`.",
+    [RESISTANCE] = {"resistance", "resistance per length", "R", "Series resistance at the frequency.",
                     DIMENSION_RESISTANCE_PER_LENGTH, MODEL_HIGHER_IS_WORSE, BOARD_LOSS_NOT_YET},
     [ATTENUATION] = {"attenuation", "attenuation per length", "α",
-                     "Loss along the trace at `frequency`.", DIMENSION_ATTENUATION,
+                     "Loss along the trace at the frequency.", DIMENSION_ATTENUATION,
                      MODEL_HIGHER_IS_WORSE, BOARD_LOSS_NOT_YET},
 };
 

@@ -142,7 +142,8 @@ static void methods(struct flow *flow) {
     for (size_t i = 0; i < model_count(); i++) {
         const struct model *model = model_at(i);
         flow_text(flow, THEME_NOTE,
-                  flow_print(flow, "Model %s, revision %u. %s", model->name, model->revision,
+                  flow_print(flow, "<b>Model %s</b>, revision %u. %s %s", model->name,
+                             model->revision, flow_escape(flow, model->method),
                              flow_escape(flow, model->validity)));
         flow_gap(flow, 3.0);
     }

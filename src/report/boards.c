@@ -29,7 +29,7 @@ static void board(struct flow *flow, const struct study_stackup *stackup) {
     struct drawing_options options = {.name = stackup->id,
                                       .lengths = flow->guideline->study->document.lengths,
                                       .width = width,
-                                      .most_height = 150.0};
+                                      .most_height = flow->guideline->study->stackup_count > 2 ? 118.0 : 150.0};
     struct drawing_report report;
     struct scene *drawing =
         drawing_stackup(stackup, &options, flow->setter, flow->arena, &report, flow->error);
@@ -116,7 +116,8 @@ void pages_signals(struct flow *flow) {
         signal_cells(flow, &study->signals[i], cells);
         rows[i] = (struct table_row){.cells = cells};
     }
-    const struct table_column columns[SIGNAL_COLUMNS] = {{.most = 90.0}};
+    const struct table_column columns[SIGNAL_COLUMNS] = {
+        [0] = {.most = 80.0}, [7] = {.least = 38.0}, [8] = {.least = 40.0}};
     const struct table_head heads[SIGNAL_COLUMNS] = {
         {"Class", 1},         {"Swing", 1},  {"Edge, as stated", 1},
         {"Edge, 0–100 %", 1}, {"Driver", 1}, {"Receiver load", 1},

@@ -15,17 +15,24 @@
 
 enum { MOST_SKETCHES = 4 };
 
-static bool sketch_of(struct flow *flow, const struct study_chapter *chapter, size_t v,
-                      struct sketch *sketch) {
+/* The sweep's middle shows the geometry better than its first point; no more digits than a
+ * dimension line can carry. */
+static double shown_point(const struct study_chapter *chapter) {
+    const struct study_vary *vary = &chapter->vary;
+    if (chapter->table_point_count > 0)
+        return chapter->table_points[chapter->table_point_count / 2];
+    double middle = vary->points[vary->logarithmic ? vary->point_count / 3 : vary->point_count / 2];
+    double unit = pow(10.0, floor(log10(fabs(middle))) - 1.0);
+    double rounded = round(middle / unit) * unit;
+    return isfinite(rounded) && rounded >= vary->points[0] ? rounded : middle;
+}
+
+static bool sketch_of(const struct study_chapter *chapter, size_t v, struct sketch *sketch) {
     double inputs[MODEL_MOST_INPUTS];
     for (size_t i = 0; i < chapter->model->input_count; i++)
         inputs[i] = chapter->variants[v].settings[i].value;
-    /* The sweep's middle shows the geometry better than its first point. */
-    const struct study_vary *vary = &chapter->vary;
-    inputs[vary->input] =
-        vary->points[vary->logarithmic ? vary->point_count / 3 : vary->point_count / 2];
+    inputs[chapter->vary.input] = shown_point(chapter);
     struct error ignored = {0};
-    (void)flow;
     return model_resolve(chapter->model, inputs, &ignored) && model_check(chapter->model, inputs, &ignored) &&
            chapter->model->sketch(inputs, sketch, &ignored);
 }
@@ -44,15 +51,15 @@ static bool same_picture(const struct sketch *a, const struct sketch *b) {
 
 /* At most four: distinct pictures, and where boards and something else are compared, those of the
  * first board. */
-static size_t choose(struct flow *flow, const struct study_chapter *chapter,
-                     struct sketch *sketches, size_t *variants) {
+static size_t choose(const struct study_chapter *chapter, struct sketch *sketches,
+                     size_t *variants) {
     size_t count = 0;
     bool many = chapter->variant_count > 3;
     for (size_t v = 0; v < chapter->variant_count && count < MOST_SKETCHES; v++) {
         struct sketch sketch;
         if (many && chapter->variants[v].stackup != chapter->variants[0].stackup)
             continue;
-        if (!sketch_of(flow, chapter, v, &sketch))
+        if (!sketch_of(chapter, v, &sketch))
             continue;
         bool seen = false;
         for (size_t i = 0; i < count; i++)
@@ -74,23 +81,14 @@ static const char *symbol(const char *input) {
     return input;
 }
 
-static void geometry(struct flow *flow, const struct study_chapter *chapter) {
-    if (chapter->model->sketch == NULL || flow_failed(flow))
-        return;
-    struct sketch *sketches = arena_new(flow->arena, MOST_SKETCHES, struct sketch, flow->error);
-    size_t variants[MOST_SKETCHES];
-    size_t count = sketches == NULL ? 0 : choose(flow, chapter, sketches, variants);
-    if (count == 0)
-        return;
-    double gutter = flow->page.gutter, all = flow->page.right - flow->page.left;
-    double width = (all - gutter * (double)(count - 1)) / (double)count;
-    if (count == 1)
-        width = 0.6 * all;
+static void geometry_row(struct flow *flow, const struct study_chapter *chapter,
+                         const struct sketch *sketches, const size_t *variants, size_t count,
+                         double width) {
     struct scene *drawings[MOST_SKETCHES];
     double tallest = 0.0, labels = 0.0;
     for (size_t i = 0; i < count; i++) {
         struct drawing_options options = {
-            .name = flow_print(flow, "%s-geometry-%zu", chapter->id, i + 1),
+            .name = flow_print(flow, "%s-geometry-%zu", chapter->id, variants[i] + 1),
             .lengths = flow->guideline->study->document.lengths,
             .width = width,
             .most_height = 150.0,
@@ -106,17 +104,37 @@ static void geometry(struct flow *flow, const struct study_chapter *chapter) {
             labels =
                 fmax(labels, flow_text_height(flow, THEME_LABEL, flow_escape(flow, label), width));
     }
-    flow_gap(flow, 8.0);
     flow_need(flow, tallest + labels + 4.0);
     for (size_t i = 0; i < count && !flow_failed(flow); i++) {
-        double x = flow->page.left + (width + gutter) * (double)i;
-        scene_place(flow->scene, drawings[i], x, flow->y + tallest - drawings[i]->height);
-        if (chapter->variants[variants[i]].label != NULL)
+        double x = flow->page.left + (width + flow->page.gutter) * (double)i;
+        const char *label = chapter->variants[variants[i]].label;
+        if (label != NULL)
             flow_text_box(flow, THEME_LABEL,
-                          flow_escape(flow, chapter->variants[variants[i]].label), x,
-                          flow->y + tallest + 2.0, width);
+                          flow_print(flow, "<b>%s</b>", flow_escape(flow, label)), x, flow->y,
+                          width);
+        scene_place(flow->scene, drawings[i], x,
+                    flow->y + labels + 2.0 + tallest - drawings[i]->height);
     }
-    flow->y += tallest + labels + 6.0;
+    flow->y += tallest + labels + 8.0;
+}
+
+static void geometry(struct flow *flow, const struct study_chapter *chapter) {
+    if (chapter->model->sketch == NULL || flow_failed(flow))
+        return;
+    struct sketch *sketches = arena_new(flow->arena, MOST_SKETCHES, struct sketch, flow->error);
+    size_t variants[MOST_SKETCHES];
+    size_t count = sketches == NULL ? 0 : choose(chapter, sketches, variants);
+    if (count == 0)
+        return;
+    double gutter = flow->page.gutter, all = flow->page.right - flow->page.left;
+    size_t columns = count > 3 ? 2 : count;
+    double width = (all - gutter * (double)(columns - 1)) / (double)columns;
+    if (count == 1)
+        width = 0.6 * all;
+    flow_gap(flow, 8.0);
+    for (size_t first = 0; first < count && !flow_failed(flow); first += columns)
+        geometry_row(flow, chapter, sketches + first, variants + first,
+                     count - first < columns ? count - first : columns, width);
 }
 
 /* ---- charts ---- */
@@ -136,6 +154,11 @@ static bool draws(const struct study_chart *chart, size_t output) {
     return false;
 }
 
+/* NAN stands for "as another input": two of them agree. */
+static bool differs(double left, double right) {
+    return left != right && !(isnan(left) && isnan(right));
+}
+
 /* A rule's limit and value belong into the chart when it judges what the curves show: no settings
  * of its own. */
 static bool judges_the_curves(const struct guideline_chapter *chapter,
@@ -148,8 +171,9 @@ static bool judges_the_curves(const struct guideline_chapter *chapter,
         if (a->aggressor != b->aggressor || a->victim != b->victim)
             return false;
         for (size_t i = 0; i < asked->model->input_count; i++)
-            if (i != asked->vary.input && (a->settings[i].range.from != b->settings[i].range.from ||
-                                           a->settings[i].range.to != b->settings[i].range.to))
+            if (i != asked->vary.input &&
+                (differs(a->settings[i].range.from, b->settings[i].range.from) ||
+                 differs(a->settings[i].range.to, b->settings[i].range.to)))
                 return false;
     }
     return true;
@@ -167,6 +191,21 @@ static bool has_band(const struct guideline_curve *curve, size_t count) {
         if (curve->low[i] < curve->y[i] || curve->high[i] > curve->y[i])
             return true;
     return false;
+}
+
+/* A board looks the same in every chapter that compares boards only. */
+static size_t style_of(const struct study *study, const struct study_chapter *chapter,
+                       size_t variant, size_t series) {
+    for (size_t v = 0; v < chapter->variant_count; v++)
+        for (size_t w = 0; w < v; w++)
+            if (chapter->variants[v].stackup == NULL ||
+                chapter->variants[v].stackup == chapter->variants[w].stackup)
+                return series;
+    for (size_t b = 0; b < study->stackup_count; b++)
+        if (&study->stackups[b] == chapter->variants[variant].stackup &&
+            series == variant)
+            return b;
+    return series;
 }
 
 static void add_series(struct flow *flow, const struct guideline_chapter *chapter,
@@ -196,7 +235,9 @@ static void add_series(struct flow *flow, const struct guideline_chapter *chapte
                                       .count = vary->point_count,
                                       .low = band ? curve->low : NULL,
                                       .high = band ? curve->high : NULL,
-                                      .style = plot->chart.series_count,
+                                      .style = style_of(flow->guideline->study,
+                                                        chapter->chapter, v,
+                                                        plot->chart.series_count),
                                       .doubtful = doubtful};
             plot->chart.series_count++;
         }
@@ -214,6 +255,14 @@ static double limit_of(const struct study_rule *rule, const struct study_variant
     if (rule->condition.against == STUDY_BUDGET && variant->victim != NULL)
         return variant->victim->noise_margin * variant->victim->share;
     return rule->condition.limit;
+}
+
+/* Two boards that come to the same value share one mark. */
+static bool is_marked(const struct plot *plot, double value) {
+    for (size_t i = 0; i < plot->chart.mark_count; i++)
+        if (plot->marks[i].x == value)
+            return true;
+    return false;
 }
 
 static void add_rule(struct flow *flow, const struct guideline_chapter *chapter,
@@ -234,6 +283,8 @@ static void add_rule(struct flow *flow, const struct guideline_chapter *chapter,
         }
         if (rule->find != chapter->chapter->vary.input || finding->status != GUIDELINE_FOUND ||
             plot->chart.mark_count == CHART_MOST_MARKS)
+            continue;
+        if (is_marked(plot, finding->value))
             continue;
         enum dimension dimension = chapter->chapter->model->inputs[rule->find].dimension;
         plot->marks[plot->chart.mark_count++] =
@@ -288,7 +339,8 @@ static struct scene *draw_chart(struct flow *flow, const struct guideline_chapte
     plot->chart.series = plot->series;
     plot->chart.limits = plot->limits;
     plot->chart.marks = plot->marks;
-    return chart_draw(&plot->chart, width, 232.0, flow->setter, flow->arena, NULL, flow->error);
+    double height = question->chart_count > 1 ? 180.0 : 232.0; /* two on a page */
+    return chart_draw(&plot->chart, width, height, flow->setter, flow->arena, NULL, flow->error);
 }
 
 static void charts(struct flow *flow, const struct guideline_chapter *chapter,
@@ -359,21 +411,22 @@ static void method(struct flow *flow, const struct guideline_chapter *chapter) {
         for (size_t i = 0; i < chapter->chapter->vary.point_count; i++)
             flags |= chapter->curves[c].flags[i];
     }
-    flow_gap(flow, 12.0);
-    flow_need(flow, 70.0);
-    flow_text(flow, THEME_STRONG, "Method and validity");
-    flow_gap(flow, 2.0);
-    flow_text(flow, THEME_NOTE, flow_escape(flow, model->method));
-    flow_text(flow, THEME_NOTE, flow_escape(flow, model->validity));
+    const char *text = flow_print(
+        flow, "Method of the model %s, revision %u: see Methods and sources. %s",
+        flow_escape(flow, model->name), model->revision, flow_escape(flow, model->validity));
     if (error > 0.0)
-        flow_text(flow, THEME_NOTE,
-                  flow_print(flow, "Largest estimated error along the curves: %s.",
-                             words_digits(flow, error, DIMENSION_RATIO, -1)));
+        text = flow_print(flow, "%s Largest estimated error along the curves: %s.", text,
+                          words_digits(flow, error, DIMENSION_RATIO, -1));
     for (size_t i = 0; i < model->flag_count; i++)
         if ((flags >> i & 1u) != 0)
-            flow_text(
-                flow, THEME_NOTE,
-                flow_print(flow, "Flagged here: %s", flow_escape(flow, model->flags[i].meaning)));
+            text = flow_print(flow, "%s Flagged here: %s", text,
+                              flow_escape(flow, model->flags[i].meaning));
+    double width = flow->page.right - flow->page.left;
+    flow_gap(flow, 10.0);
+    flow_need(flow, flow_text_height(flow, THEME_NOTE, text, width) + 20.0);
+    flow_text(flow, THEME_STRONG, "Method and validity");
+    flow_gap(flow, 2.0);
+    flow_text(flow, THEME_NOTE, text);
 }
 
 void pages_chapter(struct flow *flow, size_t index, struct pages_figure *figures,

@@ -16,7 +16,9 @@ static const char *number(struct flow *flow, double value) {
     int decimals = size >= 100.0 ? 0 : size >= 10.0 ? 1 : size >= 1.0 ? 2 : 3;
     if (size > 0.0 && size < 0.1)
         decimals = 4;
-    const char *text = flow_print(flow, "%.*f", decimals, size);
+    double coarse = size >= 1000.0 ? pow(10.0, floor(log10(size)) - 2.0) : 0.0;
+    const char *text =
+        flow_print(flow, "%.*f", decimals, coarse > 0.0 ? round(size / coarse) * coarse : size);
     return value < 0.0 ? flow_print(flow, "−%s", text) : text;
 }
 
@@ -28,14 +30,19 @@ static const struct guideline_curve *curve_of(const struct guideline_chapter *ch
     return NULL;
 }
 
-static double largest_of(const struct guideline_chapter *chapter, size_t output) {
-    double largest = 0.0;
+/* The unit that suits most numbers of a group is that of their geometric middle. */
+static double typical_of(const struct guideline_chapter *chapter, size_t output) {
+    double largest = 0.0, smallest = INFINITY;
     for (size_t c = 0; c < chapter->curve_count; c++)
         for (size_t i = 0;
-             chapter->curves[c].output == output && i < chapter->chapter->vary.point_count; i++)
-            if (isfinite(chapter->curves[c].y[i]))
-                largest = fmax(largest, fabs(chapter->curves[c].y[i]));
-    return largest;
+             chapter->curves[c].output == output && i < chapter->chapter->vary.point_count; i++) {
+            double size = fabs(chapter->curves[c].y[i]);
+            if (!isfinite(size) || size == 0.0)
+                continue;
+            largest = fmax(largest, size);
+            smallest = fmin(smallest, size);
+        }
+    return largest > 0.0 ? sqrt(largest * smallest) : 0.0;
 }
 
 /* Every output that some chart draws, once. */
@@ -84,7 +91,7 @@ static void one_table(struct flow *flow, const struct guideline_chapter *chapter
                                words_name(flow, input->name) + 1);
     for (size_t o = 0; o < output_count; o++) {
         const struct model_output *output = &asked->model->outputs[outputs[o]];
-        const char *unit = quantity_axis_unit(largest_of(chapter, outputs[o]), output->dimension,
+        const char *unit = quantity_axis_unit(typical_of(chapter, outputs[o]), output->dimension,
                                               QUANTITY_TYPOGRAPHIC,
                                               flow->guideline->study->document.lengths, &scales[o]);
         groups[1 + o] = (struct table_head){
@@ -118,7 +125,7 @@ static void one_table(struct flow *flow, const struct guideline_chapter *chapter
                           .head_count = variants > 1 || asked->variants[0].label != NULL ? 2 : 1,
                           .rows = rows,
                           .row_count = asked->table_point_count,
-                          .stretch = columns > 3};
+                          .stretch = columns > 5};
     flow_gap(flow, 10.0);
     flow_need(flow, 90.0);
     flow_table(flow, &table);

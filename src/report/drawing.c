@@ -223,17 +223,24 @@ static bool named_before(const struct sketch *sketch, size_t index) {
     return false;
 }
 
-static void draw_legend(struct drawing_frame *frame, const struct sketch *sketch, double y) {
+/* Rows of swatches; the baseline of the last one. */
+static double draw_legend(struct drawing_frame *frame, const struct sketch *sketch, double y) {
     double x = frame->left;
     for (size_t i = 0; i < sketch->solid_count; i++) {
         const struct sketch_solid *solid = &sketch->solids[i];
         if (solid->label == NULL || named_elsewhere(frame, solid) || named_before(sketch, i))
             continue;
+        double wide = 16 + drawing_width(frame, solid->label);
+        if (x > frame->left && x + wide > frame->options->width) {
+            x = frame->left;
+            y += LEGEND_ROW;
+        }
         struct theme_solid look = theme_solid(solid->role);
         drawing_solid(frame, &look, x + 0.5, y - 5.5, 12, 5.5);
         drawing_label(frame, solid->label, x + 16, y, SCENE_LEFT);
-        x += 16 + drawing_width(frame, solid->label) + 14;
+        x += wide + 14;
     }
+    return y;
 }
 
 /* The dielectric's and the plane's own names. */
@@ -253,10 +260,12 @@ static void name_layers(struct drawing_frame *frame, const struct sketch *sketch
 static double draw_below(struct drawing_frame *frame, const struct sketch *sketch, bool legend) {
     double y = frame->bottom + 11;
     name_layers(frame, sketch, y);
-    drawing_scale_bar(frame, frame->right, y - 2.8, 0.3 * (frame->right - frame->left));
+    /* Beside the plane's name where there is room, else in the column of the dimensions. */
+    bool narrow = frame->right - frame->left < 150;
+    drawing_scale_bar(frame, narrow ? frame->options->width : frame->right, y - 2.8,
+                      0.3 * (frame->right - frame->left));
     if (legend) {
-        y += LEGEND_ROW;
-        draw_legend(frame, sketch, y);
+        y = draw_legend(frame, sketch, y + LEGEND_ROW);
     }
     if (frame->report.copper_enlarged || frame->report.plane_enlarged) {
         y += LEGEND_ROW;

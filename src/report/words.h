@@ -30,7 +30,7 @@ const char *words_finding(struct flow *flow, const struct study_rule *rule,
 const char *words_finding_short(struct flow *flow, const struct study_rule *rule,
                                 const struct study_chapter *chapter,
                                 const struct guideline_finding *finding);
-/* "crosstalk peak, larger end ≤ 320 mV". */
+/* "larger crosstalk peak ≤ 320 mV". */
 const char *words_condition(struct flow *flow, const struct study_rule *rule,
                             const struct study_chapter *chapter,
                             const struct study_variant *variant);

@@ -1,4 +1,5 @@
 #include "draft.h"
+#include "groundrules/text.h"
 
 #include <stdint.h>
 #include <string.h>
@@ -38,6 +39,19 @@ static bool stands_alone(const struct reader *reader, const struct draft *draft,
     return true;
 }
 
+/* "gap 0.3 mm"; a word such as "floating" speaks for itself. */
+static const char *input_label(const struct reader *reader, const struct model_input *input,
+                               const char *value) {
+    struct text text = text_start(reader->arena, reader->error);
+    for (const char *at = input->name; input->words == NULL && *at != '\0'; at++)
+        text_format(&text, "%c", *at == '_' ? ' ' : *at);
+    if (input->words == NULL)
+        text_add(&text, " ");
+    for (const char *at = value; *at != '\0'; at++)
+        text_format(&text, "%c", input->words != NULL && *at == '-' ? ' ' : *at);
+    return text_end(&text);
+}
+
 static bool read_option(const struct reader *reader, const struct draft *draft,
                         const struct node *node, const struct axis *axis,
                         struct axis_option *option) {
@@ -46,7 +60,8 @@ static bool read_option(const struct reader *reader, const struct draft *draft,
         const struct model_input *input = &draft->chapter.model->inputs[axis->input];
         bool ok = given_setting(reader, node, input, &option->setting);
         option->setting.origin = STUDY_COMPARED;
-        return ok;
+        option->label = input_label(reader, input, node->text);
+        return ok && option->label != NULL;
     }
     if (axis->kind == AXIS_STACKUP) {
         option->stackup = boards_find(reader, node);
