@@ -49,16 +49,17 @@ bool curves_build(const struct march *march, const struct rest *rest, const stru
     memmove(first, first + 1, samples * sizeof *first);
     first[samples] = held;
     for (size_t k = 0; k < count; k++)
-        curves[k] = (struct curve){.step = march->step,
-                                   .samples = samples,
-                                   .value = march->value[end] + k * samples,
-                                   .integral = march->integral[end] + k * samples,
-                                   .final = rest[k].final,
-                                   .settled = rest_settled(march->integral[end] + k * samples, samples,
-                                                           window, march->step, rest[k].final),
-                                   .first = first,
-                                   .front = front + k * held,
-                                   .fronts = held};
+        curves[k] =
+            (struct curve){.step = march->step,
+                           .samples = samples,
+                           .value = march->value[end] + k * samples,
+                           .integral = march->integral[end] + k * samples,
+                           .final = rest[k].final,
+                           .settled = rest_settled(march->integral[end] + k * samples, samples,
+                                                   window, march->step, rest[k].final),
+                           .first = first,
+                           .front = front + k * held,
+                           .fronts = held};
     return true;
 }
 
@@ -201,8 +202,8 @@ static void grid_values(const struct curve *curve, double edge, bool falling, si
             shifted = curve->settled + curve->final * h * (cell + u);
         else {
             size_t i = (size_t)cell;
-            shifted = w0 * curve->integral[i] + d0 * curve->value[i] +
-                      w1 * curve->integral[i + 1] + d1 * curve->value[i + 1];
+            shifted = w0 * curve->integral[i] + d0 * curve->value[i] + w1 * curve->integral[i + 1] +
+                      d1 * curve->value[i + 1];
         }
         values[k] = sign * (shifted - curve->integral[start + k]);
     }

@@ -17,7 +17,7 @@ struct curve {
     size_t samples;
     const double *value, *integral; /* [samples] */
     double final, settled; /* after the last sample: final V, integral settled + final * time */
-    const size_t *first;            /* [samples + 1]: fronts of cell i are first[i] .. first[i+1]-1 */
+    const size_t *first;   /* [samples + 1]: fronts of cell i are first[i] .. first[i+1]-1 */
     const struct curve_front *front;
     size_t fronts;
 };

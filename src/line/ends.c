@@ -94,16 +94,16 @@ static bool node_voltages(const struct line_modes *modes, const struct nodes *no
 }
 
 static void fill_states(const struct line_modes *modes, const struct nodes *nodes,
-                        const struct line_end *ends, size_t driven,
-                        double voltage[MOST][INPUTS], struct end_system *system) {
+                        const struct line_end *ends, size_t driven, double voltage[MOST][INPUTS],
+                        struct end_system *system) {
     size_t count = modes->count, states = nodes->states;
     for (size_t i = 0; i < count; i++) {
         if (nodes->kind[i] != NODE_STATE)
             continue;
         size_t row = nodes->state[i];
         for (size_t input = 0; input <= states + count; input++) {
-            double current = forced(modes, nodes, i, input, driven) -
-                             nodes->conductance[i] * voltage[i][input];
+            double current =
+                forced(modes, nodes, i, input, driven) - nodes->conductance[i] * voltage[i][input];
             for (size_t j = 0; j < count; j++)
                 current -= modes->characteristic_admittance[i * count + j] * voltage[j][input];
             double slope = current / ends[i].capacitance;

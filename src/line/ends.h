@@ -10,17 +10,17 @@
  * From  Cend dV/dt + (G + Yc) V = 2 Yc T b + G e  and  a = T' C V - b.  An end of 0 ohm has V = e;
  * an open one has G = 0; both are ordinary. All matrices row major. */
 struct end_system {
-    size_t count;  /* conductors = modes */
-    size_t states; /* ends with a capacitance */
-    double state[LINE_MOST_CONDUCTORS * LINE_MOST_CONDUCTORS];              /* A [states][states] */
-    double state_of_wave[LINE_MOST_CONDUCTORS * LINE_MOST_CONDUCTORS];      /* B [states][count] */
-    double state_of_emf[LINE_MOST_CONDUCTORS];                              /* Be */
-    double voltage_of_state[LINE_MOST_CONDUCTORS * LINE_MOST_CONDUCTORS];   /* Vx [count][states] */
-    double voltage_of_wave[LINE_MOST_CONDUCTORS * LINE_MOST_CONDUCTORS];    /* Vb [count][count] */
-    double voltage_of_emf[LINE_MOST_CONDUCTORS];                            /* Ve */
-    double leaving_of_state[LINE_MOST_CONDUCTORS * LINE_MOST_CONDUCTORS];   /* Ax [count][states] */
-    double leaving_of_wave[LINE_MOST_CONDUCTORS * LINE_MOST_CONDUCTORS];    /* Ab [count][count] */
-    double leaving_of_emf[LINE_MOST_CONDUCTORS];                            /* Ae */
+    size_t count;                                                      /* conductors = modes */
+    size_t states;                                                     /* ends with a capacitance */
+    double state[LINE_MOST_CONDUCTORS * LINE_MOST_CONDUCTORS];         /* A [states][states] */
+    double state_of_wave[LINE_MOST_CONDUCTORS * LINE_MOST_CONDUCTORS]; /* B [states][count] */
+    double state_of_emf[LINE_MOST_CONDUCTORS];                         /* Be */
+    double voltage_of_state[LINE_MOST_CONDUCTORS * LINE_MOST_CONDUCTORS]; /* Vx [count][states] */
+    double voltage_of_wave[LINE_MOST_CONDUCTORS * LINE_MOST_CONDUCTORS];  /* Vb [count][count] */
+    double voltage_of_emf[LINE_MOST_CONDUCTORS];                          /* Ve */
+    double leaving_of_state[LINE_MOST_CONDUCTORS * LINE_MOST_CONDUCTORS]; /* Ax [count][states] */
+    double leaving_of_wave[LINE_MOST_CONDUCTORS * LINE_MOST_CONDUCTORS];  /* Ab [count][count] */
+    double leaving_of_emf[LINE_MOST_CONDUCTORS];                          /* Ae */
     double fastest; /* s, smallest time constant of the states; INFINITY when there are none */
 };
 

@@ -53,8 +53,8 @@ static void fill_equations(const struct line_problem *problem, const struct line
     for (size_t i = 0; i < count; i++)
         for (size_t m = 0; m < count; m++)
             for (size_t j = 0; j < count; j++)
-                current[i * count + m] += modes->characteristic_admittance[i * count + j] *
-                                          modes->voltage[j * count + m];
+                current[i * count + m] +=
+                    modes->characteristic_admittance[i * count + j] * modes->voltage[j * count + m];
     equations->size = 2 * count;
     for (size_t i = 0; i < count; i++) {
         fill_row(problem, modes, i, &near[i], delay, s, current, equations);
@@ -66,9 +66,8 @@ static void fill_equations(const struct line_problem *problem, const struct line
 static bool solve(struct equations *equations, size_t columns, struct error *error) {
     lapack_int pivots[MOST];
     lapack_int n = (lapack_int)equations->size;
-    lapack_int info =
-        LAPACKE_zgesv(LAPACK_ROW_MAJOR, n, (lapack_int)columns, equations->matrix, n, pivots,
-                      equations->right, (lapack_int)columns);
+    lapack_int info = LAPACKE_zgesv(LAPACK_ROW_MAJOR, n, (lapack_int)columns, equations->matrix, n,
+                                    pivots, equations->right, (lapack_int)columns);
     bool finite = true;
     for (size_t k = 0; k < equations->size * columns; k++)
         finite = finite && isfinite(creal(equations->right[k])) &&
@@ -93,7 +92,8 @@ static double complex end_voltage(const struct line_modes *modes, const double c
     return sum;
 }
 
-/* Waves are of the order of EMF/T, about 1e-6: unit columns keep the bound in `solve` meaningful. */
+/* Waves are of the order of EMF/T, about 1e-6: unit columns keep the bound in `solve` meaningful.
+ */
 static void scale_columns(struct line_modes *modes) {
     double largest = 0;
     size_t entries = modes->count * modes->count;

@@ -130,8 +130,8 @@ static struct strength strength_of(const struct lattice *lattice, const double *
     for (size_t p = 0; p < lattice->orders; p++) {
         double largest = 0;
         for (size_t m = 0; m < lattice->count; m++)
-            largest = fmax(largest,
-                           factor * lattice->unit[m] * fabs(jumps[p * lattice->count + m]));
+            largest =
+                fmax(largest, factor * lattice->unit[m] * fabs(jumps[p * lattice->count + m]));
         factor *= lattice->limit->scale / (double)(p + 1);
         found.best = fmax(found.best, largest);
         found.last = p + 1 == FRONT_ORDERS ? largest : 0;

@@ -15,12 +15,12 @@ enum { FRONT_ORDERS = 4 }; /* jump of the value and of three derivatives */
 
 struct front {
     double time;
-    bool near;      /* where it arrives */
-    double *wave;   /* [orders][count] jumps of the arriving modal waves */
+    bool near;       /* where it arrives */
+    double *wave;    /* [orders][count] jumps of the arriving modal waves */
     double *leaving; /* [orders][count] jumps of the leaving modal waves */
     double *voltage; /* [orders][count] */
     double *state;   /* [orders][states] jumps of dx/dt, d2x/dt2 ... */
-    bool last; /* what it sends on is not followed */
+    bool last;       /* what it sends on is not followed */
 };
 
 struct fronts {
@@ -31,10 +31,10 @@ struct fronts {
 };
 
 struct fronts_limit {
-    double smallest; /* fronts below this share of the first one are dropped */
-    size_t most;     /* no more fronts than this */
-    double latest;   /* s */
-    double scale;    /* s, the time over which derivatives are compared with jumps */
+    double smallest;  /* fronts below this share of the first one are dropped */
+    size_t most;      /* no more fronts than this */
+    double latest;    /* s */
+    double scale;     /* s, the time over which derivatives are compared with jumps */
     double converged; /* largest share of the last derivative in a front that is followed */
 };
 

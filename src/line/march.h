@@ -15,20 +15,20 @@ struct march_setup {
     double length;
     const struct end_system *end[2]; /* near, far */
     const struct fronts *fronts;
-    double step;       /* s; fastest delay / step is an integer of at least 3: see stepper_of */
-    size_t window;     /* steps over which everything must have come to rest */
-    double edge;       /* s, > 0: the shortest that will be asked for */
+    double step;   /* s; fastest delay / step is an integer of at least 3: see stepper_of */
+    size_t window; /* steps over which everything must have come to rest */
+    double edge;   /* s, > 0: the shortest that will be asked for */
     double final[2][LINE_MOST_CONDUCTORS]; /* V, what all ends settle to; NAN where not known */
-    size_t most_steps; /* give up then */
-    size_t exact_steps; /* > 0: take exactly so many, without looking for rest */
+    size_t most_steps;                     /* give up then */
+    size_t exact_steps;                    /* > 0: take exactly so many, without looking for rest */
 };
 
 struct march {
     size_t count;
     double step;
     size_t samples, window;
-    double *value[2];    /* [count][samples] step response, V, near and far */
-    double *integral[2]; /* [count][samples] its integral, V s */
+    double *value[2];                          /* [count][samples] step response, V, near and far */
+    double *integral[2];                       /* [count][samples] its integral, V s */
     struct rest rest[2][LINE_MOST_CONDUCTORS]; /* not set with exact_steps */
 };
 

@@ -18,7 +18,8 @@ static bool one_mode(const struct line_problem *problem, struct line_modes *mode
     return true;
 }
 
-/* With C = G G' (G lower triangular), G' L G is symmetric with the same eigenvalues and T = G'^-1 Q.
+/* With C = G G' (G lower triangular), G' L G is symmetric with the same eigenvalues and T = G'^-1
+ * Q.
  */
 static bool two_modes(const struct line_problem *problem, struct line_modes *modes) {
     const double *l = problem->inductance, *c = problem->capacitance;

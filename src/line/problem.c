@@ -42,8 +42,8 @@ bool problem_check_matrices(const struct line_problem *problem, struct error *er
     for (size_t i = 0; i < count; i++)
         for (size_t j = 0; j < count; j++) {
             double entry = problem->capacitance[i * count + j];
-            double scale = sqrt(problem->capacitance[i * count + i] *
-                                problem->capacitance[j * count + j]);
+            double scale =
+                sqrt(problem->capacitance[i * count + i] * problem->capacitance[j * count + j]);
             if (i != j && entry > SYMMETRY * scale)
                 return error_set(error, ERROR_INPUT,
                                  "capacitance[%zu][%zu] is %g F/m: a Maxwell matrix has no "
@@ -53,16 +53,14 @@ bool problem_check_matrices(const struct line_problem *problem, struct error *er
     return true;
 }
 
-static bool check_end(const struct line_end *end, const char *name, size_t i,
-                      struct error *error) {
+static bool check_end(const struct line_end *end, const char *name, size_t i, struct error *error) {
     if (!(end->resistance >= 0))
         return error_set(error, ERROR_INPUT,
                          "%s[%zu]: resistance is %g ohm, must be 0 or above (infinite = open)",
                          name, i, end->resistance);
     if (!(end->capacitance >= 0 && end->capacitance <= 1))
-        return error_set(error, ERROR_INPUT,
-                         "%s[%zu]: capacitance is %g F, must be within 0 and 1", name, i,
-                         end->capacitance);
+        return error_set(error, ERROR_INPUT, "%s[%zu]: capacitance is %g F, must be within 0 and 1",
+                         name, i, end->capacitance);
     return true;
 }
 

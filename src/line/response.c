@@ -26,8 +26,8 @@ struct line_response {
     bool exact;
     struct staircase staircase[2];
     struct curve curve[2][LINE_MOST_CONDUCTORS];
-    struct curve coarse[2][LINE_MOST_CONDUCTORS];   /* the same on twice the step */
-    double rest_error[2][LINE_MOST_CONDUCTORS];     /* relative: what may follow the window */
+    struct curve coarse[2][LINE_MOST_CONDUCTORS]; /* the same on twice the step */
+    double rest_error[2][LINE_MOST_CONDUCTORS];   /* relative: what may follow the window */
 };
 
 struct line_setup {
@@ -49,8 +49,8 @@ static double settling_time(const struct line_problem *problem) {
         if (conductance > 0 && isfinite(conductance))
             slowest = fmax(slowest, (own + near->capacitance + far->capacitance) / conductance);
         if (series > 0 && isfinite(series))
-            slowest = fmax(slowest, problem->inductance[i * problem->count + i] *
-                                        problem->length / series);
+            slowest = fmax(slowest,
+                           problem->inductance[i * problem->count + i] * problem->length / series);
     }
     return slowest;
 }
@@ -68,8 +68,7 @@ static double final_voltage(const struct line_problem *problem, size_t driven, s
 
 static bool grid_at(const struct line_setup *setup, const struct fronts *fronts, size_t passage,
                     double window, double edge, size_t exact_steps, struct arena *arena,
-                    struct march *march,
-                    struct error *error) {
+                    struct march *march, struct error *error) {
     const struct line_modes *modes = &setup->modes;
     double step = modes->slowness[0] * setup->problem->length / (double)passage;
     double steps = fmin(ceil(window / step), MOST_STEPS / 2);
@@ -95,7 +94,7 @@ static bool build_curves(const struct line_setup *setup, struct arena *arena,
     double slowest = setup->modes.slowness[problem->count - 1] * problem->length;
     double fastest = fmin(setup->near.fastest, setup->far.fastest);
     size_t steps = passage * SHORT_PASSAGE < response->shortest_edge ? STEPS_PER_SHORT_PASSAGE
-                                                                       : STEPS_PER_PASSAGE;
+                                                                     : STEPS_PER_PASSAGE;
     double per_passage = ceil(passage * STEPS_PER_CONSTANT / fastest);
     double scale = fmin(fastest / STEPS_PER_CONSTANT, passage / (double)steps);
     /* A front that is dropped is late or early by part of a step; one that is kept with a series
@@ -111,22 +110,21 @@ static bool build_curves(const struct line_setup *setup, struct arena *arena,
                        &fronts, error))
         return false;
     if (isfinite(fronts.complete_until))
-        per_passage = fmax(per_passage,
-                           ceil(passage * STEPS_PER_EDGE / response->shortest_edge));
+        per_passage = fmax(per_passage, ceil(passage * STEPS_PER_EDGE / response->shortest_edge));
     if (per_passage > (double)steps)
         steps = (size_t)fmin(per_passage, 1e5);
     steps += steps % 2;
     double window = fmax(4 * slowest, 2 * settling_time(problem));
     struct march fine, coarse;
     if (!grid_at(setup, &fronts, steps, window, response->shortest_edge, 0, arena, &fine, error) ||
-        !grid_at(setup, &fronts, steps / 2, window, response->shortest_edge,
-                 fine.samples / 2, arena, &coarse, error))
+        !grid_at(setup, &fronts, steps / 2, window, response->shortest_edge, fine.samples / 2,
+                 arena, &coarse, error))
         return false;
     for (size_t end = 0; end < 2; end++) {
         if (!curves_build(&fine, fine.rest[end], &fronts, end == 0, arena, response->curve[end],
                           error) ||
-            !curves_build(&coarse, fine.rest[end], &fronts, end == 0, arena,
-                          response->coarse[end], error))
+            !curves_build(&coarse, fine.rest[end], &fronts, end == 0, arena, response->coarse[end],
+                          error))
             return false;
         for (size_t k = 0; k < problem->count; k++)
             response->rest_error[end][k] = fine.rest[end][k].error;
@@ -184,8 +182,9 @@ static bool check_question(const struct line_response *response, size_t victim, 
         return error_set(error, ERROR_INPUT, "conductor is %zu, there are %zu (from 0)", victim,
                          response->count);
     if (!(edge >= response->shortest_edge * (1 - 1e-12) && edge <= 1e9))
-        return error_set(error, ERROR_INPUT, "edge is %g s, must be within %g (prepared for) and %g",
-                         edge, response->shortest_edge, 1e9);
+        return error_set(error, ERROR_INPUT,
+                         "edge is %g s, must be within %g (prepared for) and %g", edge,
+                         response->shortest_edge, 1e9);
     return true;
 }
 

@@ -6,15 +6,15 @@
 
 /* Whether a sampled step response has told all that ramps will ask, judged on its integral R less
  * the part of its final value:
- *   - of a ramp as short as is asked for, (R(t) - R(t - e)) / e, what the last window still shows is
- *     far below the peak already seen, or a small share of it;
+ *   - of a ramp as short as is asked for, (R(t) - R(t - e)) / e, what the last window still shows
+ * is far below the peak already seen, or a small share of it;
  *   - R itself, to which slow ramps come down, swings by a small share of its range about the mean
  *     of the last window.
  * Fast ringing that no ramp will show (capacitances at both ends of a lossless line keep it up) is
  * no reason to go on. */
 struct rest {
-    double final;   /* V */
-    double error;   /* what may still come, as a share of any peak */
+    double final; /* V */
+    double error; /* what may still come, as a share of any peak */
     bool reached;
 };
 

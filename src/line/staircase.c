@@ -30,8 +30,7 @@ bool staircase_build(const struct fronts *fronts, size_t count, bool near, struc
     size_t filled = 0;
     for (size_t k = 0; k < fronts->count; k++)
         if (fronts->front[k].near == near)
-            order[filled++] =
-                (struct order){fronts->front[k].time, fronts->front[k].voltage};
+            order[filled++] = (struct order){fronts->front[k].time, fronts->front[k].voltage};
     qsort(order, steps, sizeof *order, by_time);
     for (size_t k = 0; k < steps; k++)
         built.time[k] = order[k].time;

@@ -33,7 +33,8 @@ static bool sketch_of(const struct study_chapter *chapter, size_t v, struct sket
         inputs[i] = chapter->variants[v].settings[i].value;
     inputs[chapter->vary.input] = shown_point(chapter);
     struct error ignored = {0};
-    return model_resolve(chapter->model, inputs, &ignored) && model_check(chapter->model, inputs, &ignored) &&
+    return model_resolve(chapter->model, inputs, &ignored) &&
+           model_check(chapter->model, inputs, &ignored) &&
            chapter->model->sketch(inputs, sketch, &ignored);
 }
 
@@ -202,8 +203,7 @@ static size_t style_of(const struct study *study, const struct study_chapter *ch
                 chapter->variants[v].stackup == chapter->variants[w].stackup)
                 return series;
     for (size_t b = 0; b < study->stackup_count; b++)
-        if (&study->stackups[b] == chapter->variants[variant].stackup &&
-            series == variant)
+        if (&study->stackups[b] == chapter->variants[variant].stackup && series == variant)
             return b;
     return series;
 }
@@ -235,8 +235,7 @@ static void add_series(struct flow *flow, const struct guideline_chapter *chapte
                                       .count = vary->point_count,
                                       .low = band ? curve->low : NULL,
                                       .high = band ? curve->high : NULL,
-                                      .style = style_of(flow->guideline->study,
-                                                        chapter->chapter, v,
+                                      .style = style_of(flow->guideline->study, chapter->chapter, v,
                                                         plot->chart.series_count),
                                       .doubtful = doubtful};
             plot->chart.series_count++;

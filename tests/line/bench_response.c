@@ -19,8 +19,7 @@ static bool run(double length, bool resistive, double *micro, double *claimed) {
                                    .capacitance = {4.7e-11, -1.1e-11, -1.1e-11, 4.7e-11}};
     for (size_t i = 0; i < 2; i++) {
         problem.near[i] = (struct line_end){25, 0};
-        problem.far[i] =
-            resistive ? (struct line_end){100, 0} : (struct line_end){INFINITY, 5e-12};
+        problem.far[i] = resistive ? (struct line_end){100, 0} : (struct line_end){INFINITY, 5e-12};
     }
     struct error error = {0};
     double start = now();

@@ -52,8 +52,8 @@ static inline struct stepping_modes stepping_modes_of(const struct line_problem 
             made.admittance[i][j] = 0;
             for (int k = 0; k < 2; k++)
                 for (int m = 0; m < 2; m++)
-                    made.admittance[i][j] += inverse_l[i][k] * made.voltage[k][m] *
-                                             made.slowness[m] * inverse[m][j];
+                    made.admittance[i][j] +=
+                        inverse_l[i][k] * made.voltage[k][m] * made.slowness[m] * inverse[m][j];
         }
     return made;
 }
@@ -70,8 +70,8 @@ static inline void stepping_advance(const struct stepping_modes *modes, const st
     for (int i = 0; i < 2; i++) {
         double conductance = end[i].resistance > 0 ? 1 / end[i].resistance : 1e9;
         double companion = 2 * end[i].capacitance / step;
-        right[i] = companion * state->voltage[i] + state->current[i] +
-                   (i == 0 ? conductance * emf : 0);
+        right[i] =
+            companion * state->voltage[i] + state->current[i] + (i == 0 ? conductance * emf : 0);
         for (int j = 0; j < 2; j++) {
             m[i][j] = modes->admittance[i][j] + (i == j ? conductance + companion : 0);
             right[i] += 2 * modes->admittance[i][j] * incident[j];
@@ -91,8 +91,8 @@ static inline void stepping_advance(const struct stepping_modes *modes, const st
 static inline struct stepping_peak stepping_peaks(const struct line_problem *problem, double edge,
                                                   double step, size_t steps) {
     struct stepping_modes modes = stepping_modes_of(problem);
-    double det = modes.voltage[0][0] * modes.voltage[1][1] -
-                 modes.voltage[0][1] * modes.voltage[1][0];
+    double det =
+        modes.voltage[0][0] * modes.voltage[1][1] - modes.voltage[0][1] * modes.voltage[1][0];
     double *leaving[2][2]; /* end, mode */
     for (int k = 0; k < 4; k++)
         leaving[k / 2][k % 2] = calloc(steps + 1, sizeof(double));

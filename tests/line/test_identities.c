@@ -59,8 +59,8 @@ static void test_power_balances(void **state) {
             struct line_problem problem = chain(count, 1000 + 31 * count + (uint64_t)k);
             double complex near[MOST], far[MOST];
             struct error error = {0};
-            assert_ok(line_frequency_response(&problem, 0, 1e6 * pow(10, 0.45 * k), near, far,
-                                              &error));
+            assert_ok(
+                line_frequency_response(&problem, 0, 1e6 * pow(10, 0.45 * k), near, far, &error));
             double given = creal(1 - near[0]) / problem.near[0].resistance, taken = 0;
             for (size_t i = 0; i < count; i++) {
                 double complex across = i == 0 ? 1 - near[i] : near[i];
@@ -74,10 +74,8 @@ static void test_power_balances(void **state) {
 static struct line_problem homogeneous(double even, double odd, double slowness, double length) {
     double l = slowness * (even + odd) / 2, m = slowness * (even - odd) / 2;
     double c = slowness * (1 / even + 1 / odd) / 2, cm = slowness * (1 / odd - 1 / even) / 2;
-    struct line_problem problem = {.count = 2,
-                                   .length = length,
-                                   .inductance = {l, m, m, l},
-                                   .capacitance = {c, -cm, -cm, c}};
+    struct line_problem problem = {
+        .count = 2, .length = length, .inductance = {l, m, m, l}, .capacitance = {c, -cm, -cm, c}};
     for (size_t i = 0; i < 2; i++)
         problem.near[i] = problem.far[i] = (struct line_end){sqrt(even * odd), 0};
     return problem;
@@ -219,8 +217,8 @@ static void test_two_conductors_may_swap_roles(void **state) {
         struct line_response *response =
             line_response_create(&problem, driven, 1e-9, arena, &error);
         assert_ok(response != NULL);
-        assert_ok(line_response_peaks(response, 1 - driven, 1e-9, &near[driven], &far[driven],
-                                      &error));
+        assert_ok(
+            line_response_peaks(response, 1 - driven, 1e-9, &near[driven], &far[driven], &error));
         arena_free(arena);
     }
     assert_close(near[0].highest, near[1].highest, 1e-3);

@@ -63,8 +63,8 @@ static void test_lands_of_a_bare_board(void **state) {
     for (size_t k = 0; k < sizeof values / sizeof *values; k++) {
         struct error error = {0};
         double complex at_near[2], at_far[2];
-        assert_ok(line_frequency_response(&problem, 1, values[k].frequency, at_near, at_far,
-                                          &error));
+        assert_ok(
+            line_frequency_response(&problem, 1, values[k].frequency, at_near, at_far, &error));
         assert_close(cabs(at_near[0]), values[k].near, 1e-5);
         assert_close(cabs(at_far[0]), values[k].far, 1e-5);
     }
@@ -89,8 +89,8 @@ static void test_both_by_fine_stepping(void **state) {
         struct line_problem problem = pair(cases[k].l, cases[k].c, cases[k].length);
         struct line_peak near, far;
         peaks_of(&problem, 0, 1, cases[k].edge, &near, &far);
-        struct stepping_peak want =
-            stepping_peaks(&problem, cases[k].edge, cases[k].step, (size_t)(100e-9 / cases[k].step));
+        struct stepping_peak want = stepping_peaks(&problem, cases[k].edge, cases[k].step,
+                                                   (size_t)(100e-9 / cases[k].step));
         assert_close(near.highest, want.near, 2e-4);
         assert_close(far.highest, want.far, 2e-4);
     }

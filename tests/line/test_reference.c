@@ -10,8 +10,8 @@ static struct line_problem problem_of(const struct pair_reference *reference) {
                                    .capacitance = {c[0], c[1], c[1], c[0]}};
     for (size_t i = 0; i < 2; i++) {
         problem.near[i] = (struct line_end){reference->logic ? 30 : 50, 0};
-        problem.far[i] = reference->logic ? (struct line_end){INFINITY, 5e-12}
-                                          : (struct line_end){50, 0};
+        problem.far[i] =
+            reference->logic ? (struct line_end){INFINITY, 5e-12} : (struct line_end){50, 0};
     }
     return problem;
 }

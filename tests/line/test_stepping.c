@@ -4,8 +4,8 @@
 #include "stepping.h"
 
 static const struct line_end ends[] = {
-    {25, 0},     {100, 0},         {1000, 10e-12},    {INFINITY, 5e-12},
-    {50, 2e-12}, {1e5, 22e-12},    {INFINITY, 0},     {200, 100e-12},
+    {25, 0},     {100, 0},      {1000, 10e-12}, {INFINITY, 5e-12},
+    {50, 2e-12}, {1e5, 22e-12}, {INFINITY, 0},  {200, 100e-12},
 };
 enum { ENDS = sizeof ends / sizeof *ends };
 
