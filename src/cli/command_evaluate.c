@@ -6,6 +6,7 @@
 #include "point.h"
 
 #include <math.h>
+#include <string.h>
 #include <stdio.h>
 
 struct answer {
@@ -144,19 +145,29 @@ static bool take_board(const struct options *options, struct point *point, struc
     return true;
 }
 
-static bool find_model(const struct options *options, struct point *point, struct error *error) {
-    if (options->word_count == 0)
+/* The model may stand before or after name=value words. */
+static size_t model_word(const struct options *options) {
+    size_t i = 0;
+    while (i < options->word_count && strchr(options->words[i], '=') != NULL)
+        i++;
+    return i;
+}
+
+static bool find_model(const struct options *options, size_t word, struct point *point,
+                       struct error *error) {
+    if (word == options->word_count)
         return error_set(error, ERROR_USAGE, "evaluate needs a model; see groundrules models");
-    point->model = model_find(options->words[0]);
+    const char *name = options->words[word];
+    point->model = model_find(name);
     if (point->model != NULL)
         return true;
     const char *names[64];
     size_t count = model_count() < 64 ? model_count() : 64;
     for (size_t i = 0; i < count; i++)
         names[i] = model_at(i)->name;
-    const char *nearest = text_nearest(options->words[0], names, count);
+    const char *nearest = text_nearest(name, names, count);
     return error_set(error, ERROR_INPUT, "there is no model '%s'%s%s%s; see groundrules models",
-                     options->words[0], nearest != NULL ? "; did you mean " : "",
+                     name, nearest != NULL ? "; did you mean " : "",
                      nearest != NULL ? nearest : "", nearest != NULL ? "?" : "");
 }
 
@@ -165,9 +176,11 @@ static enum exit_code evaluate(const struct options *options, struct arena *aren
     struct point point = {0};
     struct answer answer = {0};
     enum exit_code code = EXIT_DONE;
-    if (!find_model(options, &point, &error))
+    size_t word = model_word(options);
+    if (!find_model(options, word, &point, &error))
         return report_error(&error);
-    point_read(&point, options->words + 1, options->word_count - 1);
+    point_read(&point, options->words, word);
+    point_read(&point, options->words + word + 1, options->word_count - word - 1);
     if (point.wrong > 0)
         return EXIT_STUDY;
     if (!take_board(options, &point, arena, &code, &error))

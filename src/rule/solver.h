@@ -32,8 +32,8 @@ bool solver_start(struct solver *solver, const struct model *model, struct model
 /* Takes a solver that was zeroed and never started, too. */
 void solver_end(struct solver *solver);
 
-/* Inputs that are NAN take their standard or same_as value.  NULL on failure: the message names the inputs.  Lives as long as the
- * solver. */
+/* Inputs that are NAN take their standard or same_as value.  NULL on failure: the message names the
+ * inputs.  Lives as long as the solver. */
 const struct solver_case *solver_ask(struct solver *solver, const double *inputs,
                                      struct error *error);
 

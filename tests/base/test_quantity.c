@@ -441,7 +441,7 @@ static void test_a_locale_with_a_decimal_comma_changes_nothing(void **state) {
     check_print(0.35e-3, DIMENSION_LENGTH, 3, "0.350 mm", NULL);
     setlocale(LC_ALL, "C");
     if (!found)
-        skip();
+        print_message("# no locale with a decimal comma here: tried in the C locale only\n");
 }
 
 int main(void) {

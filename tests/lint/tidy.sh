@@ -1,10 +1,10 @@
 #!/bin/sh
-# Files stay small, formatted by one rule, and the top level holds what it may.  usage: tidy.sh SOURCE_ROOT
+# Files (but tables of reference values) stay small, formatted by one rule, and the top level holds what it may.  usage: tidy.sh SOURCE_ROOT
 set -u
 root=$1
 echo 1..3
 
-long=$(find "$root/src" "$root/include" "$root/tests" -name '*.[ch]' -exec wc -l {} + | awk '$2 != "total" && $1 > 600 {print "# " $1 " lines: " $2}')
+long=$(find "$root/src" "$root/include" "$root/tests" -name '*.[ch]' ! -name '*_reference.h' -exec wc -l {} + | awk '$2 != "total" && $1 > 600 {print "# " $1 " lines: " $2}')
 if [ -z "$long" ]; then echo 'ok 1 - no file over 600 lines'; else echo "$long"; echo 'not ok 1 - files over 600 lines'; fi
 
 extra=$(cd "$root" && ls | grep -vxE 'README\.md|DEVELOPERS\.md|LICENSE|meson\.build|src|include|tests|studies|fonts|docs|build.*|out' || true)
