@@ -1,4 +1,5 @@
 #include "report/paint_internal.h"
+#include "report/pdf_references.h"
 
 #include <cairo-pdf.h>
 #include <stdio.h>
@@ -189,7 +190,9 @@ bool paint_pdf(struct text_setter *setter, const struct paint_document *document
     cairo_surface_finish(surface);
     ok = ok && paint_cairo_ok(cairo_surface_status(surface), error) && !sink.failed;
     cairo_surface_destroy(surface);
-    if (ok)
+    if (ok) {
+        pdf_references_repair((char *)sink.bytes, sink.length);
         *bytes = (struct paint_bytes){sink.bytes, sink.length};
+    }
     return ok;
 }

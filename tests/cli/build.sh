@@ -23,7 +23,7 @@ done
 check "the PDF is sound" qpdf --check "$pdf"
 check "it has an outline" sh -c "qpdf --json --json-key=outlines '$pdf' | grep -q title"
 check "it has a title" sh -c "pdfinfo '$pdf' | grep -q '^Title: .*[a-z]'"
-check "its pages have one size" sh -c "[ \$(pdfinfo -f 1 -l 99 '$pdf' | grep 'size:' | sed 's/.*size://' | sort -u | wc -l) -eq 1 ]"
+check "its pages have one size" sh -c "[ \$(pdfinfo -f 1 -l 99 '$pdf' | grep '^Page .*size:' | sed 's/.*size://' | sort -u | wc -l) -eq 1 ]"
 check "every figure is well-formed SVG" sh -c "ls '$scratch'/two/figures/*.svg >/dev/null && xmllint --noout '$scratch'/two/figures/*.svg"
 check "the manifest vouches for every file" python3 - "$scratch/two" <<'P'
 import hashlib, json, os, sys
