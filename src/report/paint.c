@@ -248,8 +248,14 @@ static bool is_date(const char *date) {
         if (FORM[i] == 'd' ? !digit : date[i] != FORM[i])
             return false;
     }
-    int month = (date[5] - '0') * 10 + date[6] - '0', day = (date[8] - '0') * 10 + date[9] - '0';
-    return month >= 1 && month <= 12 && day >= 1 && day <= 31;
+    static const int DAYS[] = {31, 28, 31, 30, 31, 30, 31, 31, 30, 31, 30, 31};
+    int year = 0, month = (date[5] - '0') * 10 + date[6] - '0';
+    int day = (date[8] - '0') * 10 + date[9] - '0';
+    for (size_t i = 0; i < 4; i++)
+        year = 10 * year + date[i] - '0';
+    bool leap = (year % 4 == 0 && year % 100 != 0) || year % 400 == 0;
+    return month >= 1 && month <= 12 && day >= 1 &&
+           day <= DAYS[month - 1] + (month == 2 && leap ? 1 : 0);
 }
 
 bool paint_created(const char *date, char created[24], struct error *error) {
