@@ -92,6 +92,8 @@ struct study_product {
     const char *id, *name, *stackup, *note; /* stackup: id */
 };
 
+struct study_earlier;
+
 /* ---- a chapter: a question ---- */
 
 enum study_origin {
@@ -229,6 +231,7 @@ struct study {
     size_t chapter_count;
     const char
         *previous; /* path of an earlier rules.json, resolved against the study's folder; NULL */
+    const struct study_earlier *earlier; /* what it states; NULL without one */
 };
 
 /* Reads and checks the whole file.  True: `study` is complete and `problems` empty.  False: either
@@ -250,6 +253,30 @@ void study_apply_stackup(const struct study_stackup *stackup, const struct model
  */
 bool study_manifest_files(const char *path, struct arena *arena, const char *const **names,
                           size_t *count, struct error *error);
+
+/* What an earlier rules.json states, to be compared with. */
+struct study_earlier_input {
+    const char *name;
+    const char *text;                    /* of a choice, or "open"; NULL = a number */
+    double value, from, to, minus, plus; /* SI; NAN where not stated */
+};
+struct study_earlier_case {
+    const char *rule, *label, *stackup; /* label and stackup may be NULL */
+    const char *model, *input;          /* what the rule finds; model may be NULL */
+    bool at_least, bound;               /* bound: `value` is one */
+    double value;
+    const struct study_earlier_input *inputs;
+    size_t input_count;
+};
+struct study_earlier {
+    const char *revision; /* may be NULL */
+    const struct study_earlier_case *cases;
+    size_t case_count;
+};
+
+/* Fails: ERROR_INPUT with what is wrong with the file; ERROR_MEMORY. */
+bool study_earlier_read(const char *path, struct arena *arena, struct study_earlier *earlier,
+                        struct error *error);
 
 const struct study_stackup *study_find_stackup(const struct study *study, const char *id);
 

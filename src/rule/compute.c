@@ -5,6 +5,8 @@
 
 #include "task.h"
 
+#include "changes.h"
+
 #include "fingerprint.h"
 
 #include <omp.h>
@@ -194,7 +196,8 @@ bool guideline_compute(const struct study *study, const struct guideline_options
     made.fields_asked = counts.asked;
     made.fields_solved = counts.solved;
     made.chapters = chapters;
-    if (!fingerprint_of(study, made.fingerprint, arena, error))
+    if (!fingerprint_of(study, made.fingerprint, arena, error) ||
+        !changes_find(&made, arena, error))
         goto out;
     *guideline = made;
     ok = true;

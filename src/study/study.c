@@ -21,12 +21,33 @@ static const char *beside_study(const struct reader *reader, const struct node *
                        reader->study->path, node->text);
 }
 
+static bool read_earlier(const struct reader *reader, const struct node *node) {
+    struct study *study = reader->study;
+    study->previous = beside_study(reader, node);
+    if (study->previous == NULL)
+        return reader->error->kind == ERROR_NONE;
+    struct error own = {0};
+    struct study_earlier *earlier =
+        arena_new(reader->arena, 1, struct study_earlier, reader->error);
+    if (earlier == NULL)
+        return false;
+    study->earlier = earlier;
+    if (study_earlier_read(study->previous, reader->arena, earlier, &own))
+        return true;
+    if (own.kind != ERROR_INPUT) {
+        *reader->error = own;
+        return false;
+    }
+    reader_refuse(reader, node, "the earlier issue \"%s\": %s", node->text, own.message);
+    return true;
+}
+
 static bool read_sections(const struct reader *reader, struct node *root) {
     keys_check(reader, root, &keys_study);
     if (root->kind != NODE_OBJECT)
         return true;
-    reader->study->previous = beside_study(reader, tree_get(root, "previous"));
-    return document_read(reader, tree_get(root, "document")) &&
+    return read_earlier(reader, tree_get(root, "previous")) &&
+           document_read(reader, tree_get(root, "document")) &&
            boards_read(reader, tree_get(root, "stackups")) &&
            signals_read(reader, tree_get(root, "signals")) &&
            products_read(reader, tree_get(root, "products")) &&
