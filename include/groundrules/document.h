@@ -12,7 +12,8 @@ struct document_options {
                        date */
 };
 
-/* Files, in the order they are to be written: "guideline.pdf", "figures/<chapter>-<n>.svg" ...
+/* Files, in the order they are to be written: "guideline.pdf", "figures/board-<id>.svg",
+ * "figures/<chapter>-geometry-<n>.svg", "figures/<chapter>-<n>.svg" ...
  * Bytes are owned by `arena`; written only on success.  Fails: ERROR_SYSTEM (fonts, cairo),
  * ERROR_MEMORY, ERROR_INTERNAL (a link without its destination). */
 bool document_render(const struct guideline *guideline, const struct document_options *options,

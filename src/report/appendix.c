@@ -36,7 +36,8 @@ static const char *setting_words(struct flow *flow, const struct study_chapter *
                           words_value(flow, chapter->vary.points[chapter->vary.point_count - 1],
                                       input->dimension));
     if (isnan(setting->value))
-        return flow_print(flow, "as %s", words_name(flow, input->same_as != NULL ? input->same_as : "given"));
+        return flow_print(flow, "as %s",
+                          words_name(flow, input->same_as != NULL ? input->same_as : "given"));
     if (setting->range.to > setting->range.from)
         return input->words != NULL
                    ? flow_print(flow, "%s or %s", words_input(flow, input, setting->range.from),

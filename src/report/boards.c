@@ -26,10 +26,11 @@ static const char *fab_line(struct flow *flow, const struct study_stackup *stack
 static void board(struct flow *flow, const struct study_stackup *stackup) {
     double width;
     double x = theme_column(&flow->page, 0, 4, &width);
-    struct drawing_options options = {.name = stackup->id,
-                                      .lengths = flow->guideline->study->document.lengths,
-                                      .width = width,
-                                      .most_height = flow->guideline->study->stackup_count > 2 ? 118.0 : 150.0};
+    struct drawing_options options = {
+        .name = stackup->id,
+        .lengths = flow->guideline->study->document.lengths,
+        .width = width,
+        .most_height = flow->guideline->study->stackup_count > 2 ? 118.0 : 150.0};
     struct drawing_report report;
     struct scene *drawing =
         drawing_stackup(stackup, &options, flow->setter, flow->arena, &report, flow->error);
@@ -39,6 +40,8 @@ static void board(struct flow *flow, const struct study_stackup *stackup) {
                  drawing->height + 20.0);
     double top = flow->y;
     flow_place(flow, drawing, x);
+    flow_figure(flow, flow_print(flow, "board-%s", stackup->id), flow_escape(flow, stackup->name),
+                drawing);
     double side, after = flow->y;
     double right = theme_column(&flow->page, 4, 2, &side);
     double y = top;

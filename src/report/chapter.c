@@ -113,6 +113,8 @@ static void geometry_row(struct flow *flow, const struct study_chapter *chapter,
             flow_text_box(flow, THEME_LABEL,
                           flow_print(flow, "<b>%s</b>", flow_escape(flow, label)), x, flow->y,
                           width);
+        flow_figure(flow, flow_print(flow, "%s-geometry-%zu", chapter->id, variants[i] + 1),
+                    label != NULL ? flow_escape(flow, label) : "Geometry", drawings[i]);
         scene_place(flow->scene, drawings[i], x,
                     flow->y + labels + 2.0 + tallest - drawings[i]->height);
     }
@@ -342,8 +344,7 @@ static struct scene *draw_chart(struct flow *flow, const struct guideline_chapte
     return chart_draw(&plot->chart, width, height, flow->setter, flow->arena, NULL, flow->error);
 }
 
-static void charts(struct flow *flow, const struct guideline_chapter *chapter,
-                   struct pages_figure *figures, size_t *figure_count) {
+static void charts(struct flow *flow, const struct guideline_chapter *chapter) {
     double width = flow->page.right - flow->page.left;
     for (size_t i = 0; i < chapter->chapter->chart_count && !flow_failed(flow); i++) {
         const struct study_chart *asked = &chapter->chapter->charts[i];
@@ -357,8 +358,7 @@ static void charts(struct flow *flow, const struct guideline_chapter *chapter,
         flow_place(flow, scene, flow->page.left);
         flow_gap(flow, 4.0);
         flow_text(flow, THEME_BODY, sentence);
-        figures[(*figure_count)++] =
-            (struct pages_figure){name, chart_title(flow, chapter->chapter, asked), scene};
+        flow_figure(flow, name, chart_title(flow, chapter->chapter, asked), scene);
     }
 }
 
@@ -428,8 +428,7 @@ static void method(struct flow *flow, const struct guideline_chapter *chapter) {
     flow_text(flow, THEME_NOTE, text);
 }
 
-void pages_chapter(struct flow *flow, size_t index, struct pages_figure *figures,
-                   size_t *figure_count) {
+void pages_chapter(struct flow *flow, size_t index) {
     const struct guideline_chapter *chapter = &flow->guideline->chapters[index];
     const struct study_chapter *asked = chapter->chapter;
     flow_heading(flow, 0, asked->title, pages_destination(flow, "chapter", asked->id), 0.0);
@@ -441,7 +440,7 @@ void pages_chapter(struct flow *flow, size_t index, struct pages_figure *figures
     flow_gap(flow, 4.0);
     given(flow, asked);
     geometry(flow, asked);
-    charts(flow, chapter, figures, figure_count);
+    charts(flow, chapter);
     chapter_table(flow, chapter);
     practice(flow, asked);
     for (size_t r = 0; r < asked->rule_count && !flow_failed(flow); r++) {

@@ -6,14 +6,14 @@
 #include <string.h>
 #include <time.h>
 
-static void lay_out(struct flow *flow, struct pages_figure *figures, size_t *figure_count) {
+static void lay_out(struct flow *flow) {
     pages_cover(flow);
     pages_changes(flow);
     pages_glance(flow);
     pages_boards(flow);
     pages_signals(flow);
     for (size_t i = 0; i < flow->guideline->study->chapter_count && !flow_failed(flow); i++)
-        pages_chapter(flow, i, figures, figure_count);
+        pages_chapter(flow, i);
     pages_appendices(flow);
 }
 
@@ -82,25 +82,18 @@ static bool paint(struct flow *flow, const struct document_options *options,
     return true;
 }
 
-static bool paint_figures(struct flow *flow, const struct pages_figure *figures, size_t count,
-                          struct guideline_file *files) {
-    for (size_t i = 0; i < count; i++) {
+static bool paint_figures(struct flow *flow, struct guideline_file *files) {
+    for (size_t i = 0; i < flow->figure_count; i++) {
+        const struct flow_figure *figure = &flow->figures[i];
         struct paint_bytes bytes;
-        char *title = text_plain(flow->arena, figures[i].title, flow->error);
+        char *title = text_plain(flow->arena, figure->title, flow->error);
         if (title == NULL ||
-            !paint_svg(flow->setter, figures[i].scene, title, flow->arena, &bytes, flow->error))
-            return error_in(flow->error, "figure %s", figures[i].name);
-        files[i] = (struct guideline_file){flow_print(flow, "figures/%s.svg", figures[i].name),
+            !paint_svg(flow->setter, figure->scene, title, flow->arena, &bytes, flow->error))
+            return error_in(flow->error, "figure %s", figure->name);
+        files[i] = (struct guideline_file){flow_print(flow, "figures/%s.svg", figure->name),
                                            bytes.bytes, bytes.length};
     }
     return !flow_failed(flow);
-}
-
-static size_t most_figures(const struct study *study) {
-    size_t count = 0;
-    for (size_t i = 0; i < study->chapter_count; i++)
-        count += study->chapters[i].chart_count;
-    return count;
 }
 
 bool document_render(const struct guideline *guideline, const struct document_options *options,
@@ -111,17 +104,17 @@ bool document_render(const struct guideline *guideline, const struct document_op
     struct text_setter *setter = text_setter_create(NULL, error);
     if (setter == NULL)
         return false;
-    size_t figure_count = 0, most = most_figures(guideline->study);
-    struct pages_figure *figures = arena_new(arena, most, struct pages_figure, error);
-    struct guideline_file *made = arena_new(arena, most + 1, struct guideline_file, error);
-    if (figures == NULL || made == NULL || !flow_start(&flow, guideline, setter, arena, error))
+    struct guideline_file *made = NULL;
+    if (!flow_start(&flow, guideline, setter, arena, error))
         goto out;
-    lay_out(&flow, figures, &figure_count);
-    if (flow_failed(&flow) || !paint(&flow, options, &made[0]) ||
-        !paint_figures(&flow, figures, figure_count, made + 1))
+    lay_out(&flow);
+    if (flow_failed(&flow))
+        goto out;
+    made = arena_new(arena, flow.figure_count + 1, struct guideline_file, error);
+    if (made == NULL || !paint(&flow, options, &made[0]) || !paint_figures(&flow, made + 1))
         goto out;
     *files = made;
-    *count = figure_count + 1;
+    *count = flow.figure_count + 1;
     ok = true;
 out:
     text_setter_free(setter);

@@ -16,6 +16,7 @@ bool flow_start(struct flow *flow, const struct guideline *guideline, struct tex
     flow->pages = arena_new(arena, FLOW_MOST_PAGES, struct scene *, error);
     flow->heads = arena_new(arena, FLOW_MOST_PAGES, const char *, error);
     flow->entries = arena_new(arena, FLOW_MOST_ENTRIES, struct flow_entry, error);
+    flow->figures = arena_new(arena, FLOW_MOST_FIGURES, struct flow_figure, error);
     return !flow_failed(flow);
 }
 
@@ -89,6 +90,17 @@ void flow_text_at(struct flow *flow, enum theme_text style, const char *markup, 
 
 void flow_text(struct flow *flow, enum theme_text style, const char *markup) {
     flow_text_at(flow, style, markup, 0, THEME_COLUMNS);
+}
+
+void flow_figure(struct flow *flow, const char *name, const char *title,
+                 const struct scene *scene) {
+    if (flow_failed(flow) || scene == NULL)
+        return;
+    if (flow->figure_count == FLOW_MOST_FIGURES) {
+        error_set(flow->error, ERROR_INPUT, "more than %d figures", FLOW_MOST_FIGURES);
+        return;
+    }
+    flow->figures[flow->figure_count++] = (struct flow_figure){name, title, scene};
 }
 
 void flow_entry(struct flow *flow, unsigned level, const char *title, const char *destination) {

@@ -12,13 +12,20 @@
  * become contents and outline.  The first failure sticks in `error`; later calls do nothing, so
  * layout reads as prose. */
 
-enum { FLOW_MOST_PAGES = 2000, FLOW_MOST_ENTRIES = 4000 };
+enum { FLOW_MOST_PAGES = 2000, FLOW_MOST_ENTRIES = 4000, FLOW_MOST_FIGURES = 1000 };
 
 struct flow_entry {
     const char *title; /* plain text */
     const char *destination;
     unsigned level;
     size_t page; /* index */
+};
+
+/* A drawing or chart that is written as SVG too. */
+struct flow_figure {
+    const char *name;  /* "spacing-1" */
+    const char *title; /* markup */
+    const struct scene *scene;
 };
 
 struct flow {
@@ -33,6 +40,8 @@ struct flow {
     double y;            /* pt, top of what comes next */
     struct flow_entry *entries;
     size_t entry_count;
+    struct flow_figure *figures;
+    size_t figure_count;
     const char *running; /* what the running head says; NULL = none on this page */
     const char **heads;  /* [page] */
 };
@@ -60,6 +69,8 @@ double flow_text_box(struct flow *flow, enum theme_text style, const char *marku
 /* Level 0: a chapter (new page); 1: a section.  `keep`: room that must follow on the same page. */
 void flow_heading(struct flow *flow, unsigned level, const char *title, const char *destination,
                   double keep);
+/* `scene` is placed by the caller; `name` is unique within the document. */
+void flow_figure(struct flow *flow, const char *name, const char *title, const struct scene *scene);
 /* Into the outline without a heading of its own (rule cards). */
 void flow_entry(struct flow *flow, unsigned level, const char *title, const char *destination);
 

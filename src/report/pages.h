@@ -13,14 +13,7 @@ void pages_changes(struct flow *flow);
 void pages_glance(struct flow *flow);
 void pages_boards(struct flow *flow);
 void pages_signals(struct flow *flow);
-/* `figures`: receives the chapter's charts, for SVG. */
-struct pages_figure {
-    const char *name; /* "spacing-1" */
-    const char *title;
-    const struct scene *scene;
-};
-void pages_chapter(struct flow *flow, size_t index, struct pages_figure *figures,
-                   size_t *figure_count);
+void pages_chapter(struct flow *flow, size_t index);
 void pages_rule_card(struct flow *flow, const struct guideline_chapter *chapter,
                      const struct guideline_rule *rule);
 void pages_appendices(struct flow *flow);
