@@ -1,0 +1,66 @@
+/* Two solvers that share only the problem: boundary elements on graded panels, and one mapped
+ * expansion a face.  Random sections from a fixed seed. */
+#include "check.h"
+#include "groundrules/section.h"
+
+static uint64_t seed = 20261201;
+
+static double draw(void) {
+    seed = seed * UINT64_C(6364136223846793005) + UINT64_C(1442695040888963407);
+    return (double)(seed >> 11) / 9007199254740992.0;
+}
+
+static double between(double low, double high) {
+    return low * pow(high / low, draw());
+}
+
+static struct section_problem random_problem(void) {
+    struct section_problem problem = {.height = between(0.08e-3, 3e-3), .dk = between(1, 10)};
+    problem.count = 1 + (size_t)(3 * draw());
+    double thickness = draw() < 0.25 ? 0 : between(9e-6, 105e-6), x = 0;
+    for (size_t i = 0; i < problem.count; i++) {
+        double width = between(0.1e-3, 5e-3);
+        problem.conductors[i] = (struct section_conductor){x, width, thickness};
+        x += width + between(0.08e-3, 8e-3);
+    }
+    return problem;
+}
+
+static void compare(const struct section_problem *problem, const double *got, const double *want,
+                    double allowed, const char *what) {
+    for (size_t i = 0; i < problem->count; i++)
+        for (size_t j = 0; j < problem->count; j++) {
+            /* A far mutual entry is judged against its geometric mean once it is below 1e-3 of it.
+             */
+            double own = sqrt(want[i * problem->count + i] * want[j * problem->count + j]);
+            double entry = want[i * problem->count + j];
+            double scale = fmax(fabs(entry), 1e-3 * own);
+            if (!(fabs(got[i * problem->count + j] - entry) <= allowed * scale))
+                print_error("%s[%zu][%zu]: %.9g and %.9g, allowed %.2g\n", what, i, j,
+                            got[i * problem->count + j], entry, allowed);
+            assert_true(fabs(got[i * problem->count + j] - entry) <= allowed * scale);
+        }
+}
+
+static void test_random_sections_agree(void **state) {
+    (void)state;
+    struct error error = {0};
+    double worst = 0;
+    for (int k = 0; k < 30; k++) {
+        struct section_problem problem = random_problem();
+        struct section_solution fast, plain;
+        assert_ok(section_solve(&problem, &fast, &error));
+        assert_ok(section_solve_plain(&problem, &plain, &error));
+        double allowed = fmin(fast.error + plain.error + 1e-6, 1e-3);
+        compare(&problem, fast.capacitance, plain.capacitance, allowed, "capacitance");
+        compare(&problem, fast.vacuum_capacitance, plain.vacuum_capacitance, allowed, "vacuum");
+        compare(&problem, fast.inductance, plain.inductance, allowed, "inductance");
+        worst = fmax(worst, fast.error);
+    }
+    assert_true(worst < 1e-3);
+}
+
+int main(void) {
+    const struct CMUnitTest tests[] = {cmocka_unit_test(test_random_sections_agree)};
+    return cmocka_run_group_tests(tests, NULL, NULL);
+}
