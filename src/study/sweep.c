@@ -129,6 +129,32 @@ static bool choose_rows(const struct reader *reader, struct study_chapter *chapt
     return true;
 }
 
+/* Rows are solved, not looked up beside the sweep's points: what the sweep does not have yet is put
+ * between its points. */
+static bool merge_rows(const struct reader *reader, struct study_chapter *chapter) {
+    struct study_vary *vary = &chapter->vary;
+    size_t count = vary->point_count;
+    double *all =
+        arena_new(reader->arena, count + chapter->table_point_count, double, reader->error);
+    if (all == NULL)
+        return false;
+    memcpy(all, vary->points, count * sizeof *all);
+    for (size_t r = 0; r < chapter->table_point_count; r++) {
+        double row = chapter->table_points[r];
+        size_t at = count;
+        while (at > 0 && all[at - 1] > row * (1 + 1e-9))
+            at--;
+        if (at > 0 && all[at - 1] >= row * (1 - 1e-9))
+            continue;
+        memmove(&all[at + 1], &all[at], (count - at) * sizeof *all);
+        all[at] = row;
+        count++;
+    }
+    vary->points = all;
+    vary->point_count = count;
+    return true;
+}
+
 bool draft_read_table(const struct reader *reader, struct draft *draft) {
     const struct node *node = tree_get(draft->node, "table");
     struct study_chapter *chapter = &draft->chapter;
@@ -149,5 +175,5 @@ bool draft_read_table(const struct reader *reader, struct draft *draft) {
         if (chapter->table_points[i] < low || chapter->table_points[i] > high)
             ok = reader_refuse(reader, child, "\"%s\" lies outside the sweep of %s",
                                reader_shown(reader, child), input->name);
-    return ok;
+    return ok && merge_rows(reader, chapter);
 }

@@ -94,13 +94,13 @@ static inline void ask(struct question *question) {
     assert_ok(solver_start(&solver, &analytic_model, memo, &error));
     region_of(&analytic_model, &question->variant, question->rule.find, question->rule.nominal,
               &region);
-    struct judge judge = {
-        .solver = &solver,
-        .region = &region,
-        .at_most = question->rule.condition.at_most,
-        .limit = question->rule.condition.limit,
-        .reference = question->rule.condition.against == STUDY_REFERENCE ? &question->rule.reference
-                                                                         : NULL};
+    struct judge judge = {.solver = &solver,
+                          .region = &region,
+                          .at_most = question->rule.condition.at_most,
+                          .limit = question->rule.condition.limit,
+                          .reference = question->rule.condition.against == STUDY_REFERENCE
+                                           ? &question->rule.reference
+                                           : NULL};
     region.base[question->rule.find] =
         question->rule.find_smallest ? question->rule.within.to : question->rule.within.from;
     assert_ok(find_bound(&question->rule, &question->variant, &judge, &region, &question->finding,
