@@ -41,9 +41,9 @@ const char *words_quantity(struct flow *flow, const struct quantity *quantity) {
     if (quantity->minus == 0.0 && quantity->plus == 0.0)
         return value;
     if (quantity->dimension == DIMENSION_LENGTH && fabs(quantity->minus - quantity->plus) < 1e-12)
-        return flow_print(flow, "%s ± %.3g %%", value, 100.0 * quantity->plus / quantity->value);
+        return flow_print(flow, "%s ±\u00a0%.3g\u2009%%", value, 100.0 * quantity->plus / quantity->value);
     if (fabs(quantity->minus - quantity->plus) < 1e-12)
-        return flow_print(flow, "%s ± %s", value,
+        return flow_print(flow, "%s ±\u00a0%s", value,
                           words_value(flow, quantity->plus, quantity->dimension));
     return flow_print(flow, "%s +%s −%s", value,
                       words_value(flow, quantity->plus, quantity->dimension),

@@ -66,7 +66,7 @@ static void test_what_became_stricter_looser_new_and_gone_is_told_with_the_reaso
     computed(previous, "0.3 mm", "W-1", arena, &after);
     assert_int_equal(after.changes[0].kind, GUIDELINE_STRICTER);
     assert_true(after.changes[0].after > after.changes[0].before);
-    assert_string_equal(after.changes[0].why, "height 0.2\u202fmm → 0.3\u202fmm");
+    assert_string_equal(after.changes[0].why, "height 0.2\u2009mm → 0.3\u2009mm");
 
     computed(previous, "0.1 mm", "W-1", arena, &after);
     assert_int_equal(after.changes[0].kind, GUIDELINE_LOOSER);
