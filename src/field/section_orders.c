@@ -9,9 +9,11 @@
 
 #include <math.h>
 
-double tune_level_base = 3.3, tune_level_factor = 2.0, tune_up_base = 1.7, tune_up_factor = 0.8,
-       tune_node = 2e-4, tune_image = 2e-5, tune_step = 1.0, tune_inner = 0.7,
-       tune_inner_node = 0.3;
+/* Levels of polynomials, nodes, images, what one step of refinement adds; found by refining the
+ * sections of the tests until every entry lay within 2e-5. */
+static const double LEVEL_BASE = 3.3, LEVEL_FACTOR = 2.0, UP_BASE = 1.7, UP_FACTOR = 0.8,
+                    NODE_ERROR = 2e-4, IMAGE_ERROR = 2e-5, STEP = 1.0, INNER = 0.7,
+                    INNER_NODE = 0.3;
 
 static double gap_between(const struct section_problem *problem, size_t i, size_t j) {
     const struct section_conductor *one = &problem->conductors[i < j ? i : j];
@@ -29,7 +31,7 @@ static size_t at_most(double wanted, size_t most, bool *reached) {
 
 void section_orders_choose(const struct section_problem *problem, int effort,
                            struct section_orders *orders) {
-    double raise = tune_step * effort;
+    double raise = STEP * effort;
     orders->reached = true;
     for (size_t i = 0; i < problem->count; i++) {
         const struct section_conductor *c = &problem->conductors[i];
@@ -40,16 +42,16 @@ void section_orders_choose(const struct section_problem *problem, int effort,
         if (i + 1 < problem->count)
             near = fmin(near, gap_between(problem, i, i + 1));
         bool inner = i > 0 && i + 1 < problem->count;
-        double factor = tune_level_factor + (inner ? tune_inner * log1p(0.5 * w) : 0);
-        double level = tune_level_base + factor * cbrt(w / near) + 1.5 * raise;
-        double upright = tune_up_base + tune_up_factor * cbrt(t / near) + raise;
+        double factor = LEVEL_FACTOR + (inner ? INNER * log1p(0.5 * w) : 0);
+        double level = LEVEL_BASE + factor * cbrt(w / near) + 1.5 * raise;
+        double upright = UP_BASE + UP_FACTOR * cbrt(t / near) + raise;
         orders->terms[i].level = at_most(level, FACE_MOST_TERMS, &orders->reached);
         orders->terms[i].upright =
             t > 0 ? at_most(upright, SECTION_MOST_UPRIGHT, &orders->reached) : 0;
     }
-    orders->node_error = (problem->count > 2 ? tune_inner_node : 1) * tune_node * pow(10, -raise);
+    orders->node_error = (problem->count > 2 ? INNER_NODE : 1) * NODE_ERROR * pow(10, -raise);
     orders->images =
-        section_image_count(section_reflection(problem->dk), tune_image * pow(10, -raise));
+        section_image_count(section_reflection(problem->dk), IMAGE_ERROR * pow(10, -raise));
 }
 
 /* Parameter of the ellipse with foci -1, 1: through 1 + 2 gap beyond the end, and through i height
