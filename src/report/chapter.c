@@ -197,22 +197,27 @@ static bool has_band(const struct guideline_curve *curve, size_t count) {
 }
 
 /* A board looks the same in every chapter that compares boards only. */
-static size_t style_of(const struct study *study, const struct study_chapter *chapter,
-                       size_t variant, size_t series) {
+static bool compares_boards_only(const struct study_chapter *chapter) {
     for (size_t v = 0; v < chapter->variant_count; v++)
         for (size_t w = 0; w < v; w++)
-            if (chapter->variants[v].stackup == NULL ||
-                chapter->variants[v].stackup == chapter->variants[w].stackup)
-                return series;
-    for (size_t b = 0; b < study->stackup_count; b++)
-        if (&study->stackups[b] == chapter->variants[variant].stackup && series == variant)
-            return b;
-    return series;
+            if (chapter->variants[v].stackup == chapter->variants[w].stackup)
+                return false;
+    return chapter->variants[0].stackup != NULL;
+}
+
+static size_t board_index(const struct study *study, const struct study_stackup *stackup) {
+    size_t b = 0;
+    while (b < study->stackup_count && &study->stackups[b] != stackup)
+        b++;
+    return b;
 }
 
 static void add_series(struct flow *flow, const struct guideline_chapter *chapter,
                        const struct study_chart *asked, struct plot *plot) {
     const struct study_vary *vary = &chapter->chapter->vary;
+    const struct study *study = flow->guideline->study;
+    bool boards = asked->output_count == 1 && compares_boards_only(chapter->chapter);
+    plot->chart.style_count = boards ? study->stackup_count : 0;
     for (size_t o = 0; o < asked->output_count; o++)
         for (size_t v = 0; v < chapter->chapter->variant_count; v++) {
             const struct guideline_curve *curve = curve_of(chapter, v, asked->outputs[o]);
@@ -230,16 +235,16 @@ static void add_series(struct flow *flow, const struct guideline_chapter *chapte
             bool *doubtful = arena_new(flow->arena, vary->point_count, bool, flow->error);
             for (size_t i = 0; doubtful != NULL && i < vary->point_count; i++)
                 doubtful[i] = curve->flags[i] != 0;
-            plot->series[plot->chart.series_count] =
-                (struct chart_series){.label = label,
-                                      .x = vary->points,
-                                      .y = curve->y,
-                                      .count = vary->point_count,
-                                      .low = band ? curve->low : NULL,
-                                      .high = band ? curve->high : NULL,
-                                      .style = style_of(flow->guideline->study, chapter->chapter, v,
-                                                        plot->chart.series_count),
-                                      .doubtful = doubtful};
+            plot->series[plot->chart.series_count] = (struct chart_series){
+                .label = label,
+                .x = vary->points,
+                .y = curve->y,
+                .count = vary->point_count,
+                .low = band ? curve->low : NULL,
+                .high = band ? curve->high : NULL,
+                .style = boards ? board_index(study, chapter->chapter->variants[v].stackup)
+                                : plot->chart.series_count,
+                .doubtful = doubtful};
             plot->chart.series_count++;
         }
 }
@@ -289,10 +294,12 @@ static void add_rule(struct flow *flow, const struct guideline_chapter *chapter,
             continue;
         enum dimension dimension = chapter->chapter->model->inputs[rule->find].dimension;
         plot->marks[plot->chart.mark_count++] =
-            (struct chart_mark){finding->value, finding->worst,
+            (struct chart_mark){finding->value,
+                                /* A reference is judged in another situation than the curves. */
+                                rule->condition.against == STUDY_REFERENCE ? NAN : finding->worst,
                                 flow_print(flow, "%s: %s", flow_escape(flow, rule->id),
                                            words_grid(flow, finding->value, rule->grid, dimension)),
-                                v};
+                                plot->series[v].style};
     }
 }
 
