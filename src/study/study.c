@@ -21,12 +21,34 @@ static const char *beside_study(const struct reader *reader, const struct node *
                        reader->study->path, node->text);
 }
 
-static bool read_sections(const struct reader *reader, struct node *root) {
+static bool read_previous(const struct reader *reader, const struct node *node) {
+    const char *const *names = NULL;
+    size_t count = 0;
+    const char *path = beside_study(reader, node);
+    if (path == NULL)
+        return reader->error->kind == ERROR_NONE;
+    reader->study->previous = path;
+    if (!study_manifest_files(path, reader->arena, &names, &count, reader->error))
+        return false;
+    if (access(path, R_OK) != 0)
+        reader_refuse(reader, node, "cannot read \"%s\": %s", reader_shown(reader, node),
+                      strerror(errno));
+    else if (count == 0)
+        reader_refuse(reader, node,
+                      "\"%s\" is no rules.json; expected the one that was written with the last "
+                      "issue",
+                      reader_shown(reader, node));
+    return true;
+}
+
+static bool read_sections(struct reader *reader, struct node *root) {
     keys_check(reader, root, &keys_study);
     if (root->kind != NODE_OBJECT)
         return true;
-    reader->study->previous = beside_study(reader, tree_get(root, "previous"));
-    return document_read(reader, tree_get(root, "document")) &&
+    reader->stackups_refused = keys_refused(root, "stackups");
+    reader->signals_refused = keys_refused(root, "signals");
+    return read_previous(reader, tree_get(root, "previous")) &&
+           document_read(reader, tree_get(root, "document")) &&
            boards_read(reader, tree_get(root, "stackups")) &&
            signals_read(reader, tree_get(root, "signals")) &&
            products_read(reader, tree_get(root, "products")) &&
@@ -47,7 +69,8 @@ bool study_read_text(const char *path, const char *text, size_t length, struct a
     struct source source;
     struct study read = {.path = arena_copy(arena, path, &own)};
     struct findings findings = {.source = &source, .arena = arena, .error = &own};
-    struct reader reader = {arena, &own, &findings, &source, &read};
+    struct reader reader = {
+        .arena = arena, .error = &own, .findings = &findings, .source = &source, .study = &read};
     struct study_problems found = {0};
     if (read.path != NULL && source_index(&source, text, length, arena, &own)) {
         read_text(&reader, &source);
