@@ -3,7 +3,7 @@
 # usage: bad.sh PROGRAM SOURCE_ROOT [--write]
 # --write makes the answers anew; read the difference before it is committed.
 set -u
-program=$1
+program=$(realpath "$1")
 root=$2
 . "$root/tests/cli/tap.sh"
 scratch=$(mktemp -d)
