@@ -20,6 +20,7 @@ struct reader {
     enum dimension dimension;
     const char *at; /* in the ASCII text */
     struct error *error;
+    bool sweep; /* what is read are the points of a sweep */
 };
 
 struct number {
@@ -35,8 +36,9 @@ static bool refuse(const struct reader *reader, const char *reason) {
     if (cut)
         for (shown = MOST_SHOWN; shown > 0 && (reader->written[shown] & 0xC0) == 0x80;)
             shown--;
-    return error_set(reader->error, ERROR_INPUT, "\"%.*s%s\": %s; expected %s, such as \"%s\"",
+    return error_set(reader->error, ERROR_INPUT, "\"%.*s%s\": %s; expected %s%s, such as \"%s\"",
                      (int)shown, reader->written, cut ? "..." : "", reason,
+                     reader->sweep ? "\"FROM .. TO in 40 points\" or \"... log\", both ends " : "",
                      dimension_name(reader->dimension), dimension_example(reader->dimension));
 }
 
@@ -211,6 +213,8 @@ static size_t unit_length(const char *at) {
         if (*rest == '+' || *rest == '-' || strncmp(rest, "..", 2) == 0 ||
             strncmp(rest, " in ", 4) == 0)
             break;
+        if (length == 0 && strncmp(rest, "in ", 3) == 0 && is_digit(rest[3]))
+            break; /* the points of a sweep, not inches */
         length++;
     }
     while (length > 0 && at[length - 1] == ' ')
@@ -345,15 +349,25 @@ static bool read_open(struct reader *reader, struct quantity *quantity) {
     return true;
 }
 
-static bool start(struct reader *reader, const char *text, enum dimension dimension,
-                  char ascii[MOST_TEXT], struct error *error) {
-    *reader = (struct reader){text, dimension, ascii, error};
+static bool start_any(struct reader *reader, const char *text, enum dimension dimension,
+                      char ascii[MOST_TEXT], bool sweep, struct error *error) {
+    *reader = (struct reader){text, dimension, ascii, error, sweep};
     if (dimension == DIMENSION_WORD)
         return error_set(error, ERROR_INTERNAL, "a word was read as a quantity");
     if (!make_ascii(text, ascii, reader))
         return false;
     skip_spaces(reader);
     return *reader->at != '\0' || refuse(reader, "nothing is written");
+}
+
+static bool start(struct reader *reader, const char *text, enum dimension dimension,
+                  char ascii[MOST_TEXT], struct error *error) {
+    return start_any(reader, text, dimension, ascii, false, error);
+}
+
+static bool start_sweep(struct reader *reader, const char *text, enum dimension dimension,
+                        char ascii[MOST_TEXT], struct error *error) {
+    return start_any(reader, text, dimension, ascii, true, error);
 }
 
 static bool read_quantity(struct reader *reader, struct quantity *quantity) {
@@ -498,10 +512,11 @@ bool quantity_parse_points(const char *text, enum dimension dimension, double *p
     size_t asked = 0;
     if (most > QUANTITY_MOST_POINTS)
         most = QUANTITY_MOST_POINTS;
-    if (!start(&reader, text, dimension, ascii, error) || !read_interval(&reader, &range) ||
+    if (!start_sweep(&reader, text, dimension, ascii, error) || !read_interval(&reader, &range) ||
         !read_point_count(&reader, most, &asked))
         return false;
-    bool log = take(&reader, "log");
+    skip_spaces(&reader);
+    bool log = strcmp(reader.at, "log") == 0 && take(&reader, "log");
     if (!at_end(&reader) || !place_points(&reader, range, asked, log, points))
         return false;
     *count = asked;

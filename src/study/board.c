@@ -86,7 +86,8 @@ static bool check_order(const struct reader *reader, const struct node *node,
                         const struct study_layer *layers, size_t count) {
     if (count < 3)
         return reader_refuse(reader, node,
-                             "%zu layers; a board has at least copper, dielectric, copper", count);
+                             "%zu layer%s; a board has at least copper, dielectric, copper", count,
+                             count == 1 ? "" : "s");
     if (layers[0].kind != STUDY_LAYER_COPPER || layers[count - 1].kind != STUDY_LAYER_COPPER)
         return reader_refuse(reader,
                              child_at(node, layers[0].kind == STUDY_LAYER_COPPER ? count - 1 : 0),
@@ -115,6 +116,18 @@ static bool add_dielectric(const struct reader *reader, const struct node *node,
     return true;
 }
 
+static bool refuse_no_plane(const struct reader *reader, const struct node *node,
+                            const struct study_layer *layers, size_t count, size_t next) {
+    for (size_t i = next; i < count; i++)
+        if (layers[i].plane)
+            return reader_refuse(reader, child_at(node, next),
+                                 "the next copper under the top layer is a signal layer; planes "
+                                 "further down are not yet supported, it must be \"plane\"");
+    return reader_refuse(reader, node,
+                         "the stackup has no plane; the next copper under the top layer must have "
+                         "the role \"plane\"");
+}
+
 static bool find_height(const struct reader *reader, const struct node *node,
                         struct study_stackup *stackup) {
     const struct study_layer *layers = stackup->layers;
@@ -131,10 +144,7 @@ static bool find_height(const struct reader *reader, const struct node *node,
                 return false;
             continue;
         }
-        return layers[i].plane ||
-               reader_refuse(reader, child_at(node, i),
-                             "the next copper under the top layer is a signal layer; planes "
-                             "further down are not yet supported, it must be \"plane\"");
+        return layers[i].plane || refuse_no_plane(reader, node, layers, stackup->layer_count, i);
     }
     return false; /* check_order saw copper at the bottom */
 }
@@ -189,8 +199,7 @@ bool boards_read(const struct reader *reader, const struct node *node) {
         return false;
     size_t count = 0;
     for (const struct node *child = node->first; child != NULL; child = child->next)
-        if (child->kind == NODE_OBJECT)
-            read_board(reader, child, &stackups[count++]);
+        read_board(reader, child, &stackups[count++]);
     reader->study->stackups = stackups;
     reader->study->stackup_count = count;
     return reader->error->kind == ERROR_NONE;
@@ -206,7 +215,7 @@ const struct study_stackup *study_find_stackup(const struct study *study, const 
 const struct study_stackup *boards_find(const struct reader *reader, const struct node *node) {
     const struct study *study = reader->study;
     const struct study_stackup *stackup = study_find_stackup(study, node->text);
-    if (stackup != NULL)
+    if (stackup != NULL || reader->stackups_refused)
         return stackup;
     const char **names =
         arena_new(reader->arena, study->stackup_count, const char *, reader->error);

@@ -1,5 +1,8 @@
 #include "draft.h"
 
+#include "groundrules/text.h"
+
+#include <math.h>
 #include <string.h>
 
 static const struct model *read_model(const struct reader *reader, const struct node *node) {
@@ -12,7 +15,9 @@ static const struct model *read_model(const struct reader *reader, const struct 
         names[count++] = model_at(i)->name;
     reader_refuse(reader, node, "there is no model \"%s\"%s", reader_shown(reader, node),
                   reader_advice(reader, node->text, names, count));
-    return NULL;
+    /* The rest is read for what was most likely meant. */
+    const char *meant = text_nearest(node->text, names, count);
+    return meant == NULL ? NULL : model_find(meant);
 }
 
 static void read_practice(const struct reader *reader, struct draft *draft) {
@@ -44,13 +49,13 @@ static void resolve(const struct reader *reader, struct draft *draft) {
                        &draft->variant_nodes))
         return;
     chapter->variants = variants;
-    const struct node *given = tree_get(draft->node, "given");
     const struct study_vary *vary = &chapter->vary;
-    struct interval span = {vary->points[0], vary->points[vary->point_count - 1]};
+    struct interval span = {NAN, NAN}; /* a sweep that was refused: only the rest is looked at */
+    if (draft->vary_node != NULL)
+        span = (struct interval){vary->points[0], vary->points[vary->point_count - 1]};
     for (size_t i = 0; i < chapter->variant_count; i++)
-        draft_check_variant(reader, draft, &variants[i], draft->variant_nodes[i],
-                            given != NULL ? given : draft->node, vary->input, span,
-                            draft->vary_node);
+        draft_check_variant(reader, draft, &variants[i], draft->variant_nodes[i], draft->place,
+                            vary->input, span, draft->vary_node);
 }
 
 static void read_chapter(const struct reader *reader, struct draft *draft, size_t *rules_left) {
@@ -66,7 +71,9 @@ static void read_chapter(const struct reader *reader, struct draft *draft, size_
     if (chapter->model == NULL)
         return; /* nothing more can be understood without it */
     chapter->title = title != NULL ? title->text : chapter->model->title;
-    given_read(reader, tree_get(node, "given"), chapter->model, &draft->given);
+    const struct node *given = tree_get(node, "given");
+    draft->place = given != NULL ? given : node;
+    given_read(reader, given, chapter->model, &draft->given);
     bool varied = draft_read_vary(reader, draft);
     bool comparable = draft_read_compare(reader, draft);
     draft_read_show(reader, draft);
@@ -74,7 +81,7 @@ static void read_chapter(const struct reader *reader, struct draft *draft, size_
     chapter->compared = compared(reader, draft);
     if (varied)
         draft_read_table(reader, draft);
-    if (varied && comparable)
+    if (draft->swept_node != NULL && comparable)
         resolve(reader, draft);
     /* Without a sweep or a comparison the rules are still read for what is wrong in themselves. */
     if (!comparable)

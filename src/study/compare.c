@@ -73,9 +73,18 @@ static bool read_option(const struct reader *reader, const struct draft *draft,
     return option->signal != NULL;
 }
 
-static bool is_new(const struct reader *reader, const struct axis *axis, const struct node *node) {
+static bool is_same(const struct axis_option *one, const struct axis_option *two) {
+    return one->stackup == two->stackup && one->signal == two->signal &&
+           one->setting.value == two->setting.value &&
+           one->setting.range.from == two->setting.range.from &&
+           one->setting.range.to == two->setting.range.to &&
+           one->setting.minus == two->setting.minus && one->setting.plus == two->setting.plus;
+}
+
+static bool is_new(const struct reader *reader, const struct axis *axis, const struct node *node,
+                   const struct axis_option *option) {
     for (size_t i = 0; i < axis->count; i++)
-        if (strcmp(axis->options[i].node->text, node->text) == 0)
+        if (is_same(&axis->options[i], option))
             return reader_refuse(reader, node, "\"%s\" is compared with itself",
                                  reader_shown(reader, node));
     return true;
@@ -96,7 +105,7 @@ static bool read_options(const struct reader *reader, const struct draft *draft,
     for (const struct node *child = node->first; child != NULL; child = child->next) {
         struct axis_option option;
         if (child->bad || !read_option(reader, draft, child, axis, &option) ||
-            !is_new(reader, axis, child))
+            !is_new(reader, axis, child, &option))
             ok = false;
         else
             axis->options[axis->count++] = option;
@@ -107,7 +116,7 @@ static bool read_options(const struct reader *reader, const struct draft *draft,
 static bool read_axis(const struct reader *reader, struct draft *draft, const struct node *node) {
     struct axis axis = {.kind = kind_of(node->key), .key = node->key};
     if (axis.kind == AXIS_INPUT) {
-        axis.input = given_input(reader, node, draft->chapter.model);
+        axis.input = given_input(reader, node, draft->chapter.model, &keys_compare);
         if (axis.input == SIZE_MAX)
             return false;
     }

@@ -1,5 +1,7 @@
 #include "rule.h"
 
+#include "groundrules/text.h"
+
 #include <stdint.h>
 #include <string.h>
 
@@ -44,8 +46,9 @@ static bool split(const struct reader *reader, const struct node *node, struct p
                          form);
 }
 
-static bool check_budget(const struct reader *reader, const struct node *node,
-                         const struct model_output *output, const struct rule_draft *rule) {
+static bool check_budget(const struct reader *reader, const struct draft *draft,
+                         const struct node *node, const struct model_output *output,
+                         const struct rule_draft *rule) {
     if (output->dimension != DIMENSION_VOLTAGE)
         return reader_refuse(reader, node, "a budget is a voltage, %s is %s", output->name,
                              dimension_name(output->dimension));
@@ -54,6 +57,8 @@ static bool check_budget(const struct reader *reader, const struct node *node,
                              output->name);
     for (size_t i = 0; i < rule->variant_count; i++) {
         const struct study_signal *victim = rule->variants[i].victim;
+        if (victim == NULL && (rule->given.victim_node != NULL || draft->given.victim_node != NULL))
+            return false; /* refused where it is named */
         if (victim == NULL)
             return reader_refuse(reader, node,
                                  "a budget needs a \"victim\" in \"given\" or \"compare\"");
@@ -71,12 +76,22 @@ static bool is_signed(enum dimension dimension) {
            dimension == DIMENSION_ATTENUATION || dimension == DIMENSION_NUMBER;
 }
 
+static const char *nearest_word(const struct reader *reader, const char *text) {
+    static const char *const words[] = {"budget", "reference"};
+    const char *nearest = text_nearest(text, words, 2);
+    const char *advice = nearest == NULL ? ""
+                                         : arena_print(reader->arena, reader->error,
+                                                       "; did you mean \"%s\"?", nearest);
+    return advice == NULL ? "" : advice;
+}
+
 static bool read_constant(const struct reader *reader, const struct node *node,
                           const struct model_output *output, const char *text, double *limit) {
     struct error error = {0};
     struct quantity quantity;
     if (!quantity_parse(text, output->dimension, &quantity, &error))
-        return reader_refuse(reader, node, "%s; or \"budget\" or \"reference\"", error.message);
+        return reader_refuse(reader, node, "%s, \"budget\" or \"reference\"%s", error.message,
+                             nearest_word(reader, text));
     if (quantity.minus > 0 || quantity.plus > 0)
         return reader_refuse(reader, node, "\"%s\": no tolerance is accepted here", text);
     if (!(quantity.value < 1e30) || (!is_signed(output->dimension) && !(quantity.value > 0)))
@@ -115,7 +130,7 @@ bool rule_read_condition(const struct reader *reader, const struct draft *draft,
                           output->name, parts.at_most ? "<=" : ">=");
     if (strcmp(parts.against, "budget") == 0) {
         condition->against = STUDY_BUDGET;
-        return check_budget(reader, node, output, rule);
+        return check_budget(reader, draft, node, output, rule);
     }
     condition->against = STUDY_CONSTANT;
     return read_constant(reader, node, output, parts.against, &condition->limit);

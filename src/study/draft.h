@@ -32,7 +32,9 @@ struct draft {
     struct given given;
     struct axis axes[DRAFT_MOST_AXES];
     size_t axis_count;
-    const struct node *vary_node; /* the sweep's value; NULL when it was refused */
+    const struct node *vary_node;  /* the sweep's value; NULL when it was refused */
+    const struct node *swept_node; /* the same, also when only the input was understood */
+    const struct node *place;      /* where what is missing belongs: "given", else the chapter */
     /* Where the settings of the variants come from, [variant][input]; NULL = the standard. */
     const struct node *(*variant_nodes)[MODEL_MOST_INPUTS];
 };
@@ -56,7 +58,8 @@ bool draft_resolve(const struct reader *reader, const struct draft *draft,
                    const struct node *(**nodes)[MODEL_MOST_INPUTS]);
 
 /* Reports inputs that are missing, out of range or impossible together, `swept` running over
- * `span`. Settings that were refused before (NAN with a node) are passed over. */
+ * `span`.  Settings that were refused before (NAN with a node) are passed over.  `fallback`: the
+ * place of what no setting of the study is to blame for. */
 bool draft_check_variant(const struct reader *reader, const struct draft *draft,
                          const struct study_variant *variant,
                          const struct node *const *setting_nodes, const struct node *fallback,

@@ -15,9 +15,14 @@ bool given_is_edge(const struct model_input *input) {
     return input->dimension == DIMENSION_TIME && strcmp(input->name, "edge") == 0;
 }
 
+enum { MOST_NAMES = MODEL_MOST_INPUTS + 8 };
+
 /* Inputs of later versions are not offered. */
-static size_t input_names(const struct model *model, const char *names[MODEL_MOST_INPUTS]) {
+static size_t input_names(const struct model *model, const struct key_table *table,
+                          const char *names[MOST_NAMES]) {
     size_t count = 0;
+    for (size_t i = 0; table != NULL && i < table->count && count < 8; i++)
+        names[count++] = table->keys[i].name;
     for (size_t i = 0; i < model->input_count; i++)
         if (model->inputs[i].not_yet == NULL)
             names[count++] = model->inputs[i].name;
@@ -33,37 +38,25 @@ static const char *unknown(const struct reader *reader, const char *word, const 
     return message == NULL ? "" : message;
 }
 
-/* Outputs can be many; of a long list only the names are worth the line. */
-static const char *list_all(const struct reader *reader, const char *const *names, size_t count) {
-    struct text list = text_start(reader->arena, reader->error);
-    for (size_t i = 0; i < count; i++)
-        text_format(&list, "%s%s", i > 0 ? ", " : "; allowed: ", names[i]);
-    const char *whole = count <= 16 ? "" : text_end(&list);
-    return whole == NULL ? "" : whole;
-}
-
-size_t given_input(const struct reader *reader, const struct node *node,
-                   const struct model *model) {
-    const char *names[MODEL_MOST_INPUTS];
+size_t given_input(const struct reader *reader, const struct node *node, const struct model *model,
+                   const struct key_table *table) {
+    const char *names[MOST_NAMES];
     size_t index = model_input_index(model, node->key);
     if (index != SIZE_MAX)
         return index;
-    size_t count = input_names(model, names);
-    reader_refuse_key(reader, node, "%s%s",
-                      unknown(reader, node->key, "input", model, names, count),
-                      list_all(reader, names, count));
+    size_t count = input_names(model, table, names);
+    reader_refuse_key(reader, node, "%s", unknown(reader, node->key, "input", model, names, count));
     return SIZE_MAX;
 }
 
 size_t given_input_word(const struct reader *reader, const struct node *node, const char *word,
                         const struct model *model) {
-    const char *names[MODEL_MOST_INPUTS];
+    const char *names[MOST_NAMES];
     size_t index = model_input_index(model, word);
     if (index != SIZE_MAX)
         return index;
-    size_t count = input_names(model, names);
-    reader_refuse(reader, node, "%s%s", unknown(reader, word, "input", model, names, count),
-                  list_all(reader, names, count));
+    size_t count = input_names(model, NULL, names);
+    reader_refuse(reader, node, "%s", unknown(reader, word, "input", model, names, count));
     return SIZE_MAX;
 }
 
@@ -82,8 +75,7 @@ size_t given_output_word(const struct reader *reader, const struct node *node, c
     for (size_t i = 0; i < model->output_count; i++)
         if (model->outputs[i].not_yet == NULL)
             names[count++] = model->outputs[i].name;
-    reader_refuse(reader, node, "%s%s", unknown(reader, word, "output", model, names, count),
-                  list_all(reader, names, count));
+    reader_refuse(reader, node, "%s", unknown(reader, word, "output", model, names, count));
     return SIZE_MAX;
 }
 
@@ -193,25 +185,40 @@ bool given_value(const struct reader *reader, const struct node *node,
     return true;
 }
 
-static bool is_text(const struct reader *reader, const struct node *node) {
-    return node->kind == NODE_TEXT ||
-           reader_refuse(reader, node, "found %s; expected a text in quotes",
-                         tree_kind_name(node->kind));
+/* What was refused still counts as given: it is not missing. */
+static void read_source(const struct reader *reader, const struct node *node, const char *key,
+                        struct given *given) {
+    bool usable = !node->bad && strcmp(node->key, key) == 0;
+    if (strcmp(key, "stackup") == 0) {
+        given->stackup_node = node;
+        given->stackup = usable ? boards_find(reader, node) : NULL;
+    } else if (strcmp(key, "aggressor") == 0) {
+        given->aggressor_node = node;
+        given->aggressor = usable ? signals_find(reader, node) : NULL;
+    } else {
+        given->victim_node = node;
+        given->victim = usable ? signals_find(reader, node) : NULL;
+    }
 }
 
-static bool read_source(const struct reader *reader, const struct node *node, struct given *given) {
-    if (!is_text(reader, node))
-        return false;
-    if (strcmp(node->key, "stackup") == 0) {
-        given->stackup_node = node;
-        given->stackup = boards_find(reader, node);
-        return given->stackup != NULL;
-    }
-    bool drives = strcmp(node->key, "aggressor") == 0;
-    const struct study_signal *signal = signals_find(reader, node);
-    *(drives ? &given->aggressor_node : &given->victim_node) = node;
-    *(drives ? &given->aggressor : &given->victim) = signal;
-    return signal != NULL;
+static void refuse_input(struct given *given, size_t input, const struct node *node) {
+    given->input_nodes[input] = node;
+    given->settings[input] =
+        (struct study_setting){.value = NAN, .range = {NAN, NAN}, .origin = STUDY_GIVEN};
+}
+
+/* A misspelt key stands for what it was most likely meant as. */
+static void read_misspelt(const struct reader *reader, const struct node *node,
+                          const struct model *model, struct given *given) {
+    const char *names[MOST_NAMES];
+    size_t count = input_names(model, &keys_given, names);
+    const char *meant = text_nearest(node->key, names, count);
+    if (meant == NULL || tree_get(node->parent, meant) != NULL)
+        return;
+    if (given_is_source(meant))
+        read_source(reader, node, meant, given);
+    else
+        refuse_input(given, model_input_index(model, meant), node);
 }
 
 void given_read(const struct reader *reader, const struct node *node, const struct model *model,
@@ -219,19 +226,19 @@ void given_read(const struct reader *reader, const struct node *node, const stru
     *given = (struct given){.node = node};
     for (const struct node *child = node == NULL ? NULL : node->first; child != NULL;
          child = child->next) {
-        if (child->bad)
-            continue;
         if (given_is_source(child->key)) {
-            read_source(reader, child, given);
+            if (!child->bad || tree_get(node, child->key) == NULL)
+                read_source(reader, child, child->key, given);
             continue;
         }
-        size_t input = given_input(reader, child, model);
-        if (input == SIZE_MAX)
+        if (child->bad)
             continue;
-        /* A value that was refused still counts as given: it is not missing. */
-        given->input_nodes[input] = child;
-        given->settings[input] =
-            (struct study_setting){.value = NAN, .range = {NAN, NAN}, .origin = STUDY_GIVEN};
+        size_t input = given_input(reader, child, model, &keys_given);
+        if (input == SIZE_MAX) {
+            read_misspelt(reader, child, model, given);
+            continue;
+        }
+        refuse_input(given, input, child);
         given_setting(reader, child, &model->inputs[input], &given->settings[input]);
     }
 }

@@ -16,8 +16,10 @@ struct given {
 void given_read(const struct reader *reader, const struct node *node, const struct model *model,
                 struct given *given);
 
-/* The input that a key names; SIZE_MAX: a finding was added at the key. */
-size_t given_input(const struct reader *reader, const struct node *node, const struct model *model);
+/* The input that a key names; SIZE_MAX: a finding was added at the key.  `table`: what else may
+ * stand there, NULL = nothing. */
+size_t given_input(const struct reader *reader, const struct node *node, const struct model *model,
+                   const struct key_table *table);
 
 /* A word that must name an input, standing in the node's text. */
 size_t given_input_word(const struct reader *reader, const struct node *node, const char *word,

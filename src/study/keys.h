@@ -58,4 +58,8 @@ extern const char *const keys_pages[],
 /* Checks a node and all below it against a table; what is wrong is reported and marked bad. */
 void keys_check(const struct reader *reader, struct node *node, const struct key_table *table);
 
+/* Whether a member was refused that is `name` or, unknown, was most likely meant as it: what needs
+ * it is then not reported as well. */
+bool keys_refused(const struct node *object, const char *name);
+
 #endif

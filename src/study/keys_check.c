@@ -1,5 +1,7 @@
 #include "keys.h"
 
+#include "groundrules/text.h"
+
 #include <stdint.h>
 #include <string.h>
 
@@ -145,6 +147,27 @@ static void refuse_unknown(const struct reader *reader, struct node *node,
     reader_refuse_key(reader, node, "unknown key \"%s\" in %s%s", shown == NULL ? "" : shown,
                       table->name, reader_advice(reader, node->key, names, count));
     node->bad = true;
+    node->meant = text_nearest(node->key, names, count);
+}
+
+bool keys_refused(const struct node *object, const char *name) {
+    for (const struct node *child = object == NULL ? NULL : object->first; child != NULL;
+         child = child->next)
+        if (child->bad && child->key != NULL &&
+            (strcmp(child->key, name) == 0 ||
+             (child->meant != NULL && strcmp(child->meant, name) == 0)))
+            return true;
+    return false;
+}
+
+static void find_missing(const struct reader *reader, const struct node *node,
+                         const struct key_table *table) {
+    for (size_t i = 0; i < table->count; i++) {
+        const struct key *key = &table->keys[i];
+        if (key->required && tree_get(node, key->name) == NULL && !keys_refused(node, key->name))
+            reader_refuse(reader, node, "\"%s\" is missing in %s: %s", key->name, table->name,
+                          key->meaning);
+    }
 }
 
 void keys_check(const struct reader *reader, struct node *node, const struct key_table *table) {
@@ -168,12 +191,5 @@ void keys_check(const struct reader *reader, struct node *node, const struct key
             refuse_unknown(reader, child, table);
         }
     }
-    for (size_t i = 0; i < table->count; i++) {
-        bool there = false;
-        for (const struct node *child = node->first; child != NULL; child = child->next)
-            there = there || strcmp(child->key, table->keys[i].name) == 0;
-        if (table->keys[i].required && !there)
-            reader_refuse(reader, node, "\"%s\" is missing in %s: %s", table->keys[i].name,
-                          table->name, table->keys[i].meaning);
-    }
+    find_missing(reader, node, table);
 }

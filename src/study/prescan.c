@@ -212,6 +212,12 @@ static bool is_digit(char c) {
     return c >= '0' && c <= '9';
 }
 
+/* Nothing but a comma, a bracket or a brace may follow a number. */
+static bool unit_follows(const char *at) {
+    at += strspn(at, " \t");
+    return *at != '\0' && strchr("\r\n,:{}[]\"", *at) == NULL;
+}
+
 static bool scan_number(struct scanner *scanner) {
     const char *text = scanner->text + scanner->at;
     size_t i = text[0] == '-' ? 1 : 0;
@@ -236,6 +242,9 @@ static bool scan_number(struct scanner *scanner) {
     if (!ok || (text[i] != '\0' && strchr(" \t\r\n,]}", text[i]) == NULL))
         return wrong(scanner, scanner->at,
                      "this is not a number; a value with a unit is written in quotes, \"0.35 mm\"");
+    if (unit_follows(text + i))
+        return wrong(scanner, scanner->at,
+                     "a value with its unit stands in double quotes, such as \"0.35 mm\"");
     if (i > MOST_NUMBER)
         return wrong(scanner, scanner->at, "this number has too many digits");
     scanner->at += i;

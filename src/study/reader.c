@@ -45,7 +45,7 @@ const char *reader_shown(const struct reader *reader, const struct node *node) {
     return text == NULL ? "" : text;
 }
 
-enum { MOST_LISTED = 16 };
+enum { MOST_LISTED = 48 };
 
 const char *reader_advice(const struct reader *reader, const char *word, const char *const *names,
                           size_t count) {
@@ -82,8 +82,10 @@ const char *reader_value_text(const struct reader *reader, const struct node *no
     return NULL;
 }
 
-bool reader_in_bounds(const struct reader *reader, const struct node *node,
-                      enum dimension dimension, struct bounds bounds, double value) {
+/* `reaching`: the text whose tolerance gives the value, NULL when the value itself was written. */
+static bool in_bounds(const struct reader *reader, const struct node *node,
+                      enum dimension dimension, struct bounds bounds, double value,
+                      const char *reaching) {
     if (value >= bounds.lowest && value <= bounds.highest)
         return true;
     char found[64];
@@ -94,7 +96,15 @@ bool reader_in_bounds(const struct reader *reader, const struct node *node,
                    QUANTITY_MILLIMETRES);
     quantity_print(high, sizeof high, bounds.highest, dimension, -6, QUANTITY_ASCII,
                    QUANTITY_MILLIMETRES);
+    if (reaching != NULL)
+        return reader_refuse(reader, node, "\"%s\" reaches %s, out of range; allowed: %s to %s",
+                             reaching, found, low, high);
     return reader_refuse(reader, node, "%s is out of range; allowed: %s to %s", found, low, high);
+}
+
+bool reader_in_bounds(const struct reader *reader, const struct node *node,
+                      enum dimension dimension, struct bounds bounds, double value) {
+    return in_bounds(reader, node, dimension, bounds, value, NULL);
 }
 
 bool reader_quantity(const struct reader *reader, const struct node *node, enum dimension dimension,
@@ -109,9 +119,10 @@ bool reader_quantity(const struct reader *reader, const struct node *node, enum 
     if (exact && (read.minus > 0 || read.plus > 0))
         return reader_refuse(reader, node, "\"%s\": no tolerance is accepted here",
                              reader_shown(reader, node));
-    if (!reader_in_bounds(reader, node, dimension, bounds, read.value) ||
-        !reader_in_bounds(reader, node, dimension, bounds, read.value - read.minus) ||
-        !reader_in_bounds(reader, node, dimension, bounds, read.value + read.plus))
+    const char *shown = reader_shown(reader, node);
+    if (!in_bounds(reader, node, dimension, bounds, read.value, NULL) ||
+        !in_bounds(reader, node, dimension, bounds, read.value - read.minus, shown) ||
+        !in_bounds(reader, node, dimension, bounds, read.value + read.plus, shown))
         return false;
     *quantity = read;
     return true;
@@ -152,6 +163,8 @@ static bool read_level(const char *from, const char *to, double *level) {
     return true;
 }
 
+const char reader_levels_hint[] = "; its levels stand once, at the end: \"1.2 ns 10-90\"";
+
 bool reader_split_levels(const char *text, struct arena *arena, const char **rest,
                          struct levels *levels, struct error *error) {
     size_t length = strlen(text);
@@ -173,6 +186,8 @@ bool reader_split_levels(const char *text, struct arena *arena, const char **res
                          "\"%.*s\": the levels of an edge are percentages, the lower first, such "
                          "as \"10-90\" or \"20-80\"",
                          (int)(end - start < 40 ? end - start : 40), start);
+    while (start > text && start[-1] == ' ')
+        start--;
     char *front = arena_copy_length(arena, text, (size_t)(start - text), error);
     if (front == NULL)
         return false;
@@ -205,7 +220,8 @@ bool reader_span(const struct reader *reader, const struct node *node, enum dime
     bool spans = false;
     if (!quantity_parse_range(text, dimension, bounds.lowest * share, bounds.highest * share, &read,
                               &span, &spans, &error))
-        return reader_refuse(reader, node, "%s", error.message);
+        return reader_refuse(reader, node, "%s%s", error.message,
+                             levels != NULL ? reader_levels_hint : "");
     if (share < 1.0) {
         span =
             (struct interval){stretch(span.from, share, bounds), stretch(span.to, share, bounds)};

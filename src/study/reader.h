@@ -11,6 +11,7 @@ struct reader {
     struct findings *findings;
     const struct source *source;
     struct study *study; /* filled section by section; later sections look names up in it */
+    bool stackups_refused, signals_refused; /* the whole section: its names are not known */
 };
 
 /* Always false. */
@@ -58,6 +59,9 @@ bool reader_span(const struct reader *reader, const struct node *node, enum dime
  * the levels make no sense (a reason in `error`). */
 bool reader_split_levels(const char *text, struct arena *arena, const char **rest,
                          struct levels *levels, struct error *error);
+
+/* Follows what is said about an edge that cannot be read. */
+extern const char reader_levels_hint[];
 
 /* Index of the node's word; SIZE_MAX: refused. */
 size_t reader_word(const struct reader *reader, const struct node *node, const char *const *words);

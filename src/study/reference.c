@@ -37,7 +37,7 @@ static bool read_inputs(const struct reader *reader, const struct model *model,
                                    "the reference has the same signals as the case that is judged");
             continue;
         }
-        size_t input = given_input(reader, child, model);
+        size_t input = given_input(reader, child, model, &keys_reference);
         if (input == SIZE_MAX ||
             !given_value(reader, child, &model->inputs[input], &reference->values[input])) {
             ok = false;
@@ -102,8 +102,9 @@ bool rule_read_reference(const struct reader *reader, const struct draft *draft,
     ok = read_inputs(reader, model, node, reference, &words) && ok;
     if (ok && stackup == NULL && words.inputs == 0)
         ok = reader_refuse(reader, node,
-                           "the reference says nothing that differs from the case "
-                           "that is judged");
+                           "the reference says nothing that differs from the case that is judged; "
+                           "it takes a \"stackup\" and inputs of %s",
+                           model->name);
     if (!ok || !check_kept(reader, model, keep, reference))
         return false;
     if (reference->stackup != NULL && !isnan(reference->stackup->height.value))

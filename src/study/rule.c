@@ -1,10 +1,24 @@
 #include "rule.h"
 
+#include "groundrules/text.h"
+
 #include <math.h>
 #include <stdint.h>
 #include <string.h>
 
 static const double most_grid_steps = 1e6;
+
+static bool refuse_direction(const struct reader *reader, const struct node *node) {
+    static const char *const directions[] = {"smallest", "largest"};
+    const char *word =
+        arena_copy_length(reader->arena, node->text, strcspn(node->text, " "), reader->error);
+    const char *nearest = word == NULL ? NULL : text_nearest(word, directions, 2);
+    return reader_refuse(reader, node,
+                         "\"%s\": expected \"smallest INPUT\" or \"largest INPUT\", such as "
+                         "\"smallest gap\"%s%s%s",
+                         reader_shown(reader, node), nearest == NULL ? "" : "; did you mean \"",
+                         nearest == NULL ? "" : nearest, nearest == NULL ? "" : "\"?");
+}
 
 /* "smallest gap", "largest length" */
 static bool read_find(const struct reader *reader, const struct draft *draft,
@@ -15,10 +29,7 @@ static bool read_find(const struct reader *reader, const struct draft *draft,
         return false;
     bool smallest = strncmp(node->text, "smallest ", 9) == 0;
     if (!smallest && strncmp(node->text, "largest ", 8) != 0)
-        return reader_refuse(reader, node,
-                             "\"%s\": expected \"smallest INPUT\" or \"largest INPUT\", such as "
-                             "\"smallest gap\"",
-                             reader_shown(reader, node));
+        return refuse_direction(reader, node);
     const char *word = node->text + (smallest ? 9 : 8);
     size_t input = given_input_word(reader, node, word + strspn(word, " "), model);
     if (input == SIZE_MAX)
@@ -38,6 +49,11 @@ static bool read_find(const struct reader *reader, const struct draft *draft,
 
 static bool is_own(const struct draft *draft, const struct rule_draft *rule) {
     return draft->vary_node != NULL && draft->chapter.vary.input == rule->rule.find;
+}
+
+/* Whether the sweep, which was refused, may have been meant to give the range. */
+static bool is_swept(const struct draft *draft, const struct rule_draft *rule) {
+    return draft->swept_node == NULL || draft->chapter.vary.input == rule->rule.find;
 }
 
 /* What is found must not be fixed or spread elsewhere. */
@@ -71,6 +87,8 @@ static bool read_within(const struct reader *reader, const struct draft *draft,
         rule->rule.within = (struct interval){vary->points[0], vary->points[vary->point_count - 1]};
         return true;
     }
+    if (node == NULL && (keys_refused(rule->node, "within") || is_swept(draft, rule)))
+        return false; /* refused where it stands */
     if (node == NULL)
         return reader_refuse(reader, rule->node,
                              "\"within\" is missing: the chapter does not sweep %s, so the rule "
@@ -89,14 +107,17 @@ static bool read_grid(const struct reader *reader, const struct draft *draft,
                       struct rule_draft *rule) {
     const struct node *node = tree_get(rule->node, "grid");
     const struct model_input *input = &draft->chapter.model->inputs[rule->rule.find];
-    const struct interval *within = &rule->rule.within;
     if (node == NULL || !reader_number(reader, node, input->dimension, (struct bounds){-1e30, 1e30},
                                        &rule->rule.grid))
         return false;
+    return rule->rule.grid > 0 || reader_refuse(reader, node, "\"%s\": a grid must be above zero",
+                                                reader_shown(reader, node));
+}
+
+static bool check_grid(const struct reader *reader, const struct rule_draft *rule) {
+    const struct node *node = tree_get(rule->node, "grid");
+    const struct interval *within = &rule->rule.within;
     double grid = rule->rule.grid;
-    if (!(grid > 0))
-        return reader_refuse(reader, node, "\"%s\": a grid must be above zero",
-                             reader_shown(reader, node));
     if ((within->to - within->from) / grid > most_grid_steps)
         return reader_refuse(reader, node,
                              "\"%s\" is too fine: %.3g steps in the range searched, at most %.3g "
@@ -140,12 +161,23 @@ static bool check_variants(const struct reader *reader, const struct draft *draf
     const struct node *place = rule->within_node != NULL ? rule->within_node
                                : is_own(draft, rule)     ? draft->vary_node
                                                          : NULL;
+    /* Without a "given" of its own the rule has its troubles from the chapter. */
+    const struct node *fallback = rule->given.node != NULL ? rule->given.node : draft->place;
     bool ok = true;
     for (size_t i = 0; i < rule->variant_count; i++)
-        ok = draft_check_variant(reader, draft, &rule->variants[i], rule->nodes[i], rule->node,
+        ok = draft_check_variant(reader, draft, &rule->variants[i], rule->nodes[i], fallback,
                                  rule->rule.find, rule->rule.within, place) &&
              ok;
     return ok;
+}
+
+/* Where and how finely what is found is looked for. */
+static bool read_search(const struct reader *reader, const struct draft *draft,
+                        struct rule_draft *rule) {
+    bool ok = check_find(reader, draft, rule);
+    bool ranged = read_within(reader, draft, rule);
+    bool stepped = read_grid(reader, draft, rule);
+    return ranged && stepped && check_grid(reader, rule) && ok;
 }
 
 static void read_texts(const struct reader *reader, struct rule_draft *rule) {
@@ -169,21 +201,20 @@ static bool read_rule(const struct reader *reader, const struct draft *draft,
     read_texts(reader, rule);
     given_read(reader, tree_get(rule->node, "given"), draft->chapter.model, &rule->given);
     bool ok = check_given(reader, draft, rule);
-    bool found = read_find(reader, draft, rule);
-    if (draft->vary_node == NULL)
-        return false; /* the sweep was refused: nothing can be resolved */
-    if (!draft_resolve(reader, draft, &rule->given, &rule->variants, &rule->variant_count,
-                       &rule->nodes))
+    ok = read_find(reader, draft, rule) && ok;
+    if (draft->vary_node != NULL && !draft_resolve(reader, draft, &rule->given, &rule->variants,
+                                                   &rule->variant_count, &rule->nodes))
         return false;
     ok = rule_read_condition(reader, draft, rule) && ok;
-    if (!found || !check_find(reader, draft, rule) || !read_within(reader, draft, rule))
-        return false;
-    ok = read_grid(reader, draft, rule) && ok;
-    place_sweeps(draft, rule);
-    ok = check_variants(reader, draft, rule) && ok;
+    ok = rule->found && read_search(reader, draft, rule) && ok;
+    /* Cases are only built when all else is sound; without them the rest is read for itself. */
+    if (ok && draft->vary_node != NULL) {
+        place_sweeps(draft, rule);
+        ok = check_variants(reader, draft, rule);
+    }
     if (!ok)
-        return false; /* references and tables build on these cases */
-    ok = rule_read_reference(reader, draft, rule);
+        rule->variant_count = 0;
+    ok = rule_read_reference(reader, draft, rule) && ok;
     ok = rule_read_table(reader, draft, rule) && ok;
     rule->rule.variants = rule->variants;
     rule->rule.variant_count = rule->variant_count;

@@ -55,10 +55,13 @@ static bool read_axis(const struct reader *reader, const struct draft *draft,
     const struct model *model = draft->chapter.model;
     if (node->kind != NODE_OBJECT || node->count != 1)
         return reader_refuse(reader, node,
-                             "expected one input with its values, {\"length\": [\"up to 50 mm\", "
-                             "\"up to 100 mm\"]}");
+                             "found %s; expected one input with its values, {\"length\": [\"up to "
+                             "50 mm\", \"up to 100 mm\"]}",
+                             node->kind != NODE_OBJECT ? tree_kind_name(node->kind)
+                             : node->count > 1         ? "more than one input"
+                                                       : "no input");
     const struct node *child = node->first;
-    axis->input = given_input(reader, child, model);
+    axis->input = given_input(reader, child, model, NULL);
     return axis->input != SIZE_MAX && check_axis_input(reader, draft, child, rule, axis->input) &&
            read_entries(reader, child, &model->inputs[axis->input], axis);
 }

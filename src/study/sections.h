@@ -12,7 +12,7 @@ bool signals_read(const struct reader *reader, const struct node *node);
 bool products_read(const struct reader *reader, const struct node *node);
 bool chapters_read(const struct reader *reader, const struct node *node);
 
-/* By identifier; NULL: a finding was added at the node. */
+/* By identifier; NULL: a finding was added at the node, or the whole section was refused. */
 const struct study_stackup *boards_find(const struct reader *reader, const struct node *node);
 const struct study_signal *signals_find(const struct reader *reader, const struct node *node);
 

@@ -4,6 +4,9 @@
 #include <string.h>
 
 static const struct bounds swing_bounds = {1e-3, 1e3};
+/* Where "up to" starts and "at least" ends: what the models take. */
+static const struct bounds edge_reach = {10e-12, 10e-6};
+static const struct bounds source_reach = {0.0, 1e6};
 static const struct bounds edge_bounds = {1e-12, 1.0};
 static const struct bounds source_bounds = {0.0, INFINITY};
 static const struct bounds load_bounds = {0.0, INFINITY};
@@ -13,13 +16,13 @@ static const struct bounds share_bounds = {1e-3, 1.0};
 
 /* A tolerance counts as a range here: what is said must hold over all of it. */
 static void read_range(const struct reader *reader, const struct node *node,
-                       enum dimension dimension, struct bounds bounds, struct levels *levels,
-                       struct interval *range) {
+                       enum dimension dimension, struct bounds reach, struct bounds bounds,
+                       struct levels *levels, struct interval *range) {
     struct quantity quantity;
     struct interval read;
     bool is_range = false;
     if (node == NULL ||
-        !reader_span(reader, node, dimension, bounds, levels, &quantity, &read, &is_range))
+        !reader_span(reader, node, dimension, reach, levels, &quantity, &read, &is_range))
         return;
     if (!is_range)
         read = (struct interval){quantity.value - quantity.minus, quantity.value + quantity.plus};
@@ -62,16 +65,18 @@ static void read_signal(const struct reader *reader, const struct node *node,
                                     .source = {NAN, NAN},
                                     .load = NAN};
     read_value(reader, tree_get(node, "swing"), DIMENSION_VOLTAGE, swing_bounds, &signal->swing);
-    read_range(reader, edge, DIMENSION_TIME, edge_bounds, &levels, &signal->edge);
+    read_range(reader, edge, DIMENSION_TIME, edge_reach, edge_bounds, &levels, &signal->edge);
     signal->edge_text = reader_text(edge);
     signal->edge_low = levels.low;
     signal->edge_high = levels.high;
-    read_range(reader, tree_get(node, "source"), DIMENSION_RESISTANCE, source_bounds, NULL,
-               &signal->source);
+    read_range(reader, tree_get(node, "source"), DIMENSION_RESISTANCE, source_reach, source_bounds,
+               NULL, &signal->source);
     read_value(reader, tree_get(node, "load"), DIMENSION_RESISTANCE, load_bounds, &signal->load);
     read_value(reader, tree_get(node, "load_capacitance"), DIMENSION_CAPACITANCE,
                capacitance_bounds, &signal->load_capacitance);
     read_victim(reader, tree_get(node, "victim"), signal);
+    if (keys_refused(node, "victim"))
+        signal->is_victim = true;
 }
 
 bool signals_read(const struct reader *reader, const struct node *node) {
@@ -83,8 +88,7 @@ bool signals_read(const struct reader *reader, const struct node *node) {
         return false;
     size_t count = 0;
     for (const struct node *child = node->first; child != NULL; child = child->next)
-        if (child->kind == NODE_OBJECT)
-            read_signal(reader, child, &signals[count++]);
+        read_signal(reader, child, &signals[count++]);
     reader->study->signals = signals;
     reader->study->signal_count = count;
     return reader->error->kind == ERROR_NONE;
@@ -100,6 +104,8 @@ const struct study_signal *signals_find(const struct reader *reader, const struc
             return &study->signals[i];
         names[i] = study->signals[i].id;
     }
+    if (reader->signals_refused)
+        return NULL;
     reader_refuse(reader, node, "there is no signal \"%s\"%s", reader_shown(reader, node),
                   reader_advice(reader, node->text, names, study->signal_count));
     return NULL;

@@ -32,20 +32,29 @@ static bool read_earlier(const struct reader *reader, const struct node *node) {
     if (earlier == NULL)
         return false;
     study->earlier = earlier;
+    if (access(study->previous, R_OK) != 0) {
+        reader_refuse(reader, node, "cannot read \"%s\": %s", reader_shown(reader, node),
+                      strerror(errno));
+        return true;
+    }
     if (study_earlier_read(study->previous, reader->arena, earlier, &own))
         return true;
     if (own.kind != ERROR_INPUT) {
         *reader->error = own;
         return false;
     }
-    reader_refuse(reader, node, "the earlier issue \"%s\": %s", node->text, own.message);
+    reader_refuse(reader, node,
+                  "\"%s\" is no rules.json; expected the one that was written with the last issue",
+                  reader_shown(reader, node));
     return true;
 }
 
-static bool read_sections(const struct reader *reader, struct node *root) {
+static bool read_sections(struct reader *reader, struct node *root) {
     keys_check(reader, root, &keys_study);
     if (root->kind != NODE_OBJECT)
         return true;
+    reader->stackups_refused = keys_refused(root, "stackups");
+    reader->signals_refused = keys_refused(root, "signals");
     return read_earlier(reader, tree_get(root, "previous")) &&
            document_read(reader, tree_get(root, "document")) &&
            boards_read(reader, tree_get(root, "stackups")) &&
@@ -68,7 +77,8 @@ bool study_read_text(const char *path, const char *text, size_t length, struct a
     struct source source;
     struct study read = {.path = arena_copy(arena, path, &own)};
     struct findings findings = {.source = &source, .arena = arena, .error = &own};
-    struct reader reader = {arena, &own, &findings, &source, &read};
+    struct reader reader = {
+        .arena = arena, .error = &own, .findings = &findings, .source = &source, .study = &read};
     struct study_problems found = {0};
     if (read.path != NULL && source_index(&source, text, length, arena, &own)) {
         read_text(&reader, &source);

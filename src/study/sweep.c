@@ -54,8 +54,8 @@ static bool read_list(const struct reader *reader, const struct node *node,
                       const struct model_input *input, size_t fewest, const double **values,
                       size_t *count) {
     if (node->count < fewest || node->count > STUDY_MOST_POINTS)
-        return reader_refuse(reader, node, "%zu values; %zu to %d are accepted", node->count,
-                             fewest, STUDY_MOST_POINTS);
+        return reader_refuse(reader, node, "%zu value%s; %zu to %d are accepted", node->count,
+                             node->count == 1 ? "" : "s", fewest, STUDY_MOST_POINTS);
     double *read = arena_new(reader->arena, node->count, double, reader->error);
     bool ok = read != NULL;
     size_t used = 0;
@@ -86,18 +86,23 @@ bool draft_read_vary(const struct reader *reader, struct draft *draft) {
     if (node == NULL)
         return false;
     if (node->kind != NODE_OBJECT || node->count != 1)
-        return reader_refuse(reader, node,
-                             "expected one input with its sweep, {\"gap\": \"0.15 mm .. 6 mm in 40 "
-                             "points log\"}; found %s%s",
-                             tree_kind_name(node->kind),
-                             node->kind == NODE_OBJECT && node->count > 1
-                                 ? " with more than one input, put the others in \"compare\""
-                                 : "");
+        return reader_refuse(
+            reader, node,
+            "found %s; expected one input with its sweep, {\"gap\": \"0.15 mm .. 6 "
+            "mm in 40 points log\"}%s",
+            node->kind != NODE_OBJECT ? tree_kind_name(node->kind)
+            : node->count > 1         ? "more than one input"
+                                      : "no input",
+            node->kind == NODE_OBJECT && node->count > 1 ? "; put the others in \"compare\"" : "");
     const struct node *child = node->first;
-    size_t input = given_input(reader, child, model);
+    if (given_is_source(child->key))
+        return reader_refuse_key(
+            reader, child, "a %s cannot be swept; put it in \"compare\" or \"given\"", child->key);
+    size_t input = given_input(reader, child, model, NULL);
     if (input == SIZE_MAX || !can_vary(reader, draft, child, &model->inputs[input]))
         return false;
     vary->input = input;
+    draft->swept_node = child;
     bool ok;
     if (child->kind == NODE_LIST)
         ok = read_list(reader, child, &model->inputs[input], 2, &vary->points, &vary->point_count);

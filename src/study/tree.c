@@ -198,6 +198,6 @@ struct node *tree_get(const struct node *object, const char *key) {
 const char *tree_kind_name(enum node_kind kind) {
     static const char *const names[] = {
         [NODE_OBJECT] = "an object", [NODE_LIST] = "a list",         [NODE_TEXT] = "a text",
-        [NODE_NUMBER] = "a number",  [NODE_TRUTH] = "true or false", [NODE_NULL] = "null"};
+        [NODE_NUMBER] = "a number",  [NODE_TRUTH] = "a truth value", [NODE_NULL] = "null"};
     return names[kind];
 }

@@ -9,9 +9,10 @@ enum node_kind { NODE_OBJECT, NODE_LIST, NODE_TEXT, NODE_NUMBER, NODE_TRUTH, NOD
 
 struct node {
     enum node_kind kind;
-    bool bad;         /* already reported: its reader passes over it */
-    const char *key;  /* of a member, else NULL */
-    const char *text; /* NODE_TEXT: decoded; NODE_NUMBER: as written */
+    bool bad;          /* already reported: its reader passes over it */
+    const char *key;   /* of a member, else NULL */
+    const char *meant; /* of an unknown key: the known one that was most likely meant, or NULL */
+    const char *text;  /* NODE_TEXT: decoded; NODE_NUMBER: as written */
     size_t offset, key_offset;
     const struct node *parent;
     struct node *first, *next;
@@ -33,7 +34,7 @@ const char *tree_excerpt(const char *text, struct arena *arena, struct error *er
 /* A member that is there and not bad, else NULL. */
 struct node *tree_get(const struct node *object, const char *key);
 
-/* "an object", "a list", "a text", "a number", "true or false", "null". */
+/* "an object", "a list", "a text", "a number", "a truth value", "null". */
 const char *tree_kind_name(enum node_kind kind);
 
 #endif

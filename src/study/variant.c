@@ -152,8 +152,25 @@ static void refuse_source(const struct reader *reader, const struct model *model
     reader_refuse(reader, node, "the model %s has no input that %s sets", model->name, what);
 }
 
+/* A name that was refused sets its inputs to what is not known, so that they are not missing. */
+static void put_unknown_sources(const struct target *target, const struct choice *choice) {
+    static const struct study_stackup stackup = {.height = {.value = NAN}};
+    static const struct study_signal signal = {.swing = NAN,
+                                               .edge = {NAN, NAN},
+                                               .source = {NAN, NAN},
+                                               .load = NAN,
+                                               .load_capacitance = NAN};
+    if (choice->stackup == NULL && choice->stackup_node != NULL)
+        put_stackup(target, &stackup, choice->stackup_node);
+    if (choice->aggressor == NULL && choice->aggressor_node != NULL)
+        put_aggressor(target, &signal, choice->aggressor_node);
+    if (choice->victim == NULL && choice->victim_node != NULL)
+        put_victim(target, &signal, choice->victim_node);
+}
+
 static void put_sources(const struct reader *reader, const struct target *target,
                         const struct choice *choice) {
+    put_unknown_sources(target, choice);
     if (choice->stackup != NULL && !put_stackup(target, choice->stackup, choice->stackup_node))
         refuse_source(reader, target->model, choice->stackup_node, "a stackup");
     if (choice->aggressor != NULL &&
@@ -166,12 +183,12 @@ static void put_sources(const struct reader *reader, const struct target *target
 static void put_varied(const struct target *target, const struct draft *draft,
                        const struct given *rule) {
     const struct study_vary *vary = &draft->chapter.vary;
-    if (draft->vary_node == NULL || (rule != NULL && rule->input_nodes[vary->input] != NULL))
+    if (draft->swept_node == NULL || (rule != NULL && rule->input_nodes[vary->input] != NULL))
         return;
-    double first = vary->points[0];
+    double first = draft->vary_node == NULL ? (double)NAN : vary->points[0];
     target->settings[vary->input] =
         (struct study_setting){.value = first, .range = {first, first}, .origin = STUDY_VARIED};
-    target->nodes[vary->input] = draft->vary_node;
+    target->nodes[vary->input] = draft->swept_node;
 }
 
 /* "Two layers, 1.6 mm, tied"; without a comparison the board, else the model. */

@@ -13,7 +13,7 @@ struct inspection {
     const struct model *model;
     const struct study_variant *variant;
     const struct node *const *nodes;
-    const struct node *fallback;
+    const struct node *missing_place, *fallback;
     size_t swept;
     const struct node *span_node;
 };
@@ -49,8 +49,24 @@ static bool find_missing(const struct inspection *inspection, bool *refused) {
     if (missing.length == 0)
         return true;
     const char *list = text_end(&missing);
-    return list != NULL && reader_refuse(inspection->reader, inspection->fallback,
+    return list != NULL && reader_refuse(inspection->reader, inspection->missing_place,
                                          "%s needs %s, which nothing here sets", model->name, list);
+}
+
+/* Who set a value that does not stand in the study where the finding points. */
+static const char *setter(const struct inspection *inspection, size_t i) {
+    const struct study_variant *variant = inspection->variant;
+    const struct node *node = inspection->nodes[i];
+    const char *what = NULL;
+    if (node != NULL && variant->settings[i].origin == STUDY_FROM_STACKUP)
+        what = "stackup";
+    else if (node != NULL && variant->settings[i].origin == STUDY_FROM_SIGNAL)
+        what = "signal";
+    const char *text = what == NULL
+                           ? ""
+                           : arena_print(inspection->reader->arena, inspection->reader->error,
+                                         "the %s \"%s\" does not fit here: ", what, node->text);
+    return text == NULL ? "" : text;
 }
 
 static bool check_setting(const struct inspection *inspection, size_t i) {
@@ -61,7 +77,9 @@ static bool check_setting(const struct inspection *inspection, size_t i) {
     for (size_t k = 0; k < sizeof values / sizeof values[0]; k++) {
         struct error error = {0};
         if (!model_check_input(input, values[k], &error))
-            return reader_refuse(inspection->reader, place_of(inspection, i), "%s", error.message);
+            return reader_refuse(inspection->reader, place_of(inspection, i), "%s%s%s",
+                                 setter(inspection, i), error.message,
+                                 given_is_edge(input) ? ", from 0 to 100 %" : "");
     }
     return true;
 }
@@ -115,13 +133,14 @@ bool draft_check_variant(const struct reader *reader, const struct draft *draft,
                                     .model = draft->chapter.model,
                                     .variant = variant,
                                     .nodes = setting_nodes,
+                                    .missing_place = draft->place,
                                     .fallback = fallback,
                                     .swept = swept,
                                     .span_node = span_node};
     bool refused = false;
     bool ok = find_missing(&inspection, &refused);
     ok = check_settings(&inspection) && ok;
-    if (!ok || refused)
+    if (!ok || refused || isnan(span.from))
         return false;
     for (int side = NOMINAL; side < SIDES && ok; side++)
         ok = check_together(&inspection, (enum side)side, span.from) &&
