@@ -59,6 +59,10 @@ struct guideline_chapter {
     const struct guideline_rule *rules; /* [chapter->rule_count] */
 };
 
+/* The chapter's curve of one variant and output; NULL when no chart draws it. */
+const struct guideline_curve *guideline_find_curve(const struct guideline_chapter *chapter,
+                                                   size_t variant, size_t output);
+
 /* A change against the previous issue of the rules. */
 enum guideline_change_kind {
     GUIDELINE_NEW,

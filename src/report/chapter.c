@@ -142,14 +142,6 @@ static void geometry(struct flow *flow, const struct study_chapter *chapter) {
 
 /* ---- charts ---- */
 
-static const struct guideline_curve *curve_of(const struct guideline_chapter *chapter,
-                                              size_t variant, size_t output) {
-    for (size_t i = 0; i < chapter->curve_count; i++)
-        if (chapter->curves[i].variant == variant && chapter->curves[i].output == output)
-            return &chapter->curves[i];
-    return NULL;
-}
-
 static bool draws(const struct study_chart *chart, size_t output) {
     for (size_t i = 0; i < chart->output_count; i++)
         if (chart->outputs[i] == output)
@@ -220,7 +212,8 @@ static void add_series(struct flow *flow, const struct guideline_chapter *chapte
     plot->chart.style_count = boards ? study->stackup_count : 0;
     for (size_t o = 0; o < asked->output_count; o++)
         for (size_t v = 0; v < chapter->chapter->variant_count; v++) {
-            const struct guideline_curve *curve = curve_of(chapter, v, asked->outputs[o]);
+            const struct guideline_curve *curve =
+                guideline_find_curve(chapter, v, asked->outputs[o]);
             if (curve == NULL || plot->chart.series_count == CHART_MOST_SERIES)
                 continue;
             const struct model_output *output =

@@ -22,14 +22,6 @@ static const char *number(struct flow *flow, double value) {
     return value < 0.0 ? flow_print(flow, "−%s", text) : text;
 }
 
-static const struct guideline_curve *curve_of(const struct guideline_chapter *chapter,
-                                              size_t variant, size_t output) {
-    for (size_t i = 0; i < chapter->curve_count; i++)
-        if (chapter->curves[i].variant == variant && chapter->curves[i].output == output)
-            return &chapter->curves[i];
-    return NULL;
-}
-
 /* The unit that suits most numbers of a group is that of their geometric middle. */
 static double typical_of(const struct guideline_chapter *chapter, size_t output) {
     double largest = 0.0, smallest = INFINITY;
@@ -111,7 +103,7 @@ static void one_table(struct flow *flow, const struct guideline_chapter *chapter
         cells[0] = words_value(flow, asked->vary.points[point], input->dimension);
         for (size_t o = 0; o < output_count; o++)
             for (size_t v = 0; v < variants; v++) {
-                const struct guideline_curve *curve = curve_of(chapter, v, outputs[o]);
+                const struct guideline_curve *curve = guideline_find_curve(chapter, v, outputs[o]);
                 cells[1 + o * variants + v] =
                     curve == NULL ? "" : number(flow, curve->y[point] * scales[o]);
             }

@@ -8,14 +8,6 @@
 #include <math.h>
 #include <string.h>
 
-static const struct guideline_curve *curve_of(const struct guideline_chapter *chapter,
-                                              size_t variant, size_t output) {
-    for (size_t i = 0; i < chapter->curve_count; i++)
-        if (chapter->curves[i].variant == variant && chapter->curves[i].output == output)
-            return &chapter->curves[i];
-    return NULL;
-}
-
 static const char *name_of(struct flow *flow, const struct study_variant *variant) {
     return variant->label != NULL ? flow_escape(flow, variant->label) : "the board";
 }
@@ -42,7 +34,7 @@ static struct extremes extremes_at(const struct guideline_chapter *chapter, size
                                    size_t point) {
     struct extremes found = {0, 0, INFINITY, -INFINITY, 0};
     for (size_t v = 0; v < chapter->chapter->variant_count; v++) {
-        const struct guideline_curve *curve = curve_of(chapter, v, output);
+        const struct guideline_curve *curve = guideline_find_curve(chapter, v, output);
         if (curve == NULL || !isfinite(curve->y[point]))
             continue;
         found.seen++;
@@ -99,7 +91,7 @@ static const char *trends(struct flow *flow, const struct guideline_chapter *cha
     const char *text = "";
     bool falls = false;
     for (size_t v = 0; v < asked->variant_count && v < 3; v++) {
-        const struct guideline_curve *curve = curve_of(chapter, v, output);
+        const struct guideline_curve *curve = guideline_find_curve(chapter, v, output);
         if (curve == NULL || !(curve->y[0] > 0.0) || !(curve->y[last] > 0.0))
             return "";
         bool down = curve->y[last] < curve->y[0];

@@ -54,6 +54,14 @@ static bool make_curves(const struct study_chapter *chapter, struct guideline_ch
     return true;
 }
 
+const struct guideline_curve *guideline_find_curve(const struct guideline_chapter *chapter,
+                                                   size_t variant, size_t output) {
+    for (size_t i = 0; i < chapter->curve_count; i++)
+        if (chapter->curves[i].variant == variant && chapter->curves[i].output == output)
+            return &chapter->curves[i];
+    return NULL;
+}
+
 static size_t cell_count(const struct study_rule *rule) {
     if (rule->rows.count == 0)
         return 0;

@@ -93,14 +93,6 @@ static bool rules_csv(const struct guideline *guideline, struct arena *arena,
     return finish(&text, "rules.csv", file);
 }
 
-static const struct guideline_curve *curve_of(const struct guideline_chapter *chapter,
-                                              size_t variant, size_t output) {
-    for (size_t i = 0; i < chapter->curve_count; i++)
-        if (chapter->curves[i].variant == variant && chapter->curves[i].output == output)
-            return &chapter->curves[i];
-    return NULL;
-}
-
 static void curve_heads(struct text *text, const struct study_chapter *chapter,
                         const struct study_chart *chart, struct arena *arena, struct error *error) {
     const struct model_input *input = &chapter->model->inputs[chapter->vary.input];
@@ -131,7 +123,8 @@ static bool curves_csv(const struct guideline_chapter *chapter, size_t chart, st
         text_format(&text, "%.6g", asked->vary.points[i]);
         for (size_t o = 0; o < drawn->output_count; o++)
             for (size_t v = 0; v < asked->variant_count; v++) {
-                const struct guideline_curve *curve = curve_of(chapter, v, drawn->outputs[o]);
+                const struct guideline_curve *curve =
+                    guideline_find_curve(chapter, v, drawn->outputs[o]);
                 number(&text, curve != NULL ? curve->y[i] : NAN);
                 number(&text, curve != NULL ? curve->low[i] : NAN);
                 number(&text, curve != NULL ? curve->high[i] : NAN);
