@@ -162,10 +162,10 @@ static enum exit_code build(const struct options *options, struct arena *arena) 
         return report_error(&error);
     size_t unmet = rules_not_met(&guideline, &all);
     if (!options->quiet)
-        printf("%s: %zu files; %zu rules on their boards, %zu not met; %zu points and %zu fields "
+        printf("%s: %zu files; %zu bound%s found and proven, %zu not met; %zu points and %zu fields "
                "solved in %.1f s\n",
-               folder, count, all, unmet, guideline.cases_solved, guideline.fields_solved,
-               seconds() - start);
+               folder, count, all - unmet, all - unmet == 1 ? "" : "s", unmet,
+               guideline.cases_solved, guideline.fields_solved, seconds() - start);
     return options->strict && unmet > 0 ? EXIT_NOT_MET : EXIT_DONE;
 }
 

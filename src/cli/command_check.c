@@ -24,8 +24,10 @@ static enum exit_code check(const struct options *options, struct arena *arena) 
     struct error error = {0};
     if (study_read(options->words[0], arena, &study, &problems, &error)) {
         if (!options->quiet)
-            printf("%s: nothing wrong: %zu boards, %zu signals, %zu chapters\n", options->words[0],
-                   study.stackup_count, study.signal_count, study.chapter_count);
+            printf("%s: nothing wrong: %zu board%s, %zu signal%s, %zu chapter%s\n",
+                   options->words[0], study.stackup_count, study.stackup_count == 1 ? "" : "s",
+                   study.signal_count, study.signal_count == 1 ? "" : "s", study.chapter_count,
+                   study.chapter_count == 1 ? "" : "s");
         return EXIT_DONE;
     }
     if (error.kind != ERROR_NONE)

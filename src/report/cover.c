@@ -57,7 +57,10 @@ static void motif(struct flow *flow, double top, double height) {
     double gutter = 14.0, width = flow->page.right - flow->page.left;
     double each =
         (width - gutter * (double)(study->stackup_count - 1)) / (double)study->stackup_count;
+    const double traces = 0.3e-3;
     double scale = height / (1.35 * deepest);
+    if (traces * scale > 0.18 * each) /* a near plane alone: the width decides */
+        scale = 0.18 * each / traces;
     for (size_t i = 0; i < study->stackup_count; i++) {
         const struct study_stackup *stackup = &study->stackups[i];
         double x = flow->page.left + (each + gutter) * (double)i;
@@ -68,7 +71,7 @@ static void motif(struct flow *flow, double top, double height) {
                            plane = theme_solid(SKETCH_PLANE);
         scene_rectangle(flow->scene, x, foot - depth, each, depth, dielectric.fill);
         scene_rectangle(flow->scene, x, foot, each, copper, plane.fill);
-        double trace = 0.3e-3 * scale;
+        double trace = traces * scale;
         scene_rectangle(flow->scene, x + each * 0.32 - trace, foot - depth - copper, trace, copper,
                         theme_solid(SKETCH_AGGRESSOR).fill);
         scene_rectangle(flow->scene, x + each * 0.62, foot - depth - copper, trace, copper,
