@@ -60,7 +60,7 @@ static bool read_option(const struct reader *reader, const struct draft *draft,
         const struct model_input *input = &draft->chapter.model->inputs[axis->input];
         bool ok = given_setting(reader, node, input, &option->setting);
         option->setting.origin = STUDY_COMPARED;
-        option->label = input_label(reader, input, node->text);
+        option->label = ok ? input_label(reader, input, node->text) : NULL;
         return ok && option->label != NULL;
     }
     if (axis->kind == AXIS_STACKUP) {
