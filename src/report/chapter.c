@@ -344,10 +344,27 @@ static struct scene *draw_chart(struct flow *flow, const struct guideline_chapte
     return chart_draw(&plot->chart, width, height, flow->setter, flow->arena, NULL, flow->error);
 }
 
+static bool anything_to_show(const struct guideline_chapter *chapter,
+                             const struct study_chart *asked) {
+    for (size_t c = 0; c < chapter->curve_count; c++)
+        for (size_t i = 0;
+             draws(asked, chapter->curves[c].output) && i < chapter->chapter->vary.point_count; i++)
+            if (isfinite(chapter->curves[c].y[i]))
+                return true;
+    return false;
+}
+
 static void charts(struct flow *flow, const struct guideline_chapter *chapter) {
     double width = flow->page.right - flow->page.left;
     for (size_t i = 0; i < chapter->chapter->chart_count && !flow_failed(flow); i++) {
         const struct study_chart *asked = &chapter->chapter->charts[i];
+        if (!anything_to_show(chapter, asked)) {
+            flow_gap(flow, 10.0);
+            flow_text(flow, THEME_BODY,
+                      flow_print(flow, "%s: does not apply to this geometry.",
+                                 chart_title(flow, chapter->chapter, asked)));
+            continue;
+        }
         const char *name = flow_print(flow, "%s-%zu", chapter->chapter->id, i + 1);
         struct scene *scene = draw_chart(flow, chapter, asked, name, width);
         if (scene == NULL)
