@@ -280,4 +280,8 @@ bool study_earlier_read(const char *path, struct arena *arena, struct study_earl
 
 const struct study_stackup *study_find_stackup(const struct study *study, const char *id);
 
+/* The structure of a study as JSON Schema (draft 2020-12), made from the table of keys that the
+ * check uses.  Values are texts there; units and ranges are study_read's. */
+bool study_schema(struct arena *arena, const char **schema, struct error *error);
+
 #endif

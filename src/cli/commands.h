@@ -8,6 +8,7 @@ enum exit_code command_build(int argc, char **argv);
 enum exit_code command_check(int argc, char **argv);
 enum exit_code command_evaluate(int argc, char **argv);
 enum exit_code command_models(int argc, char **argv);
+enum exit_code command_schema(int argc, char **argv);
 
 struct study_problems;
 /* One problem a line on standard error: file:line:column: path: message. */

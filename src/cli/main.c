@@ -17,6 +17,7 @@ static const char help[] =
     "nothing\n"
     "       groundrules evaluate MODEL name=value…  answer one point\n"
     "       groundrules models [NAME]               what can be asked\n"
+    "       groundrules schema                      JSON Schema of a study, for editors\n"
     "\n"
     "  -o, --output DIR   folder of the guideline (standard: the study's name beside the study)\n"
     "  -j, --jobs N       threads (standard: all cores); the result does not depend on it\n"
@@ -40,6 +41,7 @@ static const struct command commands[] = {
     {"check", command_check},
     {"evaluate", command_evaluate},
     {"models", command_models},
+    {"schema", command_schema},
 };
 enum { COMMANDS = sizeof commands / sizeof *commands };
 
@@ -69,7 +71,7 @@ static enum exit_code unknown(const char *name) {
         error_set(&error, ERROR_USAGE, "unknown command '%s'; did you mean %s?", name, nearest);
     else
         error_set(&error, ERROR_USAGE,
-                  "unknown command '%s'; there are build, check, evaluate, models", name);
+                  "unknown command '%s'; there are build, check, evaluate, models, schema", name);
     return report_error(&error);
 }
 
