@@ -68,6 +68,21 @@ struct line_peak {
 bool line_response_peaks(const struct line_response *response, size_t victim, double edge,
                          struct line_peak *near, struct line_peak *far, struct error *error);
 
+/* The worst sequence of edges at both ends of `victim`, V per volt of swing:
+ *   free     edges of alternating sign, any two at least `bit_time` apart
+ *   clocked  edges on whole multiples of `bit_time`, worst over the phase of the observation
+ * Neither falls steadily with bit_time.  Exact for the sampled response (32 samples an edge);
+ * `error` is the relative change on twice the sample step, of the larger.  Fails: ERROR_INPUT when
+ * bit_time is not above 0 or so short against the ringing that more than a million samples would be
+ * needed; ERROR_MEMORY. */
+struct line_sequence {
+    double free, clocked;
+    double error;
+};
+bool line_response_sequences(const struct line_response *response, size_t victim, double edge,
+                             double bit_time, struct line_sequence *near, struct line_sequence *far,
+                             struct error *error);
+
 /* Samples v(t) at t = 0, step, 2 step ... for plots and sequences of edges; near[samples],
  * far[samples]. */
 bool line_response_samples(const struct line_response *response, size_t victim, double edge,

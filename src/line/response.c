@@ -1,6 +1,6 @@
-#include "curve.h"
+#include "response.h"
+
 #include "problem.h"
-#include "staircase.h"
 
 #include <math.h>
 #include <stdint.h>
@@ -19,16 +19,6 @@ static const double SHORT_PASSAGE = 30;
 static const double STEPS_PER_EDGE = 16;
 /* A capacitance this much faster than the shortest edge is left out. */
 static const double NEGLIGIBLE = 1e-4;
-
-struct line_response {
-    size_t count;
-    double shortest_edge;
-    bool exact;
-    struct staircase staircase[2];
-    struct curve curve[2][LINE_MOST_CONDUCTORS];
-    struct curve coarse[2][LINE_MOST_CONDUCTORS]; /* the same on twice the step */
-    double rest_error[2][LINE_MOST_CONDUCTORS];   /* relative: what may follow the window */
-};
 
 struct line_setup {
     const struct line_problem *problem;
@@ -176,8 +166,8 @@ struct line_response *line_response_create(const struct line_problem *problem, s
     return build_curves(&setup, arena, response, error) ? response : NULL;
 }
 
-static bool check_question(const struct line_response *response, size_t victim, double edge,
-                           struct error *error) {
+bool response_check(const struct line_response *response, size_t victim, double edge,
+                    struct error *error) {
     if (victim >= response->count)
         return error_set(error, ERROR_INPUT, "conductor is %zu, there are %zu (from 0)", victim,
                          response->count);
@@ -186,6 +176,12 @@ static bool check_question(const struct line_response *response, size_t victim, 
                          "edge is %g s, must be within %g (prepared for) and %g", edge,
                          response->shortest_edge, 1e9);
     return true;
+}
+
+double response_at(const struct line_response *response, size_t end, size_t victim, double edge,
+                   double time) {
+    return response->exact ? staircase_at(&response->staircase[end], victim, edge, time)
+                           : curve_response(&response->curve[end][victim], edge, time);
 }
 
 static struct line_peak peak_at(const struct line_response *response, size_t end, size_t victim,
@@ -206,7 +202,7 @@ static struct line_peak peak_at(const struct line_response *response, size_t end
 
 bool line_response_peaks(const struct line_response *response, size_t victim, double edge,
                          struct line_peak *near, struct line_peak *far, struct error *error) {
-    if (!check_question(response, victim, edge, error))
+    if (!response_check(response, victim, edge, error))
         return false;
     *near = peak_at(response, 0, victim, edge);
     *far = peak_at(response, 1, victim, edge);
@@ -216,16 +212,14 @@ bool line_response_peaks(const struct line_response *response, size_t victim, do
 bool line_response_samples(const struct line_response *response, size_t victim, double edge,
                            double step, size_t samples, double *near, double *far,
                            struct error *error) {
-    if (!check_question(response, victim, edge, error))
+    if (!response_check(response, victim, edge, error))
         return false;
     if (!(step > 0 && isfinite(step)))
         return error_set(error, ERROR_INPUT, "sample step is %g s, must be above 0", step);
     for (size_t end = 0; end < 2; end++) {
         double *out = end == 0 ? near : far;
         for (size_t i = 0; i < samples; i++)
-            out[i] = response->exact
-                         ? staircase_at(&response->staircase[end], victim, edge, (double)i * step)
-                         : curve_response(&response->curve[end][victim], edge, (double)i * step);
+            out[i] = response_at(response, end, victim, edge, (double)i * step);
     }
     return true;
 }

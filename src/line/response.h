@@ -1,0 +1,26 @@
+#ifndef LINE_RESPONSE_H
+#define LINE_RESPONSE_H
+
+#include "curve.h"
+#include "staircase.h"
+
+/* What is kept of a prepared response: exact staircases, or curves on two grids. */
+struct line_response {
+    size_t count;
+    double shortest_edge;
+    bool exact;
+    struct staircase staircase[2];
+    struct curve curve[2][LINE_MOST_CONDUCTORS];
+    struct curve coarse[2][LINE_MOST_CONDUCTORS]; /* the same on twice the step */
+    double rest_error[2][LINE_MOST_CONDUCTORS];   /* relative: what may follow the window */
+};
+
+/* Whether the conductor exists and the edge was prepared for; ERROR_INPUT otherwise. */
+bool response_check(const struct line_response *response, size_t victim, double edge,
+                    struct error *error);
+
+/* V at the near (0) or far end (1) of `victim` at `time`, for a ramp of `edge`. */
+double response_at(const struct line_response *response, size_t end, size_t victim, double edge,
+                   double time);
+
+#endif
