@@ -71,7 +71,7 @@ bool line_response_peaks(const struct line_response *response, size_t victim, do
 /* The worst sequence of edges at both ends of `victim`, V per volt of swing:
  *   free     edges of alternating sign, any two at least `bit_time` apart
  *   clocked  edges on whole multiples of `bit_time`, worst over the phase of the observation
- * Neither falls steadily with bit_time.  Exact for the sampled response (32 samples an edge);
+ * `free` never grows with bit_time; `clocked` may.  Exact for the sampled response (32 samples an edge);
  * `error` is the relative change on twice the sample step, of the larger.  Fails: ERROR_INPUT when
  * bit_time is not above 0 or so short against the ringing that more than a million samples would be
  * needed; ERROR_MEMORY. */
