@@ -82,6 +82,7 @@ struct study_signal {
     struct interval source;       /* ohm */
     double load;                  /* ohm, INFINITY = open */
     double load_capacitance;      /* F */
+    double bit_time;              /* s, least time between two edges; 0 = a single edge */
     bool is_victim;               /* has a noise budget */
     double noise_margin;          /* V */
     double share;                 /* of it for crosstalk, 0..1 */

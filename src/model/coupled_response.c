@@ -5,8 +5,6 @@
 #include <math.h>
 #include <string.h>
 
-#define SEQUENCES_NOT_YET "sequences of edges are not computed by this version"
-
 const char *const coupled_receiver_words[] = {"far", "near", NULL};
 
 const struct model_output coupled_outputs[COUPLED_OUTPUT_COUNT] = {
@@ -23,13 +21,14 @@ const struct model_output coupled_outputs[COUPLED_OUTPUT_COUNT] = {
     [COUPLED_RECEIVER_PEAK] = {"receiver_peak", "crosstalk peak at the receiver", "V<sub>rec</sub>",
                                "Largest voltage at the end where the victim's receiver sits.",
                                DIMENSION_VOLTAGE, MODEL_HIGHER_IS_WORSE, NULL},
-    [COUPLED_PATTERN_PEAK] = {"pattern_peak", "peak, worst sequence of edges", NULL,
-                              "Largest voltage for the worst sequence of edges, larger end.",
-                              DIMENSION_VOLTAGE, MODEL_HIGHER_IS_WORSE, SEQUENCES_NOT_YET},
+    [COUPLED_PATTERN_PEAK] = {"pattern_peak", "peak of the worst sequence of edges", NULL,
+                              "Largest voltage for the worst sequence of edges that are at least "
+                              "`bit_time` apart, larger end.",
+                              DIMENSION_VOLTAGE, MODEL_HIGHER_IS_WORSE, NULL},
     [COUPLED_CLOCKED_PEAK] =
-        {"clocked_peak", "peak, worst clocked sequence", NULL,
+        {"clocked_peak", "peak of the worst clocked sequence", NULL,
          "Largest voltage for edges on whole multiples of the bit time, larger end.",
-         DIMENSION_VOLTAGE, MODEL_HIGHER_IS_WORSE, SEQUENCES_NOT_YET},
+         DIMENSION_VOLTAGE, MODEL_HIGHER_IS_WORSE, NULL},
     [COUPLED_NEAR_END_RATIO] = {"near_end_ratio", "near-end peak over swing", NULL,
                                 "Near-end peak over the EMF's swing.", DIMENSION_RATIO,
                                 MODEL_HIGHER_IS_WORSE, NULL},
@@ -171,7 +170,6 @@ static void fill_peaks(const struct coupled_drive *drive, struct line_peak near,
     outputs[COUPLED_FAR_END_PEAK] = far_ratio * drive->swing;
     outputs[COUPLED_WORST_PEAK] = fmax(near_ratio, far_ratio) * drive->swing;
     outputs[COUPLED_RECEIVER_PEAK] = (drive->receiver_near ? near_ratio : far_ratio) * drive->swing;
-    outputs[COUPLED_PATTERN_PEAK] = outputs[COUPLED_CLOCKED_PEAK] = NAN;
     outputs[COUPLED_NEAR_END_RATIO] = near_ratio;
     outputs[COUPLED_FAR_END_RATIO] = far_ratio;
     outputs[COUPLED_NEAR_END_LEVEL] = level(near_ratio);
@@ -186,6 +184,25 @@ static void fill_peaks(const struct coupled_drive *drive, struct line_peak near,
     errors[COUPLED_FAR_END_RATIO] = far_error * far_ratio;
     errors[COUPLED_NEAR_END_LEVEL] = 20.0 / M_LN10 * near_error;
     errors[COUPLED_FAR_END_LEVEL] = 20.0 / M_LN10 * far_error;
+}
+
+/* The errors of both ends in proportion to their own peaks; the larger end counts. */
+static bool fill_sequences(const struct coupled_drive *drive, const struct line_response *response,
+                           double field_error, double *outputs, double *errors,
+                           struct error *error) {
+    struct line_sequence near, far;
+    outputs[COUPLED_PATTERN_PEAK] = outputs[COUPLED_CLOCKED_PEAK] = outputs[COUPLED_WORST_PEAK];
+    errors[COUPLED_PATTERN_PEAK] = errors[COUPLED_CLOCKED_PEAK] = errors[COUPLED_WORST_PEAK];
+    if (!(drive->bit_time > 0.0))
+        return true;
+    if (!line_response_sequences(response, 1, drive->edge, drive->bit_time, &near, &far, error))
+        return error_in(error, "sequence of edges");
+    outputs[COUPLED_PATTERN_PEAK] = fmax(near.free, far.free) * drive->swing;
+    outputs[COUPLED_CLOCKED_PEAK] = fmax(near.clocked, far.clocked) * drive->swing;
+    double uncertain = fmax(near.error * near.free, far.error * far.free) * drive->swing;
+    errors[COUPLED_PATTERN_PEAK] = uncertain + 2.0 * field_error * outputs[COUPLED_PATTERN_PEAK];
+    errors[COUPLED_CLOCKED_PEAK] = uncertain + 2.0 * field_error * outputs[COUPLED_CLOCKED_PEAK];
+    return true;
 }
 
 bool coupled_respond(const struct coupled_pair *pair, const struct coupled_drive *drive,
@@ -203,7 +220,6 @@ bool coupled_respond(const struct coupled_pair *pair, const struct coupled_drive
         errors[i] = isnan(outputs[i]) ? 0.0 : 2.0 * pair->error * fabs(outputs[i]);
     errors[COUPLED_BACKWARD_COEFFICIENT] =
         2.0 * pair->error * outputs[COUPLED_BACKWARD_COEFFICIENT];
-    errors[COUPLED_PATTERN_PEAK] = errors[COUPLED_CLOCKED_PEAK] = 0.0;
     fill_peaks(drive, near, far, pair->error, outputs, errors);
-    return true;
+    return fill_sequences(drive, response, pair->error, outputs, errors, error);
 }

@@ -17,6 +17,7 @@ struct coupled_pair {
 
 struct coupled_drive {
     double length, swing, edge;
+    double bit_time; /* s; 0 = a single edge */
     double source, load, load_capacitance;
     double victim_source, victim_load, victim_load_capacitance;
     bool receiver_near; /* the victim's load sits at the near end, its driver at the far end */
@@ -74,8 +75,7 @@ bool coupled_respond(const struct coupled_pair *pair, const struct coupled_drive
 #define COUPLED_BIT_TIME                                                                           \
     {                                                                                              \
         "bit_time", "least time between two edges; 0 = a single edge", DIMENSION_TIME,             \
-            MODEL_DRIVE, 0, 0, 1, false, NULL, NULL, 0,                                            \
-            "sequences of edges are not computed by this version; leave it out (a single edge)"    \
+            MODEL_DRIVE, 0, 0, 1, false, NULL, NULL, 0, NULL                                       \
     }
 #define COUPLED_SOURCE                                                                             \
     {                                                                                              \

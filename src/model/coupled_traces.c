@@ -196,6 +196,7 @@ static bool respond(const double *values, const double *prepared, struct model_w
         .length = values[LENGTH],
         .swing = values[SWING],
         .edge = values[EDGE],
+        .bit_time = values[BIT_TIME],
         .source = values[SOURCE],
         .load = values[LOAD],
         .load_capacitance = values[LOAD_CAPACITANCE],

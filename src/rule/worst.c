@@ -47,7 +47,7 @@ static size_t samples_for(const struct region *region, const struct region_axis 
     double spread = low > 0.0 ? log2(axis->high / low) : 3.0;
     /* Crosstalk is not monotone in length and edge; in resistances it bends gently. */
     bool wavy = is_named(region, axis, "length") || is_named(region, axis, "edge") ||
-                is_named(region, axis, "gap");
+                is_named(region, axis, "gap") || is_named(region, axis, "bit_time");
     size_t count = wavy ? 2 + (size_t)ceil((full ? 1.3 : 0.7) * spread) : full ? 3 : 2;
     return count > MOST_SAMPLES ? MOST_SAMPLES : count;
 }

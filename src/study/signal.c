@@ -11,6 +11,7 @@ static const struct bounds edge_bounds = {1e-12, 1.0};
 static const struct bounds source_bounds = {0.0, INFINITY};
 static const struct bounds load_bounds = {0.0, INFINITY};
 static const struct bounds capacitance_bounds = {0.0, 1e-6};
+static const struct bounds bit_bounds = {0.0, 1.0};
 static const struct bounds margin_bounds = {1e-6, 1e3};
 static const struct bounds share_bounds = {1e-3, 1.0};
 
@@ -74,6 +75,7 @@ static void read_signal(const struct reader *reader, const struct node *node,
     read_value(reader, tree_get(node, "load"), DIMENSION_RESISTANCE, load_bounds, &signal->load);
     read_value(reader, tree_get(node, "load_capacitance"), DIMENSION_CAPACITANCE,
                capacitance_bounds, &signal->load_capacitance);
+    read_value(reader, tree_get(node, "bit_time"), DIMENSION_TIME, bit_bounds, &signal->bit_time);
     read_victim(reader, tree_get(node, "victim"), signal);
     if (keys_refused(node, "victim"))
         signal->is_victim = true;

@@ -67,6 +67,8 @@ static bool put_aggressor(const struct target *target, const struct study_signal
     any = put(target, "edge", from_range(target, "edge", signal->edge), node) || any;
     any = put(target, "source", from_range(target, "source", signal->source), node) || any;
     any = put(target, "load", from_value(signal->load), node) || any;
+    if (signal->bit_time > 0.0)
+        any = put(target, "bit_time", from_value(signal->bit_time), node) || any;
     return put(target, "load_capacitance", from_value(signal->load_capacitance), node) || any;
 }
 
