@@ -213,7 +213,8 @@ static void cautions(struct flow *flow) {
         "holds.",
         "Edges are linear ramps. A rounder edge of the same 10–90 % time can give up to 28 % more "
         "at a matched far end. "
-        "Peaks are for one edge; a sequence of edges on a line that rings can add up to more.",
+        "Peaks are for one edge unless a bit time is given; on a line that rings the edges of a "
+        "sequence can add up to more.",
         "Only one aggressor switches. Several neighbours that switch together add their "
         "contributions.",
     };

@@ -25,6 +25,38 @@ static void test_pauls_ribbon_cable(void **state) {
     assert_close(output_of(model, &answer, "far_end_peak"), 108.93e-3, 5e-3);
 }
 
+/* By definition: without a bit time both sequences are the single edge; with one they are no less,
+ * and the clocked one is no more than the free one. */
+static void test_sequences_bound_the_single_edge(void **state) {
+    (void)state;
+    static const double bit_times[] = {0, 3e-9, 8e-9, 25e-9};
+    for (size_t k = 0; k < 4; k++) {
+        struct error error = {0};
+        struct answer answer;
+        struct named_value values[] = {{"inductance", 0.75e-6},
+                                       {"mutual_inductance", 0.1e-6},
+                                       {"capacitance", 43e-12},
+                                       {"mutual_capacitance", 2e-12},
+                                       {"length", 0.15},
+                                       {"source", 25},
+                                       {"victim_source", 25},
+                                       {"load", INFINITY},
+                                       {"victim_load", INFINITY},
+                                       {"load_capacitance", 5e-12},
+                                       {"victim_load_capacitance", 5e-12},
+                                       {"edge", 1.5e-9},
+                                       {"bit_time", bit_times[k]}};
+        assert_ok(try_point(model, values, 13, &answer, &error));
+        double single = output_of(model, &answer, "worst_peak");
+        double pattern = output_of(model, &answer, "pattern_peak");
+        double clocked = output_of(model, &answer, "clocked_peak");
+        if (bit_times[k] == 0)
+            assert_true(pattern == single && clocked == single);
+        assert_true(pattern >= single * (1 - 2e-3));
+        assert_true(clocked <= pattern * (1 + 1e-9));
+    }
+}
+
 static void test_coupling_beyond_the_geometric_mean_is_refused(void **state) {
     (void)state;
     struct error error = {0};
@@ -41,6 +73,7 @@ static void test_coupling_beyond_the_geometric_mean_is_refused(void **state) {
 int main(void) {
     const struct CMUnitTest tests[] = {
         cmocka_unit_test(test_pauls_ribbon_cable),
+        cmocka_unit_test(test_sequences_bound_the_single_edge),
         cmocka_unit_test(test_coupling_beyond_the_geometric_mean_is_refused)};
     return cmocka_run_group_tests(tests, NULL, NULL);
 }
