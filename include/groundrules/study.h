@@ -167,11 +167,14 @@ struct study_reference {
     const char *text; /* "Four layers at a gap of 0.3 mm", made by the reader */
 };
 
-/* A range of one input along an axis of a rule's table: "up to 100 mm" or one value. */
+/* An axis of a rule's table: ranges of one input ("up to 100 mm" or one value), or signal classes
+ * in the place of the aggressor or the victim. */
 struct study_cell_axis {
-    size_t input;
-    const struct interval *ranges;
-    const char *const *labels; /* as written */
+    const char *name;                          /* of the input, or "aggressor", "victim" */
+    size_t input;                              /* of ranges */
+    const struct interval *ranges;             /* NULL for signals */
+    const struct study_signal *const *signals; /* NULL for an input */
+    const char *const *labels;                 /* ranges as written, names of signals */
     size_t count;
 };
 
@@ -190,6 +193,8 @@ struct study_rule {
     const struct study_variant *variants; /* the chapter's, with the rule's own `given` applied */
     size_t variant_count;
     struct study_cell_axis rows, columns; /* table; count 0 = none */
+    /* [(variant * rows + row) * columns + column], where an axis has signals; NULL = `variants`. */
+    const struct study_variant *cells;
     const char *applies_to, *why, *check; /* may be NULL */
     unsigned line, column;
 };

@@ -147,7 +147,6 @@ static void board_table(struct flow *flow, const struct guideline_chapter *chapt
     const struct study_rule *stated = rule->rule;
     size_t row_count = stated->rows.count,
            column_count = stated->columns.count > 0 ? stated->columns.count : 1;
-    const struct model_input *rows_of = &chapter->chapter->model->inputs[stated->rows.input];
     struct table_row *rows = arena_new(flow->arena, row_count, struct table_row, flow->error);
     struct table_column *columns =
         arena_new(flow->arena, column_count + 1, struct table_column, flow->error);
@@ -155,17 +154,17 @@ static void board_table(struct flow *flow, const struct guideline_chapter *chapt
         arena_new(flow->arena, column_count + 1, struct table_head, flow->error);
     if (rows == NULL || columns == NULL || heads == NULL)
         return;
-    heads[0].text = words_name(flow, rows_of->name);
+    heads[0].text = words_name(flow, stated->rows.name);
     for (size_t c = 0; c < column_count; c++) {
         columns[1 + c].align = TABLE_CENTRE;
         heads[1 + c].text =
             stated->columns.count == 0
                 ? words_name(flow, chapter->chapter->model->inputs[stated->find].name)
-                : flow_print(
-                      flow, "%s %s",
-                      words_name(flow, chapter->chapter->model->inputs[stated->columns.input].name),
-                      flow_escape(flow, stated->columns.labels[c]));
+                : flow_escape(flow, stated->columns.labels[c]);
     }
+    bool grouped = stated->columns.count > 0;
+    const struct table_head groups[2] = {
+        {"", 1}, {grouped ? words_name(flow, stated->columns.name) : "", column_count}};
     for (size_t r = 0; r < row_count; r++) {
         const char **cells = arena_new(flow->arena, column_count + 1, const char *, flow->error);
         if (cells == NULL)
@@ -177,15 +176,15 @@ static void board_table(struct flow *flow, const struct guideline_chapter *chapt
                                     &rule->cells[(v * row_count + r) * column_count + c]);
         rows[r].cells = cells;
     }
-    struct table_head_row head = {heads, column_count + 1};
+    const struct table_head_row head[2] = {{groups, 2}, {heads, column_count + 1}};
     struct table table = {.name = flow_print(flow, "%s-table-%zu", stated->id, v + 1),
                           .columns = columns,
                           .column_count = column_count + 1,
-                          .heads = &head,
-                          .head_count = 1,
+                          .heads = grouped ? head : &head[1],
+                          .head_count = grouped ? 2 : 1,
                           .rows = rows,
                           .row_count = row_count,
-                          .stretch = false};
+                          .stretch = column_count > 4};
     const char *label = stated->variants[v].label;
     flow_gap(flow, 8.0);
     flow_need(flow, 40.0 + 14.0 * (double)row_count);

@@ -60,6 +60,25 @@ static void add_variant(struct lines *lines, const struct model *model, const ch
                                variant->victim->noise_margin * variant->victim->share));
 }
 
+static void add_axis(struct lines *lines, const struct study_rule *rule, const char *which,
+                     const struct study_cell_axis *axis) {
+    for (size_t i = 0; i < axis->count && axis->ranges != NULL; i++)
+        add(lines, arena_print(lines->arena, lines->error, "%s %s %s %zu %.9g %.9g\n", rule->id,
+                               which, axis->name, i, axis->ranges[i].from, axis->ranges[i].to));
+}
+
+static void add_cells(struct lines *lines, const struct study_chapter *chapter,
+                      const struct study_rule *rule) {
+    size_t columns = rule->columns.count > 0 ? rule->columns.count : 1;
+    add_axis(lines, rule, "rows", &rule->rows);
+    add_axis(lines, rule, "columns", &rule->columns);
+    for (size_t i = 0; rule->cells != NULL && i < rule->variant_count * rule->rows.count * columns;
+         i++)
+        add_variant(lines, chapter->model,
+                    arena_print(lines->arena, lines->error, "%s cell", rule->id), i,
+                    &rule->cells[i]);
+}
+
 static void add_rule(struct lines *lines, const struct study_chapter *chapter,
                      const struct study_rule *rule) {
     add(lines, arena_print(lines->arena, lines->error,
@@ -68,6 +87,7 @@ static void add_rule(struct lines *lines, const struct study_chapter *chapter,
                            rule->grid, rule->condition.text, rule->nominal));
     for (size_t v = 0; v < rule->variant_count; v++)
         add_variant(lines, chapter->model, rule->id, v, &rule->variants[v]);
+    add_cells(lines, chapter, rule);
     if (rule->condition.against != STUDY_REFERENCE)
         return;
     const struct study_stackup *stackup = rule->reference.stackup;

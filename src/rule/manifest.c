@@ -76,9 +76,9 @@ static void cells(struct json *json, const struct model *model, const struct gui
     json_open(json, "table", '[');
     for (size_t i = 0; i < stated->rows.count * columns; i++) {
         json_open(json, NULL, '{');
-        json_text(json, model->inputs[stated->rows.input].name, stated->rows.labels[i / columns]);
+        json_text(json, stated->rows.name, stated->rows.labels[i / columns]);
         if (stated->columns.count > 0)
-            json_text(json, model->inputs[stated->columns.input].name,
+            json_text(json, stated->columns.name,
                       stated->columns.labels[i % columns]);
         finding(json, model, &rule->cells[v * stated->rows.count * columns + i]);
         json_close(json, '}');

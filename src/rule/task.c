@@ -128,10 +128,9 @@ static bool keep_impedance(struct judge *judge, struct region *region, struct er
     return true;
 }
 
-static bool find(struct task *task, struct solver *solver, struct region *region,
-                 struct guideline_finding *finding) {
+static bool find(struct task *task, struct solver *solver, const struct study_variant *variant,
+                 struct region *region, struct guideline_finding *finding) {
     const struct study_rule *rule = task->rule->rule;
-    const struct study_variant *variant = &rule->variants[task->variant];
     struct judge judge = {.solver = solver,
                           .region = region,
                           .output = rule->condition.output,
@@ -147,19 +146,29 @@ static bool find(struct task *task, struct solver *solver, struct region *region
     return find_bound(rule, variant, &judge, region, finding, &task->error);
 }
 
+static void restrict_to(struct region *region, const struct study_cell_axis *axis, size_t index) {
+    if (axis->ranges != NULL)
+        region_restrict(region, axis->input, axis->ranges[index]);
+}
+
 static bool rule_or_cell(struct task *task, struct solver *solver) {
     const struct study_rule *rule = task->rule->rule;
-    struct region region;
-    region_of(solver->model, &rule->variants[task->variant], rule->find, rule->nominal, &region);
-    if (task->kind == TASK_RULE)
-        return find(task, solver, &region,
-                    (struct guideline_finding *)&task->rule->findings[task->variant]);
+    const struct study_variant *variant = &rule->variants[task->variant];
     size_t columns = rule->columns.count > 0 ? rule->columns.count : 1;
-    region_restrict(&region, rule->rows.input, rule->rows.ranges[task->index / columns]);
-    if (rule->columns.count > 0)
-        region_restrict(&region, rule->columns.input, rule->columns.ranges[task->index % columns]);
     size_t place = task->variant * rule->rows.count * columns + task->index;
-    return find(task, solver, &region, (struct guideline_finding *)&task->rule->cells[place]);
+    bool cell = task->kind != TASK_RULE;
+    struct region region;
+    if (cell && rule->cells != NULL)
+        variant = &rule->cells[place];
+    region_of(solver->model, variant, rule->find, rule->nominal, &region);
+    if (!cell)
+        return find(task, solver, variant, &region,
+                    (struct guideline_finding *)&task->rule->findings[task->variant]);
+    restrict_to(&region, &rule->rows, task->index / columns);
+    if (rule->columns.count > 0)
+        restrict_to(&region, &rule->columns, task->index % columns);
+    return find(task, solver, variant, &region,
+                (struct guideline_finding *)&task->rule->cells[place]);
 }
 
 void task_run(struct task *task, struct model_memo *memo) {

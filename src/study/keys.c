@@ -240,10 +240,18 @@ static const struct key rule_table[] = {
     {.name = "rows",
      .kind = KEY_FREE,
      .required = true,
-     .meaning = "one input with its list of values or ranges"},
-    {.name = "columns", .kind = KEY_FREE, .meaning = "another input, likewise"},
+     .meaning = "one input with its list of values or ranges, or \"aggressor\" or \"victim\" with "
+                "a list of signals"},
+    {.name = "columns", .kind = KEY_FREE, .meaning = "another one, likewise"},
 };
 TABLE(rule_table, "a rule's table", NULL);
+
+/* Beside the model's inputs; rows and columns are read as they come. */
+static const struct key cells[] = {
+    {.name = "aggressor", .kind = KEY_TEXTS, .meaning = "signals as aggressors"},
+    {.name = "victim", .kind = KEY_TEXTS, .meaning = "signals as victims"},
+};
+TABLE(cells, "an axis of a rule's table", "inputs of the model, each with its values");
 
 static const struct key rule[] = {
     {.name = "id",

@@ -42,7 +42,7 @@ struct key_table {
 
 extern const struct key_table keys_study, keys_document, keys_stackup, keys_layer, keys_smallest,
     keys_signal, keys_victim, keys_product, keys_chapter, keys_given, keys_compare, keys_chart,
-    keys_rule, keys_reference, keys_rule_table;
+    keys_rule, keys_reference, keys_rule_table, keys_cells;
 
 /* Every table, for documentation. */
 extern const struct key_table *const keys_all[];

@@ -142,7 +142,7 @@ static bool check_given(const struct reader *reader, const struct draft *draft,
 
 /* The input that is found and, unless the rule gives it, the one that the chapter sweeps: what a
  * rule says holds over the whole sweep. */
-static void place_sweeps(const struct draft *draft, struct rule_draft *rule) {
+void rule_place_sweeps(const struct draft *draft, struct rule_draft *rule) {
     const struct study_vary *vary = &draft->chapter.vary;
     size_t find = rule->rule.find;
     double start = rule->rule.within.from;
@@ -156,8 +156,8 @@ static void place_sweeps(const struct draft *draft, struct rule_draft *rule) {
     }
 }
 
-static bool check_variants(const struct reader *reader, const struct draft *draft,
-                           const struct rule_draft *rule) {
+bool rule_check_variants(const struct reader *reader, const struct draft *draft,
+                         const struct rule_draft *rule) {
     const struct node *place = rule->within_node != NULL ? rule->within_node
                                : is_own(draft, rule)     ? draft->vary_node
                                                          : NULL;
@@ -209,8 +209,8 @@ static bool read_rule(const struct reader *reader, const struct draft *draft,
     ok = rule->found && read_search(reader, draft, rule) && ok;
     /* Cases are only built when all else is sound; without them the rest is read for itself. */
     if (ok && draft->vary_node != NULL) {
-        place_sweeps(draft, rule);
-        ok = check_variants(reader, draft, rule);
+        rule_place_sweeps(draft, rule);
+        ok = rule_check_variants(reader, draft, rule);
     }
     if (!ok)
         rule->variant_count = 0;

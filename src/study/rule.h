@@ -15,6 +15,12 @@ struct rule_draft {
     const struct node *within_node;
 };
 
+/* rule.c: the input that is found and the chapter's sweep into the variants; then whether they can
+ * be built.  Findings are added at the nodes. */
+void rule_place_sweeps(const struct draft *draft, struct rule_draft *rule);
+bool rule_check_variants(const struct reader *reader, const struct draft *draft,
+                         const struct rule_draft *rule);
+
 /* condition.c: "so_that", after the variants are known. */
 bool rule_read_condition(const struct reader *reader, const struct draft *draft,
                          struct rule_draft *rule);
