@@ -89,7 +89,7 @@ static bool build_curves(const struct line_setup *setup, struct arena *arena,
     double scale = fmin(fastest / STEPS_PER_CONSTANT, passage / (double)steps);
     /* A front that is dropped is late or early by part of a step; one that is kept with a series
      * that does not converge is wrong by its last term: the lesser evil of the two. */
-    double converged = fmin(fmax(scale / response->shortest_edge, 0.01), 0.2);
+    double converged = fmin(fmax(scale / response->shortest_edge, 0.05), 0.2);
     struct fronts_limit limit = {.smallest = GRID_FRONT,
                                  .most = MOST_GRID_FRONTS,
                                  .latest = INFINITY,
