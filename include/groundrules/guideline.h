@@ -7,6 +7,8 @@
  * exports write it; neither computes physics.  All owned by the arena given to guideline_compute.
  */
 
+#define GUIDELINE_SMALL_SHARE 0.01
+
 /* One output of one variant along the chapter's sweep.  Where the variant has ranges (edges,
  * drivers, receiver at either end) y is the worst over them, found as a rule finds it. */
 struct guideline_curve {
@@ -16,7 +18,8 @@ struct guideline_curve {
     const double *low; /* [points], over the tolerance corners; equal to y without tolerance */
     const double *high;
     const unsigned *flags; /* [points], the model's validity flags */
-    double error;          /* largest estimated relative error along the curve */
+    double error;          /* largest estimated error along the curve, relative to the value or to
+                              GUIDELINE_SMALL_SHARE of the curve's largest, whichever is more */
 };
 
 enum guideline_status {

@@ -431,8 +431,10 @@ static void method(struct flow *flow, const struct guideline_chapter *chapter) {
         flow, "Method of the model %s, revision %u: see Methods and sources. %s",
         flow_escape(flow, model->name), model->revision, flow_escape(flow, model->validity));
     if (error > 0.0)
-        text = flow_print(flow, "%s Largest estimated error along the curves: %s.", text,
-                          words_digits(flow, error, DIMENSION_RATIO, -1));
+        text = flow_print(flow,
+                          "%s Largest estimated error along the curves: %s of the value, or of a "
+                          "hundredth of the curve’s largest.",
+                          text, words_digits(flow, error, DIMENSION_RATIO, -1));
     for (size_t i = 0; i < model->flag_count; i++)
         if ((flags >> i & 1u) != 0)
             text = flow_print(flow, "%s Flagged here: %s", text,

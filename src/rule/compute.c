@@ -9,6 +9,7 @@
 
 #include "fingerprint.h"
 
+#include <math.h>
 #include <omp.h>
 #include <stdlib.h>
 #include <string.h>
@@ -154,18 +155,29 @@ static bool first_error(const struct task *tasks, size_t count, struct error *er
     return true;
 }
 
-static void set_curve_errors(struct guideline_chapter *chapters, const struct task *tasks,
-                             size_t count) {
-    (void)chapters;
+/* What is a hundredth of the curve's largest value or less is known to a share of that hundredth
+ * only: nobody reads more out of a chart, and no budget is so small. */
+static double floor_of(const struct guideline_curve *curve, size_t points) {
+    double largest = 0.0;
+    for (size_t i = 0; i < points; i++)
+        if (fabs(curve->y[i]) > largest)
+            largest = fabs(curve->y[i]);
+    return GUIDELINE_SMALL_SHARE * largest;
+}
+
+static void set_curve_errors(const struct task *tasks, size_t count) {
     for (size_t i = 0; i < count; i++) {
         if (tasks[i].kind != TASK_POINT)
             continue;
-        size_t each = tasks[i].chapter->curve_count / tasks[i].chapter->chapter->variant_count;
+        const struct study_chapter *chapter = tasks[i].chapter->chapter;
+        size_t each = tasks[i].chapter->curve_count / chapter->variant_count;
         for (size_t o = 0; o < each; o++) {
             struct guideline_curve *curve =
                 (struct guideline_curve *)&tasks[i].chapter->curves[tasks[i].variant * each + o];
-            if (tasks[i].relative_error[o] > curve->error)
-                curve->error = tasks[i].relative_error[o];
+            double size =
+                fmax(fabs(curve->y[tasks[i].index]), floor_of(curve, chapter->vary.point_count));
+            if (size > 0.0)
+                curve->error = fmax(curve->error, tasks[i].error_at[o] / size);
         }
     }
 }
@@ -195,7 +207,7 @@ bool guideline_compute(const struct study *study, const struct guideline_options
     run_all(tasks, count, memo, options);
     if (!first_error(tasks, count, error))
         goto out;
-    set_curve_errors(chapters, tasks, count);
+    set_curve_errors(tasks, count);
     for (size_t i = 0; i < count; i++) {
         made.cases_asked += tasks[i].asked;
         made.cases_solved += tasks[i].solved;

@@ -58,8 +58,7 @@ static bool point(struct task *task, struct solver *solver) {
         ((double *)curve->low)[task->index] = band.low;
         ((double *)curve->high)[task->index] = band.high;
         ((unsigned *)curve->flags)[task->index] = worst.verdict.flags;
-        task->relative_error[o] =
-            worst.verdict.value != 0.0 ? fabs(worst.verdict.error / worst.verdict.value) : 0.0;
+        task->error_at[o] = fabs(worst.verdict.error);
     }
     return true;
 }

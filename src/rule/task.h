@@ -14,7 +14,7 @@ struct task {
     size_t index; /* of the cell or the point */
     struct error error;
     size_t asked, solved;
-    double relative_error[MODEL_MOST_OUTPUTS]; /* TASK_POINT: per output drawn */
+    double error_at[MODEL_MOST_OUTPUTS]; /* TASK_POINT: absolute, per output drawn */
 };
 
 void task_run(struct task *task, struct model_memo *memo);
