@@ -93,10 +93,17 @@ static bool rules_csv(const struct guideline *guideline, struct arena *arena,
     return finish(&text, "rules.csv", file);
 }
 
+/* " [V]"; nothing for a ratio or a number. */
+static const char *bracketed(enum dimension dimension, struct arena *arena, struct error *error) {
+    const char *unit = dimension_unit(dimension);
+    return *unit == '\0' ? "" : arena_print(arena, error, " [%s]", unit);
+}
+
 static void curve_heads(struct text *text, const struct study_chapter *chapter,
                         const struct study_chart *chart, struct arena *arena, struct error *error) {
     const struct model_input *input = &chapter->model->inputs[chapter->vary.input];
-    field(text, arena_print(arena, error, "%s [%s]", input->name, dimension_unit(input->dimension)),
+    field(text,
+          arena_print(arena, error, "%s%s", input->name, bracketed(input->dimension, arena, error)),
           true);
     for (size_t o = 0; o < chart->output_count; o++)
         for (size_t v = 0; v < chapter->variant_count; v++) {
@@ -106,8 +113,8 @@ static void curve_heads(struct text *text, const struct study_chapter *chapter,
             const char *parts[] = {"", " low", " high"};
             for (size_t p = 0; p < 3; p++)
                 field(text,
-                      arena_print(arena, error, "%s%s [%s] %s", output->name, parts[p],
-                                  dimension_unit(output->dimension), label),
+                      arena_print(arena, error, "%s%s%s %s", output->name, parts[p],
+                                  bracketed(output->dimension, arena, error), label),
                       false);
         }
     text_add(text, "\r\n");
