@@ -29,6 +29,6 @@ static inline int page_close(void **state) {
     return 0;
 }
 
-#define page_test(name) cmocka_unit_test_setup_teardown((name), page_open, page_close)
+#define page_test(name) cmocka_unit_test_setup_teardown(name, page_open, page_close)
 
 #endif

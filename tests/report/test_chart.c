@@ -54,6 +54,50 @@ static void test_labels_at_the_ends_keep_apart_and_inside(void **state) {
     }
 }
 
+/* Ten curves that end within a hair of each other: labels neither overlap nor leave the page, or a
+ * legend stands above. */
+static void test_ten_curves_keep_their_labels_apart(void **state) {
+    struct page *page = *state;
+    enum { CURVES = 10 };
+    static const char *const labels[CURVES] = {
+        "Two layers, 1.6 mm, nothing",  "Two layers, 1.6 mm, floating",
+        "Two layers, 1.6 mm, tied",     "Two layers, 0.8 mm, nothing",
+        "Two layers, 0.8 mm, floating", "Two layers, 0.8 mm, tied",
+        "Four layers, 1.6 mm, nothing", "Four layers, 1.6 mm, floating",
+        "Four layers, 1.6 mm, tied",    "A board with a rather long name, tied at one end"};
+    double x[POINTS], y[CURVES][POINTS];
+    struct chart_series series[CURVES];
+    static const double heights[] = {180, 232, 320};
+    for (size_t i = 0; i < POINTS; i++)
+        x[i] = 0.2e-3 * pow(50, (double)i / (POINTS - 1));
+    for (size_t s = 0; s < CURVES; s++) {
+        for (size_t i = 0; i < POINTS; i++)
+            y[s][i] = 0.4 / (1 + x[i] / 1e-3) * (1 + 1e-3 * (double)s);
+        series[s] = (struct chart_series){
+            .label = labels[s], .x = x, .y = y[s], .count = POINTS, .style = s};
+    }
+    for (size_t h = 0; h < 3; h++) {
+        struct chart chart = {.name = "ten",
+                              .x = {"gap", DIMENSION_LENGTH, true, 0, 0},
+                              .y = {"peak", DIMENSION_VOLTAGE, true, 0, 0},
+                              .series = series,
+                              .series_count = CURVES};
+        struct chart_report report;
+        assert_non_null(
+            chart_draw(&chart, 480, heights[h], page->setter, page->arena, &report, &page->error));
+        assert_true(report.legend || report.label_count == CURVES);
+        for (size_t i = 0; i < report.label_count; i++) {
+            assert_true(report.labels[i].x + report.labels[i].width <= 480 + 0.1);
+            assert_true(report.labels[i].y >= -0.1);
+            assert_true(report.labels[i].y + report.labels[i].height <= heights[h] + 0.1);
+            for (size_t j = 0; j < i; j++)
+                assert_true(
+                    report.labels[i].y >= report.labels[j].y + report.labels[j].height - 0.5 ||
+                    report.labels[j].y >= report.labels[i].y + report.labels[i].height - 0.5);
+        }
+    }
+}
+
 static void test_a_gap_in_the_data_is_a_gap_in_the_curve(void **state) {
     struct page *page = *state;
     struct falling data;
@@ -102,6 +146,7 @@ static void test_nothing_finite_and_no_room_are_refused(void **state) {
 int main(void) {
     const struct CMUnitTest tests[] = {
         page_test(test_labels_at_the_ends_keep_apart_and_inside),
+        page_test(test_ten_curves_keep_their_labels_apart),
         page_test(test_a_gap_in_the_data_is_a_gap_in_the_curve),
         page_test(test_values_that_a_logarithm_cannot_show_make_the_axis_linear),
         page_test(test_nothing_finite_and_no_room_are_refused),
