@@ -29,6 +29,14 @@ enum guideline_status {
     GUIDELINE_BELOW_FAB,      /* only by what the fab cannot make */
 };
 
+/* What would meet a condition that cannot be met, the found input at its permitted end. */
+struct guideline_remedy {
+    size_t input;
+    bool at_least; /* else at most */
+    double value, grid;
+};
+enum { GUIDELINE_MOST_REMEDIES = 2 };
+
 /* A rule's answer for one variant (or one cell of its table). */
 struct guideline_finding {
     enum guideline_status status;
@@ -44,6 +52,8 @@ struct guideline_finding {
     double nearest;   /* the output one grid step beyond the bound: what the rule keeps away; NAN if
                          none */
     double fab_smallest; /* the fab's smallest of this input, 0 = not stated */
+    struct guideline_remedy remedies[GUIDELINE_MOST_REMEDIES]; /* of CANNOT_BE_MET */
+    size_t remedy_count;
     unsigned flags;
 };
 

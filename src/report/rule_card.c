@@ -135,13 +135,46 @@ struct line {
     const char *name, *text;
 };
 
-enum { MOST_LINES = 6 };
+enum { MOST_LINES = 7 };
+
+/* "Two layers: length at most 12 mm, or edge at least 9 ns, at a gap of 12 mm." */
+static const char *would_do(struct flow *flow, const struct study_chapter *chapter,
+                            const struct guideline_rule *rule) {
+    const struct study_rule *stated = rule->rule;
+    const struct model_input *found = &chapter->model->inputs[stated->find];
+    const char *text = "";
+    for (size_t v = 0; v < stated->variant_count; v++) {
+        const struct guideline_finding *finding = &rule->findings[v];
+        const char *label = stated->variants[v].label;
+        for (size_t i = 0; i < finding->remedy_count; i++) {
+            const struct guideline_remedy *remedy = &finding->remedies[i];
+            const struct model_input *input = &chapter->model->inputs[remedy->input];
+            const char *lead = i > 0 ? ", or " : *text != '\0' ? " " : "";
+            if (i == 0 && label != NULL)
+                lead = flow_print(flow, "%s%s: ", lead, flow_escape(flow, label));
+            text = flow_print(flow, "%s%s%s %s %s%s", text, lead, words_name(flow, input->name),
+                              remedy->at_least ? "at least" : "at most",
+                              words_grid(flow, remedy->value, remedy->grid, input->dimension),
+                              remedy->at_least ? " (0–100 %)" : "");
+        }
+        if (finding->remedy_count > 0)
+            text = flow_print(
+                flow, "%s, at a %s of %s.", text, words_name(flow, found->name),
+                words_value(flow, stated->find_smallest ? stated->within.to : stated->within.from,
+                            found->dimension));
+    }
+    return text;
+}
 
 static size_t lines_of(struct flow *flow, const struct study_chapter *chapter,
-                       const struct study_rule *rule, struct line *lines) {
+                       const struct guideline_rule *result, struct line *lines) {
+    const struct study_rule *rule = result->rule;
+    const char *remedies = would_do(flow, chapter, result);
     size_t count = 0;
     lines[count++] =
         (struct line){"So that", words_condition(flow, rule, chapter, &rule->variants[0])};
+    if (*remedies != '\0')
+        lines[count++] = (struct line){"Would do", remedies};
     if (rule->applies_to != NULL)
         lines[count++] = (struct line){"Applies to", flow_escape(flow, rule->applies_to)};
     lines[count++] = (struct line){"Proven over", proven_over(flow, chapter, rule)};
@@ -185,7 +218,7 @@ void pages_rule_card(struct flow *flow, const struct guideline_chapter *chapter,
                      const struct guideline_rule *rule) {
     double x = flow->page.left + INSET, width = flow->page.right - x;
     struct line lines[MOST_LINES];
-    size_t line_count = lines_of(flow, chapter->chapter, rule->rule, lines);
+    size_t line_count = lines_of(flow, chapter->chapter, rule, lines);
     struct table_layout *layout = findings(flow, chapter->chapter, rule, width);
     if (layout == NULL || flow_failed(flow))
         return;

@@ -59,6 +59,12 @@ static void finding(struct json *json, const struct model *model,
                             finding->worst_inputs[i]);
         json_close(json, '}');
     }
+    for (size_t i = 0; i < finding->remedy_count; i++) {
+        const struct guideline_remedy *remedy = &finding->remedies[i];
+        json_open(json, remedy->at_least ? "would_do_at_least" : "would_do_at_most", '{');
+        json_number(json, model->inputs[remedy->input].name, remedy->value);
+        json_close(json, '}');
+    }
     json_open(json, "flags", '[');
     for (size_t i = 0; i < model->flag_count; i++)
         if ((finding->flags >> i & 1u) != 0)
@@ -78,8 +84,7 @@ static void cells(struct json *json, const struct model *model, const struct gui
         json_open(json, NULL, '{');
         json_text(json, stated->rows.name, stated->rows.labels[i / columns]);
         if (stated->columns.count > 0)
-            json_text(json, stated->columns.name,
-                      stated->columns.labels[i % columns]);
+            json_text(json, stated->columns.name, stated->columns.labels[i % columns]);
         finding(json, model, &rule->cells[v * stated->rows.count * columns + i]);
         json_close(json, '}');
     }

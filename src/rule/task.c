@@ -1,6 +1,6 @@
 #include "task.h"
 
-#include "find.h"
+#include "remedy.h"
 
 #include <math.h>
 #include <string.h>
@@ -142,7 +142,9 @@ static bool find(struct task *task, struct solver *solver, const struct study_va
             !keep_impedance(&judge, region, &task->error))
             return false;
     }
-    return find_bound(rule, variant, &judge, region, finding, &task->error);
+    return find_bound(rule, variant, &judge, region, finding, &task->error) &&
+           (finding->status != GUIDELINE_CANNOT_BE_MET ||
+            remedies_find(rule, variant, &judge, region, finding, &task->error));
 }
 
 static void restrict_to(struct region *region, const struct study_cell_axis *axis, size_t index) {
