@@ -1,10 +1,14 @@
-/* 1. Samples of the found input over the whole of `within`, on the grid, each judged by its worst
- * case.
- * 2. From the permitted end inwards: the first sample that fails.  Local maxima on the way that
- * come near the limit are climbed; one that fails moves the first failure there.
- * 3. Bisection on the grid between the last sample that holds and the first that fails.
- * 4. Proof: the bound, its neighbours inside and every sample permitted, with the full scan; if one
- * fails the bound moves on past it. */
+/* 1. Samples of the found input over the whole of `within`, on the grid, from the permitted end
+ * inwards, each judged by its worst case until one fails.  Local maxima on the way that come near
+ * the limit are climbed; one that fails moves the first failure there.
+ * 2. Every bad case met is kept as a witness.  A multiple of the grid at which a witness fails is
+ * no answer, and one solution says so: the candidate is the first multiple outwards of the failure
+ * at which all witnesses hold.
+ * 3. Proof of the candidate with the full search; if it fails there are new witnesses and a new
+ * candidate further out.
+ * 4. Proof of what it permits: the witnesses at every sample beyond and between the nearest two,
+ * and the full search where that comes near the limit.  A failure moves the candidate past it: what
+ * holds further in is an island and never the answer. */
 
 #include "find.h"
 
@@ -12,7 +16,10 @@
 #include <stdlib.h>
 #include <string.h>
 
-enum { MOST_SAMPLES = 40, MOST_MOVES = 200 };
+enum { MOST_SAMPLES = 64, MOST_WITNESSES = 16 };
+/* Badness above which a hump is climbed, a sample beyond the bound proven, a case kept as witness.
+ */
+static const double NEAR_HUMP = -0.25, NEAR_PROOF = -0.15, NEAR_WITNESS = -0.5;
 
 struct finder {
     const struct study_rule *rule;
@@ -22,7 +29,13 @@ struct finder {
     int inward;       /* +1 or -1: from first towards last */
     long samples[MOST_SAMPLES]; /* from first to last */
     struct worst worst[MOST_SAMPLES];
-    size_t count;
+    bool proven[MOST_SAMPLES];
+    size_t count, judged; /* judged: samples up to the first that fails */
+    struct worst witnesses[MOST_WITNESSES];
+    size_t witness_count, oldest;
+    struct worst hint; /* the worst case seen last */
+    bool has_hint;
+    struct worst stop; /* what fails one step inwards of the candidate */
 };
 
 double find_fab_smallest(const struct model *model, size_t input,
@@ -40,23 +53,93 @@ double find_fab_smallest(const struct model *model, size_t input,
     return 0.0;
 }
 
-static bool worst_at(const struct finder *finder, long multiple, enum worst_effort effort,
-                     struct worst *worst, struct error *error) {
-    struct region region = *finder->region;
-    region.base[finder->rule->find] = (double)multiple * finder->rule->grid;
-    return worst_of(finder->judge, &region, effort, worst, error);
-}
-
 static bool holds(const struct worst *worst) {
     return worst->verdict.badness <= 0.0;
 }
 
-/* Logarithmic where the range spans a decade and a half or more; always on the grid, no value
- * twice. */
+/* ---- witnesses ---- */
+
+static bool same_case(const struct finder *finder, const double *a, const double *b) {
+    for (size_t i = 0; i < finder->region->axis_count; i++) {
+        const struct region_axis *axis = &finder->region->axes[i];
+        if (fabs(a[axis->input] - b[axis->input]) > 0.01 * fabs(b[axis->input]))
+            return false;
+    }
+    return true;
+}
+
+static void keep_witness(struct finder *finder, const struct worst *worst) {
+    for (size_t i = 0; i < finder->witness_count; i++)
+        if (same_case(finder, finder->witnesses[i].inputs, worst->inputs)) {
+            finder->witnesses[i] = *worst;
+            return;
+        }
+    if (finder->witness_count < MOST_WITNESSES) {
+        finder->witnesses[finder->witness_count++] = *worst;
+        return;
+    }
+    finder->witnesses[finder->oldest] = *worst;
+    finder->oldest = (finder->oldest + 1) % MOST_WITNESSES;
+}
+
+/* The worst of all witnesses at this multiple; mild when there is none. */
+static bool worst_witness(const struct finder *finder, long multiple, struct worst *worst,
+                          struct error *error) {
+    worst->verdict = (struct verdict){.badness = -INFINITY};
+    for (size_t i = 0; i < finder->witness_count; i++) {
+        struct worst tried = finder->witnesses[i];
+        tried.inputs[finder->rule->find] = (double)multiple * finder->rule->grid;
+        if (!judge_case(finder->judge, tried.inputs, &tried.verdict, error))
+            return false;
+        if (i == 0 || tried.verdict.badness > worst->verdict.badness)
+            *worst = tried;
+    }
+    return true;
+}
+
+static bool search_at(struct finder *finder, long multiple, enum worst_effort effort,
+                      struct worst *worst, struct error *error) {
+    struct region region = *finder->region;
+    struct worst_cases found;
+    region.base[finder->rule->find] = (double)multiple * finder->rule->grid;
+    if (!worst_of(finder->judge, &region, effort, finder->has_hint ? &finder->hint : NULL, &found,
+                  error))
+        return false;
+    *worst = finder->hint = found.cases[0];
+    finder->has_hint = true;
+    for (size_t i = found.count; i > 0; i--)
+        if (found.cases[i - 1].verdict.badness > NEAR_WITNESS)
+            keep_witness(finder, &found.cases[i - 1]);
+    return true;
+}
+
+/* Witnesses first: a failure needs no search. */
+static bool probe_at(struct finder *finder, long multiple, struct worst *worst,
+                     struct error *error) {
+    struct worst witness;
+    if (!worst_witness(finder, multiple, &witness, error))
+        return false;
+    if (!holds(&witness)) {
+        *worst = witness;
+        return true;
+    }
+    if (!search_at(finder, multiple, WORST_PROBE, worst, error))
+        return false;
+    if (witness.verdict.badness > worst->verdict.badness)
+        *worst = witness;
+    return true;
+}
+
+/* ---- from the permitted end inwards ---- */
+
+/* Logarithmic where the range spans much; always on the grid, no value twice.  Inputs that make
+ * resonances are sampled more finely. */
 static void place_samples(struct finder *finder) {
+    const char *name = finder->judge->solver->model->inputs[finder->rule->find].name;
+    bool wavy = strcmp(name, "length") == 0 || strcmp(name, "edge") == 0;
     double from = (double)finder->first, to = (double)finder->last;
     double spread = fabs(log(fmax(from, to) / fmax(1.0, fmin(from, to))));
-    size_t wanted = spread > 1.0 ? 5 + (size_t)(4.0 * spread) : 8;
+    size_t wanted = spread > 1.0 ? 5 + (size_t)((wavy ? 10.0 : 4.0) * spread) : wavy ? 15 : 8;
     if (wanted > MOST_SAMPLES)
         wanted = MOST_SAMPLES;
     for (size_t i = 0; i < wanted; i++) {
@@ -69,24 +152,22 @@ static void place_samples(struct finder *finder) {
     }
 }
 
-/* A hump between samples that comes near the limit: golden section over the grid for its top. */
-static bool climb_hump(const struct finder *finder, size_t i, long *top, struct worst *worst,
+/* A hump between samples a and b that comes near the limit, seen at `top`: its top by halving the
+ * grid on both sides. */
+static bool climb_hump(struct finder *finder, long a, long b, long *top, struct worst *worst,
                        struct error *error) {
-    long a = finder->samples[i - 1], b = finder->samples[i + 1];
-    *top = finder->samples[i];
-    *worst = finder->worst[i];
-    while (labs(b - a) > 2) {
+    while (labs(b - a) > 2 && holds(worst)) {
         long left = *top - (*top - a) / 2, right = *top + (b - *top) / 2;
-        struct worst at_left, at_right;
-        if (!worst_at(finder, left, WORST_PROBE, &at_left, error) ||
-            !worst_at(finder, right, WORST_PROBE, &at_right, error))
+        struct worst at_left = *worst, at_right = *worst;
+        if ((left != *top && !probe_at(finder, left, &at_left, error)) ||
+            (right != *top && !probe_at(finder, right, &at_right, error)))
             return false;
         if (left != *top && at_left.verdict.badness > worst->verdict.badness) {
             b = *top, *top = left, *worst = at_left;
         } else if (right != *top && at_right.verdict.badness > worst->verdict.badness) {
             a = *top, *top = right, *worst = at_right;
         } else {
-            if (left == a || right == b)
+            if ((left == a || left == *top) && (right == b || right == *top))
                 break;
             a = left, b = right;
         }
@@ -94,102 +175,153 @@ static bool climb_hump(const struct finder *finder, size_t i, long *top, struct 
     return true;
 }
 
-/* From the permitted end: *good is the last multiple seen to hold before the first failure *bad.
- * *bad == *good: nothing failed. */
-static bool first_failure(struct finder *finder, long *good, long *bad, struct error *error) {
-    const double near_limit = -0.25;
-    *good = *bad = finder->first;
+/* Sample i is judged, and so are its neighbours as far as there are any. */
+static bool is_hump(const struct finder *finder, size_t i) {
+    double here = finder->worst[i].verdict.badness;
+    return here > NEAR_HUMP && here <= 0.0 &&
+           (i == 0 || here >= finder->worst[i - 1].verdict.badness) &&
+           (i + 1 == finder->count || here >= finder->worst[i + 1].verdict.badness);
+}
+
+static bool hump_fails(struct finder *finder, size_t i, long *bad, struct error *error) {
+    long top = finder->samples[i];
+    struct worst worst = finder->worst[i];
+    if (!is_hump(finder, i))
+        return true;
+    if (!climb_hump(finder, finder->samples[i > 0 ? i - 1 : i],
+                    finder->samples[i + 1 < finder->count ? i + 1 : i], &top, &worst, error))
+        return false;
+    if (!holds(&worst))
+        *bad = top, finder->stop = worst;
+    return true;
+}
+
+/* *bad: the first multiple seen to fail; unchanged when none does. */
+static bool first_failure(struct finder *finder, long *bad, struct error *error) {
+    const long none = *bad;
     for (size_t i = 0; i < finder->count; i++) {
-        if (!worst_at(finder, finder->samples[i], WORST_PROBE, &finder->worst[i], error))
+        if (!probe_at(finder, finder->samples[i], &finder->worst[i], error))
             return false;
-        if (i >= 2 && finder->worst[i - 1].verdict.badness > near_limit &&
-            finder->worst[i - 1].verdict.badness >= finder->worst[i - 2].verdict.badness &&
-            finder->worst[i - 1].verdict.badness >= finder->worst[i].verdict.badness) {
-            long top;
-            struct worst worst;
-            if (!climb_hump(finder, i - 1, &top, &worst, error))
-                return false;
-            if (!holds(&worst)) {
-                *good = finder->samples[i - 2];
-                *bad = top;
-                return true;
-            }
-        }
-        if (!holds(&finder->worst[i])) {
-            *bad = finder->samples[i];
+        finder->judged = i + 1;
+        if (i > 0 && !hump_fails(finder, i - 1, bad, error))
+            return false;
+        if (*bad == none && i + 1 == finder->count && !hump_fails(finder, i, bad, error))
+            return false;
+        if (*bad == none && !holds(&finder->worst[i]))
+            *bad = finder->samples[i], finder->stop = finder->worst[i];
+        if (*bad != none)
             return true;
-        }
-        *good = *bad = finder->samples[i];
     }
     return true;
 }
 
-static bool bisect(const struct finder *finder, long *good, long bad, struct error *error) {
-    while (labs(bad - *good) > 1) {
-        long middle = *good + (bad - *good) / 2;
-        struct worst worst;
-        if (!worst_at(finder, middle, WORST_PROBE, &worst, error))
+/* ---- candidates ---- */
+
+static bool is_beyond(const struct finder *finder, long multiple, long other) {
+    return finder->inward < 0 ? multiple > other : multiple < other;
+}
+
+/* From a multiple at which a witness fails: the next outwards at which all hold; *found false: not
+ * even the permitted end. */
+static bool outwards(struct finder *finder, long bad, long *candidate, bool *found,
+                     struct error *error) {
+    struct worst worst;
+    long good = bad;
+    for (long step = 1; good == bad; step *= 2) {
+        long next = bad - finder->inward * step;
+        if (is_beyond(finder, next, finder->first))
+            next = finder->first;
+        *found = next != bad;
+        if (!*found)
+            return true;
+        if (!worst_witness(finder, next, &worst, error))
+            return false;
+        good = next;
+        if (!holds(&worst))
+            bad = next, finder->stop = worst;
+    }
+    while (labs(bad - good) > 1) {
+        long middle = good + (bad - good) / 2;
+        if (!worst_witness(finder, middle, &worst, error))
             return false;
         if (holds(&worst))
-            *good = middle;
+            good = middle;
         else
-            bad = middle;
+            bad = middle, finder->stop = worst;
     }
+    *candidate = good;
     return true;
 }
 
-/* Everything permitted by `bound`, fully: the bound itself, the samples beyond, and points between
- * the nearest two. */
-static bool prove(const struct finder *finder, long bound, struct worst *worst, bool *held,
-                  struct error *error) {
-    long outward = -finder->inward;
-    *held = true;
-    if (!worst_at(finder, bound, WORST_FULL, worst, error))
-        return false;
+struct proof {
+    long failed; /* where something failed */
+    bool held;
+    struct worst worst; /* of all that was judged, or what failed */
+};
+
+static void note(struct proof *proof, long multiple, const struct worst *worst) {
+    if (holds(worst) && worst->verdict.badness <= proof->worst.verdict.badness)
+        return;
+    proof->worst = *worst;
     if (!holds(worst)) {
-        *held = false;
-        return true;
+        proof->held = false;
+        proof->failed = multiple;
     }
-    long nearby[3] = {bound + outward, bound + 2 * outward, bound + 5 * outward};
-    for (size_t i = 0; i < 3 + finder->count; i++) {
-        long at = i < 3 ? nearby[i] : finder->samples[i - 3];
-        bool permitted = finder->inward < 0 ? at > bound && at <= finder->first
-                                            : at < bound && at >= finder->first;
-        struct worst there;
-        if (!permitted)
-            continue;
-        /* Samples far from the limit were judged on the way in. */
-        bool near = i < 3 || finder->worst[i - 3].verdict.badness > -0.15;
-        if (!near && finder->worst[i - 3].verdict.badness < worst->verdict.badness)
-            continue;
-        enum worst_effort effort = i == 0 || (i >= 3 && near) ? WORST_FULL : WORST_PROBE;
-        if (!worst_at(finder, at, effort, &there, error))
+}
+
+static bool prove_sample(struct finder *finder, size_t i, struct proof *proof,
+                         struct error *error) {
+    struct worst worst;
+    if (!worst_witness(finder, finder->samples[i], &worst, error))
+        return false;
+    if (worst.verdict.badness > finder->worst[i].verdict.badness)
+        finder->worst[i] = worst;
+    if (holds(&finder->worst[i]) && !finder->proven[i] &&
+        finder->worst[i].verdict.badness > NEAR_PROOF) {
+        if (!search_at(finder, finder->samples[i], WORST_FULL, &worst, error))
             return false;
-        if (there.verdict.badness > worst->verdict.badness)
-            *worst = there;
-        if (!holds(&there)) {
-            *held = false;
-            return true;
-        }
+        finder->proven[i] = true;
+        if (worst.verdict.badness > finder->worst[i].verdict.badness)
+            finder->worst[i] = worst;
     }
+    note(proof, finder->samples[i], &finder->worst[i]);
     return true;
 }
 
-static bool move_until_proven(const struct finder *finder, long *bound, struct worst *worst,
-                              bool *found, struct error *error) {
-    long outward = -finder->inward;
-    *found = false;
-    for (int move = 0; move < MOST_MOVES && !*found; move++) {
-        if (!prove(finder, *bound, worst, found, error))
+/* The next multiple outwards, and half way to the next sample. */
+static bool prove_nearby(struct finder *finder, long candidate, long next, struct proof *proof,
+                         struct error *error) {
+    long beside = candidate - finder->inward, between = candidate + (next - candidate) / 2;
+    struct worst worst;
+    if (is_beyond(finder, beside, next))
+        return true;
+    if (!worst_witness(finder, beside, &worst, error))
+        return false;
+    note(proof, beside, &worst);
+    if (!proof->held || between == candidate || between == next)
+        return true;
+    if (!probe_at(finder, between, &worst, error))
+        return false;
+    note(proof, between, &worst);
+    return true;
+}
+
+/* Everything that `candidate` permits. */
+static bool prove(struct finder *finder, long candidate, struct proof *proof, struct error *error) {
+    *proof = (struct proof){.held = true, .worst = {.verdict = {.badness = -INFINITY}}};
+    struct worst worst;
+    if (!search_at(finder, candidate, WORST_FULL, &worst, error))
+        return false;
+    note(proof, candidate, &worst);
+    size_t beyond = 0;
+    while (beyond < finder->judged && is_beyond(finder, finder->samples[beyond], candidate))
+        beyond++;
+    if (proof->held && beyond > 0 &&
+        !prove_nearby(finder, candidate, finder->samples[beyond - 1], proof, error))
+        return false;
+    for (size_t i = beyond; i > 0 && proof->held; i--)
+        if (!prove_sample(finder, i - 1, proof, error))
             return false;
-        if (*found)
-            return true;
-        /* Steps grow: a proof that fails far out must not be repeated for every grid line. */
-        long step = 1 + move / 8;
-        *bound += outward * step;
-        if (finder->inward < 0 ? *bound > finder->first : *bound < finder->first)
-            return true;
-    }
     return true;
 }
 
@@ -222,37 +354,64 @@ static bool below_fab(const struct finder *finder, const struct study_variant *v
            finder->rule->within.to < fab * (1.0 - 1e-9);
 }
 
-static bool answer(struct finder *finder, struct guideline_finding *finding, struct error *error) {
-    long good, bad;
+/* Nothing on the grid that the fab can make holds; would something that it cannot? */
+static bool only_below_fab(struct finder *finder, bool *below, struct error *error) {
+    const struct study_rule *rule = finder->rule;
+    long from = quantity_grid_up(rule->within.from, rule->grid);
     struct worst worst;
-    bool found = false;
-    if (!first_failure(finder, &good, &bad, error))
-        return false;
-    if (bad == finder->first && !holds(&finder->worst[0])) {
-        finding->status = GUIDELINE_CANNOT_BE_MET;
-        finding->nearest = NAN;
-        record(finder, &finder->worst[0], finding);
+    *below = false;
+    if (rule->find_smallest || from >= finder->first)
         return true;
-    }
-    if (bad != good && !bisect(finder, &good, bad, error))
+    if (!probe_at(finder, from, &worst, error))
         return false;
-    if (!move_until_proven(finder, &good, &worst, &found, error))
+    *below = holds(&worst);
+    return true;
+}
+
+static bool refuse(struct finder *finder, struct guideline_finding *finding, struct error *error) {
+    struct worst worst;
+    bool below;
+    if (!only_below_fab(finder, &below, error))
         return false;
-    if (!found) {
-        finding->status = GUIDELINE_CANNOT_BE_MET;
-        record(finder, &worst, finding);
+    finding->status = below ? GUIDELINE_BELOW_FAB : GUIDELINE_CANNOT_BE_MET;
+    if (below)
         return true;
-    }
-    finding->status = good == finder->last ? GUIDELINE_MET_EVERYWHERE : GUIDELINE_FOUND;
-    finding->multiple = good;
-    finding->value = (double)good * finder->rule->grid;
+    /* The witness that fails at the permitted end need not be the worst there. */
+    if (!search_at(finder, finder->first, WORST_PROBE, &worst, error))
+        return false;
+    if (finder->stop.verdict.badness > worst.verdict.badness)
+        worst = finder->stop;
     record(finder, &worst, finding);
-    if (finding->status == GUIDELINE_MET_EVERYWHERE)
-        return true;
-    struct worst nearest;
-    if (!worst_at(finder, good + finder->inward, WORST_PROBE, &nearest, error))
+    return true;
+}
+
+static bool answer(struct finder *finder, struct guideline_finding *finding, struct error *error) {
+    const long none = finder->last + finder->inward;
+    long bad = none, candidate = finder->last;
+    bool found = true;
+    struct proof proof;
+    if (!first_failure(finder, &bad, error))
         return false;
-    finding->nearest = nearest.verdict.value;
+    while (found) {
+        if (bad != none && !outwards(finder, bad, &candidate, &found, error))
+            return false;
+        if (!found)
+            break;
+        if (!prove(finder, candidate, &proof, error))
+            return false;
+        if (proof.held)
+            break;
+        bad = proof.failed;
+        finder->stop = proof.worst;
+    }
+    if (!found)
+        return refuse(finder, finding, error);
+    finding->status = candidate == finder->last ? GUIDELINE_MET_EVERYWHERE : GUIDELINE_FOUND;
+    finding->multiple = candidate;
+    finding->value = (double)candidate * finder->rule->grid;
+    record(finder, &proof.worst, finding);
+    if (finding->status == GUIDELINE_FOUND)
+        finding->nearest = finder->stop.verdict.value;
     return true;
 }
 

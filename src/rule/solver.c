@@ -14,15 +14,19 @@ bool solver_start(struct solver *solver, const struct model *model, struct model
     if (solver->arena == NULL)
         return false;
     solver->buckets = arena_new(solver->arena, BUCKETS, struct solver_case *, error);
-    solver->worker = model_worker_create(error);
-    if (solver->buckets != NULL && solver->worker != NULL)
-        return true;
-    solver_end(solver);
-    return false;
+    bool ok = solver->buckets != NULL;
+    for (size_t i = 0; ok && i < SOLVER_BENCHES; i++) {
+        solver->benches[i].worker = model_worker_create(error);
+        ok = solver->benches[i].worker != NULL;
+    }
+    if (!ok)
+        solver_end(solver);
+    return ok;
 }
 
 void solver_end(struct solver *solver) {
-    model_worker_free(solver->worker);
+    for (size_t i = 0; i < SOLVER_BENCHES; i++)
+        model_worker_free(solver->benches[i].worker);
     arena_free(solver->arena);
     *solver = (struct solver){0};
 }
@@ -76,15 +80,27 @@ static bool name_inputs(const struct model *model, const double *inputs, struct 
     return error_in(error, "%s %.200s", model->name, text);
 }
 
-static bool prepare(struct solver *solver, const double *inputs, struct error *error) {
-    if (solver->has_prepared && same_shape(solver->model, inputs, solver->prepared_for))
+/* The bench that holds this shape, else the one that was not used last. */
+static struct solver_bench *bench_for(struct solver *solver, const double *inputs) {
+    size_t chosen = (solver->last + 1) % SOLVER_BENCHES;
+    for (size_t i = 0; i < SOLVER_BENCHES; i++)
+        if (solver->benches[i].has_prepared &&
+            same_shape(solver->model, inputs, solver->benches[i].prepared_for))
+            chosen = i;
+    solver->last = chosen;
+    return &solver->benches[chosen];
+}
+
+static bool prepare(struct solver *solver, struct solver_bench *bench, const double *inputs,
+                    struct error *error) {
+    if (bench->has_prepared && same_shape(solver->model, inputs, bench->prepared_for))
         return true;
-    solver->has_prepared = false;
+    bench->has_prepared = false;
     if (!model_check(solver->model, inputs, error) ||
-        !solver->model->prepare(inputs, solver->prepared, solver->memo, error))
+        !solver->model->prepare(inputs, bench->prepared, solver->memo, error))
         return false;
-    memcpy(solver->prepared_for, inputs, solver->model->input_count * sizeof *inputs);
-    solver->has_prepared = true;
+    memcpy(bench->prepared_for, inputs, solver->model->input_count * sizeof *inputs);
+    bench->has_prepared = true;
     return true;
 }
 
@@ -117,8 +133,9 @@ const struct solver_case *solver_ask(struct solver *solver, const double *given,
     struct solver_case *made = new_case(solver, inputs, &outputs, &errors, error);
     if (made == NULL)
         return NULL;
-    if (!prepare(solver, inputs, error) ||
-        !solver->model->respond(inputs, solver->prepared, solver->worker, outputs, errors,
+    struct solver_bench *bench = bench_for(solver, inputs);
+    if (!prepare(solver, bench, inputs, error) ||
+        !solver->model->respond(inputs, bench->prepared, bench->worker, outputs, errors,
                                 &made->flags, error)) {
         name_inputs(solver->model, inputs, error);
         return NULL;

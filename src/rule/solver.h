@@ -4,19 +4,28 @@
 #include "groundrules/model.h"
 
 /* One thread's way to ask a model for many cases: solved fields come from the shared memo, the last
- * prepared state and the last line response are kept, and no case is solved twice while the solver
- * lives. */
+ * prepared states and line responses are kept, and no case is solved twice while the solver lives.
+ */
+
+/* A shape, with what is kept for it. */
+struct solver_bench {
+    struct model_worker *worker;
+    double prepared[MODEL_MOST_PREPARED];
+    double prepared_for[MODEL_MOST_INPUTS];
+    bool has_prepared;
+};
+
+/* Two: a condition against a reference board asks for both boards in turn. */
+enum { SOLVER_BENCHES = 2 };
 
 struct solver {
     const struct model *model;
     struct model_memo *memo; /* shared, borrowed */
-    struct model_worker *worker;
-    struct arena *arena; /* owns the store */
+    struct arena *arena;     /* owns the store */
     struct solver_case **buckets;
     size_t asked, solved;
-    double prepared[MODEL_MOST_PREPARED];
-    double prepared_for[MODEL_MOST_INPUTS];
-    bool has_prepared;
+    struct solver_bench benches[SOLVER_BENCHES];
+    size_t last; /* the bench used last */
 };
 
 struct solver_case {

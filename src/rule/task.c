@@ -48,17 +48,18 @@ static bool point(struct task *task, struct solver *solver) {
                               .output = curve->output,
                               .at_most = output->worse != MODEL_LOWER_IS_WORSE,
                               .curve = true};
-        struct worst worst;
+        struct worst_cases found;
+        const struct worst *worst = &found.cases[0];
         struct band band;
-        if (!worst_of(&judge, &nominal, WORST_PROBE, &worst, &task->error) ||
-            !band_of(solver, &tolerant, &worst, curve->output, &band, &task->error))
+        if (!worst_of(&judge, &nominal, WORST_PROBE, NULL, &found, &task->error) ||
+            !band_of(solver, &tolerant, worst, curve->output, &band, &task->error))
             return false;
         /* The arrays were made for this: each task writes its own place. */
-        ((double *)curve->y)[task->index] = worst.verdict.value;
+        ((double *)curve->y)[task->index] = worst->verdict.value;
         ((double *)curve->low)[task->index] = band.low;
         ((double *)curve->high)[task->index] = band.high;
-        ((unsigned *)curve->flags)[task->index] = worst.verdict.flags;
-        task->error_at[o] = fabs(worst.verdict.error);
+        ((unsigned *)curve->flags)[task->index] = worst->verdict.flags;
+        task->error_at[o] = fabs(worst->verdict.error);
     }
     return true;
 }

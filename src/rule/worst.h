@@ -3,13 +3,14 @@
 
 #include "judge.h"
 
-/* The worst case of a region: a scan over samples of every axis, then a climb from the worst of
- * them by solving. What the scan cannot exclude: a maximum between two samples that shows in none
- * of their neighbours. */
+/* The worst cases of a region: a scan over samples of every axis, refined where a worse case may
+ * hide between two of them, then a climb from the worst of them by solving.  What cannot be
+ * excluded: a maximum between two samples that shows in none of their neighbours.
+ * tests/rule/test_dense.c attacks what was found at random. */
 
 enum worst_effort {
     WORST_PROBE, /* to see where a bound may lie, and for curves */
-    WORST_FULL,  /* to prove it: finer samples, more starts, tolerances searched inside their ends too */
+    WORST_FULL,  /* to prove it */
 };
 
 struct worst {
@@ -17,7 +18,21 @@ struct worst {
     double inputs[MODEL_MOST_INPUTS];
 };
 
+enum { WORST_MOST_CASES = 6 };
+
+/* Local maxima of badness, the worst first; at least one. */
+struct worst_cases {
+    struct worst cases[WORST_MOST_CASES];
+    size_t count;
+};
+
+/* `hint`: a bad case of a region alike, for what the scan leaves out; NULL = none. */
 bool worst_of(const struct judge *judge, const struct region *region, enum worst_effort effort,
-              struct worst *worst, struct error *error);
+              const struct worst *hint, struct worst_cases *found, struct error *error);
+
+/* *worst becomes the case with `value` for `input` if that is worse; *badness says how bad it is
+ * either way. */
+bool worst_try(const struct judge *judge, struct worst *worst, size_t input, double value,
+               double *badness, struct error *error);
 
 #endif
