@@ -20,6 +20,8 @@ enum { MOST_SAMPLES = 64, MOST_WITNESSES = 16 };
 /* Badness above which a hump is climbed, a sample beyond the bound proven, a case kept as witness.
  */
 static const double NEAR_HUMP = -0.25, NEAR_PROOF = -0.15, NEAR_WITNESS = -0.5;
+/* What lies on the limit holds; rounding must not decide. */
+static const double ROUNDING = 1e-9;
 
 struct finder {
     const struct study_rule *rule;
@@ -54,7 +56,7 @@ double find_fab_smallest(const struct model *model, size_t input,
 }
 
 static bool holds(const struct worst *worst) {
-    return worst->verdict.badness <= 0.0;
+    return worst->verdict.badness <= ROUNDING;
 }
 
 /* ---- witnesses ---- */
@@ -178,7 +180,7 @@ static bool climb_hump(struct finder *finder, long a, long b, long *top, struct 
 /* Sample i is judged, and so are its neighbours as far as there are any. */
 static bool is_hump(const struct finder *finder, size_t i) {
     double here = finder->worst[i].verdict.badness;
-    return here > NEAR_HUMP && here <= 0.0 &&
+    return here > NEAR_HUMP && holds(&finder->worst[i]) &&
            (i == 0 || here >= finder->worst[i - 1].verdict.badness) &&
            (i + 1 == finder->count || here >= finder->worst[i + 1].verdict.badness);
 }
@@ -340,14 +342,15 @@ static void record(const struct finder *finder, const struct worst *worst,
     model_resolve(finder->judge->solver->model, finding->worst_inputs, &ignored);
 }
 
+/* `region`: what is given, and a width that keeps the reference's impedance. */
 static bool below_fab(const struct finder *finder, const struct study_variant *variant,
                       double fab) {
     const struct model *model = finder->judge->solver->model;
     for (size_t i = 0; i < model->input_count; i++) {
         double smallest = find_fab_smallest(model, i, variant->stackup);
-        const struct study_setting *setting = &variant->settings[i];
-        if (i != finder->rule->find && smallest > 0.0 && setting->value > 0.0 &&
-            setting->origin != STUDY_STANDARD && setting->value < smallest * (1.0 - 1e-9))
+        double value = finder->region->base[i];
+        if (i != finder->rule->find && smallest > 0.0 && value > 0.0 &&
+            variant->settings[i].origin != STUDY_STANDARD && value < smallest * (1.0 - 1e-9))
             return true;
     }
     return !finder->rule->find_smallest && fab > 0.0 &&

@@ -3,30 +3,33 @@
 #include <math.h>
 #include <string.h>
 
-/* Everything as in the case judged, but on the other board, at nominal values. */
-static void reference_inputs(const struct judge *judge, const double *inputs, double *reference) {
+void judge_reference_board(const struct judge *judge, const double *inputs, double *reference) {
     const struct model *model = judge->solver->model;
     memcpy(reference, inputs, model->input_count * sizeof *inputs);
     for (size_t i = judge->region->range_count; i < judge->region->axis_count; i++)
         reference[judge->region->axes[i].input] = judge->region->axes[i].nominal;
     static const char *const board[] = {"height", "thickness", "dk"};
-    for (size_t i = 0; i < sizeof board / sizeof *board; i++) {
+    for (size_t i = 0; judge->reference->stackup != NULL && i < sizeof board / sizeof *board; i++) {
         size_t input = model_input_index(model, board[i]);
         if (input < model->input_count)
             reference[input] = NAN;
     }
-    study_apply_stackup(judge->reference->stackup, model, reference);
-    if (judge->reference->kept == STUDY_KEEP_IMPEDANCE) {
-        static const char *const widths[] = {"width", "victim_width"};
-        for (size_t i = 0; i < 2; i++) {
-            size_t input = model_input_index(model, widths[i]);
-            if (input < model->input_count)
-                reference[input] = judge->reference_width;
-        }
-    }
+    if (judge->reference->stackup != NULL)
+        study_apply_stackup(judge->reference->stackup, model, reference);
     for (size_t i = 0; i < model->input_count; i++)
         if (!isnan(judge->reference->values[i]))
             reference[i] = judge->reference->values[i];
+}
+
+static void reference_inputs(const struct judge *judge, const double *inputs, double *reference) {
+    const struct model *model = judge->solver->model;
+    judge_reference_board(judge, inputs, reference);
+    if (judge->reference->kept != STUDY_KEEP_IMPEDANCE)
+        return;
+    size_t victim = model_input_index(model, "victim_width");
+    reference[model_input_index(model, "width")] = judge->reference_width;
+    if (victim < model->input_count)
+        reference[victim] = judge->reference_victim_width;
 }
 
 static bool limit_for(const struct judge *judge, const double *inputs, double *limit,

@@ -17,7 +17,8 @@ struct judge {
     bool curve;
     double limit;                            /* constant or budget */
     const struct study_reference *reference; /* NULL = none */
-    double reference_width; /* the variant's own width; what the reference board keeps */
+    /* What the reference board has when its impedance is kept; NAN = as long as `width`. */
+    double reference_width, reference_victim_width;
 };
 
 struct verdict {
@@ -28,5 +29,9 @@ struct verdict {
 
 bool judge_case(const struct judge *judge, const double *inputs, struct verdict *verdict,
                 struct error *error);
+
+/* The case on the reference board, at nominal values, all that the reference does not say as in the
+ * case judged; widths are those of the case judged unless the reference says them. */
+void judge_reference_board(const struct judge *judge, const double *inputs, double *reference);
 
 #endif

@@ -89,42 +89,50 @@ static bool impedance_at(struct solver *solver, const double *inputs, double wid
     return true;
 }
 
-/* The width on the judged board whose impedance is that of the variant's width on the reference
- * board.  Impedance falls steadily with width, so bisection cannot miss it. */
-static bool keep_impedance(struct judge *judge, struct region *region, struct error *error) {
-    struct solver *solver = judge->solver;
+/* The width on the judged board whose impedance is that of `width` on the reference board.
+ * Impedance falls steadily with width, so bisection cannot miss it. */
+static bool matching_width(struct solver *solver, const double *reference, const double *judged,
+                           double width, double *matching, struct error *error) {
     const struct model *model = solver->model;
-    size_t own = model_input_index(model, "width"),
-           victim = model_input_index(model, "victim_width");
-    double other[MODEL_MOST_INPUTS], wanted, got;
-    if (own >= model->input_count || model_output_index(model, "impedance") >= model->output_count)
-        return error_set(error, ERROR_INPUT, "%s has no width and impedance to keep", model->name);
-    memcpy(other, region->base, sizeof other);
-    for (size_t i = 0; i < model->input_count; i++)
-        if (strcmp(model->inputs[i].name, "height") == 0 ||
-            strcmp(model->inputs[i].name, "thickness") == 0 ||
-            strcmp(model->inputs[i].name, "dk") == 0)
-            other[i] = NAN;
-    study_apply_stackup(judge->reference->stackup, model, other);
-    for (size_t i = 0; i < model->input_count; i++)
-        if (!isnan(judge->reference->values[i]))
-            other[i] = judge->reference->values[i];
-    judge->reference_width = other[own];
-    if (!impedance_at(solver, other, other[own], &wanted, error))
+    const struct model_input *input = &model->inputs[model_input_index(model, "width")];
+    double wanted, got, low = input->lowest, high = input->highest;
+    if (!impedance_at(solver, reference, width, &wanted, error))
         return false;
-    double low = model->inputs[own].lowest, high = model->inputs[own].highest;
     for (int step = 0; step < 50; step++) {
         double middle = sqrt(low * high);
-        if (!impedance_at(solver, region->base, middle, &got, error))
+        if (!impedance_at(solver, judged, middle, &got, error))
             return false;
         if (got > wanted)
             low = middle;
         else
             high = middle;
     }
-    region->base[own] = sqrt(low * high);
+    if (!(fabs(got - wanted) <= 1e-3 * wanted))
+        return error_set(error, ERROR_INPUT,
+                         "no width gives this board the reference's impedance of %.4g ohm", wanted);
+    *matching = sqrt(low * high);
+    return true;
+}
+
+static bool keep_impedance(struct judge *judge, struct region *region, struct error *error) {
+    const struct model *model = judge->solver->model;
+    size_t own = model_input_index(model, "width"),
+           victim = model_input_index(model, "victim_width");
+    double reference[MODEL_MOST_INPUTS], width, victim_width = NAN;
+    if (own >= model->input_count || model_output_index(model, "impedance") >= model->output_count)
+        return error_set(error, ERROR_INPUT, "%s has no width and impedance to keep", model->name);
+    judge_reference_board(judge, region->base, reference);
+    judge->reference_width = reference[own];
+    judge->reference_victim_width = victim < model->input_count ? reference[victim] : NAN;
+    if (!matching_width(judge->solver, reference, region->base, reference[own], &width, error))
+        return false;
+    if (!isnan(judge->reference_victim_width) &&
+        !matching_width(judge->solver, reference, region->base, reference[victim], &victim_width,
+                        error))
+        return false;
+    region->base[own] = width;
     if (victim < model->input_count)
-        region->base[victim] = region->base[own];
+        region->base[victim] = victim_width;
     return true;
 }
 

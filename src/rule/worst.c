@@ -16,10 +16,12 @@
 
 enum { MOST_CORNER_AXES = 8, ROUNDS = 3, RIDGES = 2, RIDGE_STEPS = 120 };
 /* A start this much below the worst does not overtake it within a cell. */
-static const double BEHIND = 0.25;
+static const double BEHIND = 0.15;
 /* A probe that is this far from the limit is not climbed: what may hide between its samples is a
  * matter of percents. */
 static const double FAR = -0.5;
+/* A round that gains less is the last: for most starts, and for the worst in the end. */
+static const double COARSE_GAIN = 2e-3, FINE_GAIN = 5e-4;
 
 bool worst_try(const struct judge *judge, struct worst *worst, size_t input, double value,
                double *badness, struct error *error) {
@@ -71,37 +73,43 @@ static bool corners(const struct scan *scan, struct worst *worst, struct error *
     return true;
 }
 
-/* A probe climbs what it has sampled, once; a proof everything. */
-static bool climb(const struct scan *scan, struct worst *worst, struct error *error) {
+static bool climb_axes(const struct scan *scan, struct worst *worst, struct error *error) {
     const struct region *region = scan->region;
+    for (size_t i = 0; i < (scan->full ? region->axis_count : region->range_count); i++) {
+        const struct region_axis *axis = &region->axes[i];
+        bool sampled = i < region->range_count && scan->samples[i] > 1;
+        if (axis->kind == REGION_CHOICE || (!scan->full && !sampled))
+            continue;
+        double low = i < region->range_count ? scan->low[i] : axis->low;
+        double cell = climb_cell(axis, low, sampled ? scan->samples[i] : 2);
+        struct climb how = {.cell = cell / (scan->full && i == scan->line ? 4.0 : 2.0),
+                            .levels = scan->full ? 3 : 2,
+                            .patience = 2};
+        if (!climb_axis(scan->judge, axis, how, worst, error))
+            return false;
+    }
+    return true;
+}
+
+/* A probe climbs what it has sampled, once; a proof everything, and looks at the corners again from
+ * where it arrives. */
+static bool climb(const struct scan *scan, double gain, struct worst *worst, struct error *error) {
     for (int round = 0; round < (scan->full ? ROUNDS : 1); round++) {
         double before = worst->verdict.badness;
-        for (size_t i = 0; i < (scan->full ? region->axis_count : region->range_count); i++) {
-            const struct region_axis *axis = &region->axes[i];
-            bool sampled = i < region->range_count && scan->samples[i] > 1;
-            if (axis->kind == REGION_CHOICE || (!scan->full && !sampled))
-                continue;
-            double low = i < region->range_count ? scan->low[i] : axis->low;
-            double cell = climb_cell(axis, low, sampled ? scan->samples[i] : 2);
-            struct climb how = {.cell = cell / (scan->full && i == scan->line ? 4.0 : 2.0),
-                                .levels = scan->full ? 3 : 2,
-                                .patience = scan->full ? 2 : 1};
-            if (!climb_axis(scan->judge, axis, how, worst, error))
-                return false;
-        }
-        double scale = scan_scale(scan->judge, before);
-        if (!(worst->verdict.badness - before > 5e-4 * scale))
+        if (!climb_axes(scan, worst, error) || (scan->full && !corners(scan, worst, error)))
+            return false;
+        if (!(worst->verdict.badness - before > gain * scan_scale(scan->judge, before)))
             break;
     }
     return true;
 }
 
 static bool finish(const struct scan *scan, struct worst *worst, struct error *error) {
-    if (!ends(scan, worst, error) || !corners(scan, worst, error))
+    if (!corners(scan, worst, error))
         return false;
     if (!scan->full && !scan->judge->curve && worst->verdict.badness < FAR)
         return true;
-    return climb(scan, worst, error);
+    return climb(scan, COARSE_GAIN, worst, error);
 }
 
 /* Over what the scan writes its axes. */
@@ -144,20 +152,27 @@ bool worst_of(const struct judge *judge, const struct region *region, enum worst
               const struct worst *hint, struct worst_cases *found, struct error *error) {
     struct scan scan = {.judge = judge, .region = region, .full = effort == WORST_FULL};
     double from[MODEL_MOST_INPUTS];
-    scan.most_starts = scan.full ? WORST_MOST_CASES : 2;
+    scan.most_starts = scan.full ? WORST_MOST_CASES : 4;
     start_from(&scan, hint, from);
     if (!scan_region(&scan, from, error))
         return false;
+    double best = -INFINITY;
+    for (size_t i = 0; i < scan.start_count; i++) {
+        if (!ends(&scan, &scan.starts[i].worst, error))
+            return false;
+        best = fmax(best, scan.starts[i].worst.verdict.badness);
+    }
     found->count = 0;
     for (size_t i = 0; i < scan.start_count; i++) {
         struct worst worst = scan.starts[i].worst;
-        double best = scan.starts[0].worst.verdict.badness;
-        if (i > 0 && worst.verdict.badness < best - BEHIND * scan_scale(judge, best))
-            break;
+        if (worst.verdict.badness < best - BEHIND * scan_scale(judge, best))
+            continue;
         if (!finish(&scan, &worst, error))
             return false;
         insert(found, &worst);
     }
+    if (scan.full && !climb(&scan, FINE_GAIN, &found->cases[0], error))
+        return false;
     bool settled = judge->reference == NULL || !scan.full || found->cases[0].verdict.badness > 0.0;
     return settled || follow_ridges(&scan, found, error);
 }
