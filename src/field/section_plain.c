@@ -4,7 +4,8 @@
  * 2. A = integrals of test, source and Green's function of the grounded slab over panel pairs:
  *    G = -(1/2pi) [ln r0 - K ln r1 - (1 - K^2) sum_(k>=0) (-K)^k ln rho_k], K = (dk-1)/(dk+1),
  *    r1 seen in the slab's face, rho_k at y + y' + 2k h (Silvester 1968); the sum ends where
- *    K^k < 1e-7 and the rest is put on the last image, so that the total charge is exactly zero.
+ *    K^k < 1e-7 and the rest is put on the last two images, so that its charge and its dipole
+ *    moment, on which distant conductors depend, are exact.
  * 3. A q = the conductors' unit potentials, by Cholesky; C = their charges. */
 
 #include "groundrules/arena.h"
@@ -25,7 +26,8 @@ struct plain_orders {
 static const struct plain_orders fine = {5, 0.2, 1e-5};
 static const struct plain_orders coarse = {4, 0.2, 1e-4};
 
-enum { MOST_IMAGES = 1200 };
+/* Two matrices of that size are 256 MB. */
+enum { MOST_IMAGES = 1200, MOST_UNKNOWNS = 4000 };
 
 struct plain {
     const struct section_problem *problem;
@@ -130,7 +132,9 @@ static void make_weights(struct plain *plain) {
         plain->weight[plain->images++] = weight;
         weight *= -k;
     }
-    plain->weight[plain->images++] = weight / (1 + k);
+    double rest = weight / (1 + k), shift = k / (1 + k);
+    plain->weight[plain->images - 1] += shift * rest;
+    plain->weight[plain->images++] = (1 - shift) * rest;
 }
 
 static void node_positions(const struct panel *panel, const double *t, double *x, double *y) {
@@ -215,6 +219,20 @@ static bool charges(const struct plain *plain, double *a, double *capacitance, d
     return true;
 }
 
+static bool too_many(const struct plain *plain, size_t unknowns, struct error *error) {
+    size_t panels[SECTION_MOST_CONDUCTORS] = {0}, worst = 0;
+    for (size_t p = 0; p < plain->count; p++)
+        panels[plain->panels[p].conductor]++;
+    for (size_t i = 1; i < plain->problem->count; i++)
+        if (panels[i] > panels[worst])
+            worst = i;
+    return error_set(error, ERROR_INPUT,
+                     "conductor %zu: width %g m is too much beside the height %g m and the gaps: "
+                     "%zu unknowns, at most %d",
+                     worst + 1, plain->problem->conductors[worst].width, plain->problem->height,
+                     unknowns, MOST_UNKNOWNS);
+}
+
 static bool solve(const struct section_problem *problem, struct plain_orders orders,
                   struct section_solution *solution, struct arena *arena, struct error *error) {
     struct plain *plain = arena_new(arena, 1, struct plain, error);
@@ -227,6 +245,8 @@ static bool solve(const struct section_problem *problem, struct plain_orders ord
     if (!make_panels(plain, arena, error))
         return false;
     size_t unknowns = plain->count * orders.terms;
+    if (unknowns > MOST_UNKNOWNS)
+        return too_many(plain, unknowns, error);
     plain->a = arena_take(arena, unknowns * unknowns, sizeof(double), error);
     plain->a0 = arena_take(arena, unknowns * unknowns, sizeof(double), error);
     double *right = arena_take(arena, unknowns * problem->count, sizeof(double), error);
