@@ -45,9 +45,10 @@ bool section_solve_plain(const struct section_problem *problem, struct section_s
                          struct error *error);
 
 /* The solver in use: one mapped expansion with corner exponents per face, reweighted images,
- * tabulated self-blocks; orders are chosen from the geometry.  `section_solve` refines once and
- * reports the change as the error estimate; `section_solve_once` is the single solve that the
- * benchmark times (error = NAN). */
+ * tabulated self-blocks; orders are chosen from the geometry.  `section_solve` refines once, in
+ * every order, and reports the change plus 5e-6 as the error estimate; where the orders that the
+ * geometry asks for are beyond the expansion it gives the plain solver's answer.
+ * `section_solve_once` is the single solve that the benchmark times (error = NAN). */
 bool section_solve(const struct section_problem *problem, struct section_solution *solution,
                    struct error *error);
 bool section_solve_once(const struct section_problem *problem, struct section_solution *solution,

@@ -12,6 +12,7 @@ struct section_orders {
     struct section_terms terms[SECTION_MOST_CONDUCTORS];
     size_t images;
     double node_error; /* aimed at by every rule of nodes */
+    size_t more_nodes; /* beyond that, so that no two efforts share a rule */
     bool reached;      /* false when something had to be capped: do not trust */
 };
 
@@ -19,6 +20,7 @@ struct section_orders {
 struct section_nodes {
     size_t level, upright;
     bool level_crowded, upright_crowded;
+    bool enough; /* false when capped far below what is needed */
 };
 
 /* Orders for about 1e-4 at effort 0, about ten times less with each further one. */

@@ -9,11 +9,14 @@
 
 #include <math.h>
 
-/* Levels of polynomials, nodes, images, what one step of refinement adds; found by refining the
- * sections of the tests until every entry lay within 2e-5. */
-static const double LEVEL_BASE = 3.3, LEVEL_FACTOR = 2.0, UP_BASE = 1.7, UP_FACTOR = 0.8,
-                    NODE_ERROR = 2e-4, IMAGE_ERROR = 2e-5, STEP = 1.0, INNER = 0.7,
-                    INNER_NODE = 0.3;
+/* Found by comparing with the plain solver. */
+static const double level_base = 3.3, level_factor = 2.0, inner_factor = 0.7;
+static const double upright_base = 1.7, upright_factor = 0.8;
+static const double node_error = 2e-4, inner_node_error = 6e-5, image_error = 2e-5;
+
+/* What two efforts have in common and their difference cannot show: corner exponents in steps,
+ * tables. */
+static const double common_error = 5e-6;
 
 static double gap_between(const struct section_problem *problem, size_t i, size_t j) {
     const struct section_conductor *one = &problem->conductors[i < j ? i : j];
@@ -29,29 +32,23 @@ static size_t at_most(double wanted, size_t most, bool *reached) {
     return most;
 }
 
-void section_orders_choose(const struct section_problem *problem, int effort,
-                           struct section_orders *orders) {
-    double raise = STEP * effort;
-    orders->reached = true;
-    for (size_t i = 0; i < problem->count; i++) {
-        const struct section_conductor *c = &problem->conductors[i];
-        double w = c->width / problem->height, t = c->thickness / problem->height;
-        double near = 2.0;
-        if (i > 0)
-            near = fmin(near, gap_between(problem, i - 1, i));
-        if (i + 1 < problem->count)
-            near = fmin(near, gap_between(problem, i, i + 1));
-        bool inner = i > 0 && i + 1 < problem->count;
-        double factor = LEVEL_FACTOR + (inner ? INNER * log1p(0.5 * w) : 0);
-        double level = LEVEL_BASE + factor * cbrt(w / near) + 1.5 * raise;
-        double upright = UP_BASE + UP_FACTOR * cbrt(t / near) + raise;
-        orders->terms[i].level = at_most(level, FACE_MOST_TERMS, &orders->reached);
-        orders->terms[i].upright =
-            t > 0 ? at_most(upright, SECTION_MOST_UPRIGHT, &orders->reached) : 0;
-    }
-    orders->node_error = (problem->count > 2 ? INNER_NODE : 1) * NODE_ERROR * pow(10, -raise);
-    orders->images =
-        section_image_count(section_reflection(problem->dk), IMAGE_ERROR * pow(10, -raise));
+static void choose_terms(const struct section_problem *problem, size_t i, double raise,
+                         struct section_orders *orders) {
+    const struct section_conductor *c = &problem->conductors[i];
+    double w = c->width / problem->height, t = c->thickness / problem->height;
+    double near = 2.0;
+    if (i > 0)
+        near = fmin(near, gap_between(problem, i - 1, i));
+    if (i + 1 < problem->count)
+        near = fmin(near, gap_between(problem, i, i + 1));
+    bool inner = i > 0 && i + 1 < problem->count;
+    double factor = level_factor + (inner ? inner_factor * log1p(0.5 * w) : 0);
+    /* By two, for one more polynomial would be of the other parity and change nothing where the
+     * charge is even. */
+    double level = level_base + factor * cbrt(w / near) + 2 * raise;
+    double upright = upright_base + upright_factor * cbrt(t / near) + raise;
+    orders->terms[i].level = at_most(level, FACE_MOST_TERMS, &orders->reached);
+    orders->terms[i].upright = t > 0 ? at_most(upright, SECTION_MOST_UPRIGHT, &orders->reached) : 0;
 }
 
 /* Parameter of the ellipse with foci -1, 1: through 1 + 2 gap beyond the end, and through i height
@@ -76,9 +73,15 @@ static double crowded_above_middle(double height) {
     return above_middle(2 * sinh(asinh(height) / 3));
 }
 
-static size_t count_for(double rho, double error) {
-    double count = ceil(log(error) / -log(rho));
-    return count > FACE_MOST_NODES ? FACE_MOST_NODES : count < 2 ? 2 : (size_t)count;
+static double count_for(double rho, double error) {
+    return fmax(ceil(log(error) / -log(rho)), 2);
+}
+
+/* The rules are Gauss', so a count that interpolates to `error` integrates to its square: half of
+ * it still does. */
+static size_t at_most_nodes(double wanted, bool *enough) {
+    *enough = *enough && wanted <= 2 * FACE_MOST_NODES;
+    return wanted > FACE_MOST_NODES ? FACE_MOST_NODES : (size_t)wanted;
 }
 
 struct section_nodes section_nodes(const struct section_problem *problem,
@@ -86,19 +89,37 @@ struct section_nodes section_nodes(const struct section_problem *problem,
     const struct section_conductor *c = &problem->conductors[i];
     double w = c->width / problem->height, t = c->thickness / problem->height;
     /* Over a wide conductor the potential is the small difference of charge and image. */
-    double error = orders->node_error / (1 + 0.5 * w);
+    double error = orders->node_error / (1 + 0.5 * w), more = (double)orders->more_nodes;
     double gap = i == j ? 4 : gap_between(problem, i, j), end = gap / w, middle = 4 / w;
-    struct section_nodes nodes = {0};
-    nodes.level = count_for(fmin(beyond_end(end), above_middle(middle)), error);
+    struct section_nodes nodes = {.enough = true};
+    double level = count_for(fmin(beyond_end(end), above_middle(middle)), error);
     if (end < 0.1) {
-        size_t crowded =
+        double crowded =
             count_for(fmin(crowded_beyond_end(end), crowded_above_middle(middle)), error);
-        nodes.level_crowded = crowded < nodes.level;
-        nodes.level = nodes.level_crowded ? crowded : nodes.level;
+        nodes.level_crowded = crowded < level;
+        level = fmin(level, crowded);
     }
-    if (t > 0)
-        nodes.upright = count_for(i == j ? beyond_end(2 / t) : above_middle(2 * gap / t), error);
+    nodes.level = at_most_nodes(level + more, &nodes.enough);
+    if (t > 0) {
+        double rho = i == j ? beyond_end(2 / t) : above_middle(2 * gap / t);
+        nodes.upright = at_most_nodes(count_for(rho, error) + more, &nodes.enough);
+    }
     return nodes;
+}
+
+void section_orders_choose(const struct section_problem *problem, int effort,
+                           struct section_orders *orders) {
+    double raise = effort;
+    orders->node_error = (problem->count > 2 ? inner_node_error : node_error) * pow(10, -raise);
+    orders->more_nodes = (size_t)effort;
+    orders->images =
+        section_image_count(section_reflection(problem->dk), image_error * pow(10, -raise));
+    orders->reached = true;
+    for (size_t i = 0; i < problem->count; i++) {
+        choose_terms(problem, i, raise, orders);
+        for (size_t j = i == 0 ? 0 : i - 1; j < problem->count && j <= i + 1; j++)
+            orders->reached = orders->reached && section_nodes(problem, orders, i, j).enough;
+    }
 }
 
 static bool solve_with(const struct section_problem *problem, int effort,
@@ -115,11 +136,16 @@ bool section_solve_once(const struct section_problem *problem, struct section_so
 
 bool section_solve(const struct section_problem *problem, struct section_solution *solution,
                    struct error *error) {
+    struct section_orders orders;
     struct section_solution rough, finer;
-    if (!section_check(problem, error) || !solve_with(problem, 0, &rough, error) ||
-        !solve_with(problem, 1, &finer, error))
+    if (!section_check(problem, error))
         return false;
-    finer.error = section_difference(&rough, &finer);
+    section_orders_choose(problem, 1, &orders);
+    if (!orders.reached)
+        return section_solve_plain(problem, solution, error);
+    if (!solve_with(problem, 0, &rough, error) || !section_fast(problem, &orders, &finer, error))
+        return false;
+    finer.error = section_difference(&rough, &finer) + common_error;
     *solution = finer;
     return true;
 }
