@@ -93,45 +93,52 @@ static double draw(uint64_t *state) {
 }
 
 /* Each axis takes part in every second step. */
-static void draw_direction(const struct region *region, uint64_t *state, double *direction) {
+static void draw_direction(const struct region *region, size_t line, uint64_t *state,
+                           double *direction) {
     for (size_t i = 0; i < region->axis_count; i++) {
         double length = draw(state);
-        bool part = draw(state) > 0.0 && region->axes[i].kind != REGION_CHOICE;
+        bool part = draw(state) > 0.0 && i != line && region->axes[i].kind != REGION_CHOICE;
         direction[i] = part ? length : 0.0;
     }
 }
 
-static bool step_along(const struct judge *judge, const struct region *region,
-                       const double *direction, double size, struct worst *worst, bool *worse,
+static bool step_along(const struct judge *judge, const struct region *region, size_t line,
+                       const double *direction, double size, struct worst *worst,
                        struct error *error) {
-    struct worst tried = *worst;
+    double longest = 0.0;
     for (size_t i = 0; i < region->axis_count; i++) {
         const struct region_axis *axis = &region->axes[i];
-        double whole = forth(axis, axis->high) - forth(axis, axis->low);
-        double at = forth(axis, worst->inputs[axis->input]);
-        if (direction[i] != 0.0)
-            tried.inputs[axis->input] = back(axis, at + size * whole * direction[i]);
+        double step = size * (forth(axis, axis->high) - forth(axis, axis->low)) * direction[i];
+        if (direction[i] == 0.0)
+            continue;
+        worst->inputs[axis->input] = back(axis, forth(axis, worst->inputs[axis->input]) + step);
+        if (axis->logarithmic)
+            longest = fmax(longest, fabs(step));
     }
-    if (!judge_case(judge, tried.inputs, &tried.verdict, error))
+    if (!judge_case(judge, worst->inputs, &worst->verdict, error))
         return false;
-    *worse = tried.verdict.badness > worst->verdict.badness;
-    if (*worse)
-        *worst = tried;
-    return true;
+    if (line == SIZE_MAX)
+        return true;
+    /* Resonances move by about as much, in the logarithm, as what moves them. */
+    struct climb climb = {.cell = fmax(longest, 0.1 * size), .levels = 2, .patience = 1};
+    return climb_axis(judge, &region->axes[line], climb, worst, error);
 }
 
-bool climb_ridge(const struct judge *judge, const struct region *region, int steps,
+bool climb_ridge(const struct judge *judge, const struct region *region, size_t line, int steps,
                  struct worst *worst, struct error *error) {
     uint64_t state = 1;
-    double direction[MODEL_MOST_INPUTS], size = 0.05;
+    double direction[MODEL_MOST_INPUTS], size = 0.2;
     bool worse = false;
     for (int i = 0; i < steps && region->axis_count > 1; i++) {
+        struct worst tried = *worst;
         if (!worse)
-            draw_direction(region, &state, direction);
-        if (!step_along(judge, region, direction, size, worst, &worse, error))
+            draw_direction(region, line, &state, direction);
+        if (!step_along(judge, region, line, direction, size, &tried, error))
             return false;
-        size *= worse ? 1.5 : 0.9;
-        size = fmin(0.3, fmax(size, 1e-3));
+        worse = tried.verdict.badness > worst->verdict.badness;
+        if (worse)
+            *worst = tried;
+        size = fmin(0.5, size * (worse ? 1.5 : 0.8));
     }
     return true;
 }

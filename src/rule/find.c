@@ -193,7 +193,9 @@ static bool hump_fails(struct finder *finder, size_t i, long *bad, struct error 
     if (!climb_hump(finder, finder->samples[i > 0 ? i - 1 : i],
                     finder->samples[i + 1 < finder->count ? i + 1 : i], &top, &worst, error))
         return false;
-    if (!holds(&worst))
+    if (holds(&worst))
+        finder->worst[i] = worst;
+    else
         *bad = top, finder->stop = worst;
     return true;
 }

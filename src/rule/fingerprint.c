@@ -29,6 +29,9 @@ struct lines {
     size_t count, capacity;
 };
 
+/* Raised when the search may answer the same question differently. */
+enum { SEARCH_REVISION = 2 };
+
 static void add(struct lines *lines, const char *line) {
     if (line == NULL)
         return;
@@ -55,6 +58,10 @@ static void add_variant(struct lines *lines, const struct model *model, const ch
                         setting->value, setting->range.from, setting->range.to, setting->minus,
                         setting->plus));
     }
+    if (variant->stackup != NULL)
+        add(lines, arena_print(lines->arena, lines->error, "%s %zu smallest %.9g %.9g %.9g\n",
+                               where, v, variant->stackup->smallest_width,
+                               variant->stackup->smallest_gap, variant->stackup->smallest_drill));
     if (variant->victim != NULL)
         add(lines, arena_print(lines->arena, lines->error, "%s %zu budget %.9g\n", where, v,
                                variant->victim->noise_margin * variant->victim->share));
@@ -109,6 +116,7 @@ static int by_text(const void *a, const void *b) {
 bool fingerprint_of(const struct study *study, char digest[65], struct arena *arena,
                     struct error *error) {
     struct lines lines = {.arena = arena, .error = error};
+    add(&lines, arena_print(arena, error, "search %d\n", SEARCH_REVISION));
     for (size_t c = 0; c < study->chapter_count; c++) {
         const struct study_chapter *chapter = &study->chapters[c];
         for (size_t v = 0; v < chapter->variant_count; v++)

@@ -14,7 +14,7 @@
 #include <stdint.h>
 #include <string.h>
 
-enum { MOST_CORNER_AXES = 8, ROUNDS = 3, RIDGES = 2, RIDGE_STEPS = 120 };
+enum { MOST_CORNER_AXES = 8, ROUNDS = 3, RIDGES = 2, RIDGE_STEPS = 20 };
 /* A start this much below the worst does not overtake it within a cell. */
 static const double BEHIND = 0.15;
 /* A probe that is this far from the limit is not climbed: what may hide between its samples is a
@@ -135,7 +135,7 @@ static void insert(struct worst_cases *found, const struct worst *worst) {
 static bool follow_ridges(const struct scan *scan, struct worst_cases *found, struct error *error) {
     for (size_t i = 0; i < found->count && i < RIDGES; i++) {
         struct worst worst = found->cases[i];
-        if (!climb_ridge(scan->judge, scan->region, RIDGE_STEPS, &worst, error))
+        if (!climb_ridge(scan->judge, scan->region, scan->line, RIDGE_STEPS, &worst, error))
             return false;
         found->cases[i] = worst;
     }
