@@ -6,7 +6,8 @@ static double product(const double *x) {
     return 0.1 * x[LENGTH] / 40e-3 * 2e-9 / x[EDGE] * 1e-3 / x[GAP];
 }
 
-/* With the gap at 2 mm and 50.1 mV allowed: length / 40 mm * 2 ns / edge <= 1.002 over the stated rest.
+/* With the gap at 2 mm and 50.1 mV allowed: length / 40 mm * 2 ns / edge <= 1.002 over the stated
+ * rest.
  */
 static void test_a_shorter_run_or_a_slower_edge_is_offered(void **state) {
     (void)state;
