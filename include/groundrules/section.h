@@ -5,10 +5,12 @@
 
 #include <stddef.h>
 
-/* A 2-D cross-section: rectangular perfect conductors lying on a grounded dielectric slab, air
- * above. The ground plane is y = 0 and infinite; the slab fills 0 < y < height with relative
- * permittivity dk (1 = air everywhere).  Quasi-TEM: C from the electrostatic problem, external L =
- * mu0 eps0 inv(C0) from the same section with dk = 1 (the field outside perfect conductors). */
+/* A 2-D cross-section: perfect conductors lying on a dielectric slab over a ground plane, air
+ * above. The plane is y = 0; the slab fills 0 < y < height with relative permittivity dk (1 = air
+ * everywhere).  What zero leaves out may be added: a coating, a plane above, a plane that ends, no
+ * plane at all, copper that is narrower at its top.  Quasi-TEM: C from the electrostatic problem,
+ * external L = mu0 eps0 inv(C0) from the same section in air (the field outside perfect
+ * conductors). */
 
 #define SECTION_EPSILON_0 8.8541878188e-12 /* F/m, CODATA 2022 */
 #define SECTION_MU_0 1.25663706127e-6      /* H/m, CODATA 2022 */
@@ -19,12 +21,28 @@ struct section_conductor {
     double left;      /* m, x of the left edge of the foot */
     double width;     /* m, > 0 */
     double thickness; /* m, >= 0; 0 is an infinitely thin sheet at y = height */
+    double etch;      /* m, >= 0: the top is so much narrower on either side */
+};
+
+enum section_plane {
+    SECTION_PLANE,      /* infinite, at y = 0 */
+    SECTION_PLANE_ENDS, /* a thin half-plane y = 0, x < plane_end; the slab goes on beyond it */
+    SECTION_NO_PLANE,   /* a board without one: the first conductor is the reference at 0 V, the
+                           matrices are those of the others; air below y = 0 */
 };
 
 struct section_problem {
     double height; /* m, > 0: top of the plane to the foot of the copper */
     double dk;     /* >= 1 */
-    size_t count;  /* 1 .. SECTION_MOST_CONDUCTORS, from left to right, no two touching */
+    enum section_plane plane;
+    double plane_end; /* m, x where it ends; with SECTION_PLANE_ENDS */
+    double mask;      /* m, >= 0: coating over board and copper, 0 = none: as thick on the board as
+                         on the copper, square at the corners */
+    double mask_dk;   /* >= 1 */
+    bool mask_flat;   /* instead one flat layer from y = height to `mask` above the copper */
+    double cover;     /* m, > thickness: foot of the copper to a plane above it, 0 = none */
+    double cover_dk;  /* >= 1: of what fills the room under it (beside a coating) */
+    size_t count;     /* 1 .. SECTION_MOST_CONDUCTORS, from left to right, no two touching */
     struct section_conductor conductors[SECTION_MOST_CONDUCTORS];
 };
 
@@ -34,6 +52,8 @@ struct section_solution {
     double capacitance[SECTION_MOST_CONDUCTORS * SECTION_MOST_CONDUCTORS];        /* F/m, Maxwell */
     double vacuum_capacitance[SECTION_MOST_CONDUCTORS * SECTION_MOST_CONDUCTORS]; /* F/m, dk = 1 */
     double inductance[SECTION_MOST_CONDUCTORS * SECTION_MOST_CONDUCTORS]; /* H/m, external */
+    /* F/m: the sum over all dielectrics of dk dC/ddk, what a loss tangent multiplies. */
+    double dielectric_capacitance[SECTION_MOST_CONDUCTORS * SECTION_MOST_CONDUCTORS];
     double error;    /* estimate: largest relative error of any entry of the three matrices */
     size_t unknowns; /* of the finest system that was solved */
 };
