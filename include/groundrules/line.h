@@ -6,12 +6,26 @@
 #include <complex.h>
 #include <stddef.h>
 
-/* Coupled lossless lines of one length between two sets of ends.
- *     dV/dx = -L dI/dt,   dI/dx = -C dV/dt          (C is the Maxwell matrix, reference = the plane
- * at 0 V) Every end of every conductor has a resistance in series with an EMF (0 V where the end is
- * not driven) to the plane, and a capacitance to the plane in parallel with that branch. */
+/* Coupled lines of one length between two sets of ends, with s = j 2 pi f or any Re s > 0:
+ *     dV/dx = -Z(s) I,   dI/dx = -Y(s) V         (C is the Maxwell matrix, reference = the plane at
+ * 0 V)
+ *     Z(s) = dc_resistance + skin_resistance sqrt(s/pi) + s L
+ *     Y(s) = s (C + dielectric_capacitance chi(s))
+ * Every end of every conductor has a resistance in series with an EMF (0 V where the end is not
+ * driven) to the plane, and a capacitance to the plane in parallel with that branch.
+ *
+ * At s = j 2 pi f the skin term is skin_resistance sqrt(f) (1 + j): resistance and internal
+ * reactance are equal, as in good conductors thicker than a few skin depths.  chi is what the
+ * permittivity departs from its value at `material_frequency`, relative, in the causal model of
+ * Djordjevic, Biljic, Likar-Smiljanic and Sarkar (IEEE Trans. EMC 43, 2001):
+ *     1 + chi(s) = a + b ln((w2 + s)/(w1 + s)) / ln(w2/w1),  w1, w2 = 2 pi times the corners below,
+ * a and b such that at `material_frequency` the real part is 1 and the loss tangent `df`.  Without
+ * loss (all of it zero) the lossless solvers are used. */
 
 enum { LINE_MOST_CONDUCTORS = 8 };
+
+#define LINE_LOWEST_RELAXATION 1e3   /* Hz, lower corner of the dielectric's relaxations */
+#define LINE_HIGHEST_RELAXATION 1e12 /* Hz, upper corner */
 
 struct line_end {
     double resistance;  /* ohm, >= 0; INFINITY = open */
@@ -25,6 +39,13 @@ struct line_problem {
     double capacitance[LINE_MOST_CONDUCTORS * LINE_MOST_CONDUCTORS]; /* F/m, Maxwell */
     struct line_end near[LINE_MOST_CONDUCTORS];
     struct line_end far[LINE_MOST_CONDUCTORS];
+    /* Loss, each zero when there is none.  Matrices symmetric, positive semidefinite. */
+    double dc_resistance[LINE_MOST_CONDUCTORS * LINE_MOST_CONDUCTORS];   /* ohm/m */
+    double skin_resistance[LINE_MOST_CONDUCTORS * LINE_MOST_CONDUCTORS]; /* ohm/m/sqrt(Hz) */
+    double dielectric_capacitance[LINE_MOST_CONDUCTORS *
+                                  LINE_MOST_CONDUCTORS]; /* F/m: dk dC/ddk, Maxwell */
+    double df;                                           /* loss tangent at material_frequency */
+    double material_frequency; /* Hz, > 0 with df: where `capacitance` holds */
 };
 
 /* Modes: eigenvectors of the symmetric pencil (C, inv L), so equal velocities are no special case.
@@ -38,6 +59,11 @@ struct line_modes {
 };
 bool line_modes(const struct line_problem *problem, struct line_modes *modes, struct error *error);
 
+/* Complex propagation constants gamma = alpha + j beta of all modes at one frequency, per metre:
+ * eigenvalues of sqrt(Z Y), slow modes last where there is no loss.  constants[count]. */
+bool line_propagation(const struct line_problem *problem, double frequency,
+                      double complex *constants, struct error *error);
+
 /* Voltages of all ends at one frequency for an EMF of 1 V at the near end of conductor `driven`.
  * near[count], far[count]: complex volts per volt of EMF.  frequency in Hz, > 0. */
 bool line_frequency_response(const struct line_problem *problem, size_t driven, double frequency,
@@ -50,7 +76,9 @@ bool line_scattering(const struct line_problem *problem, double reference, doubl
                      double complex *scattering, struct error *error);
 
 /* The response in time, prepared once for one driven conductor and asked for any edge.
- * The EMF is one linear ramp from 0 to 1 V within `edge` seconds, then held. */
+ * The EMF is one linear ramp from 0 to 1 V within `edge` seconds, then held.  Lossless lines are
+ * solved by bounces and characteristics, lossy ones by inversion of the Laplace transform
+ * (docs/methods-line.md says how, and how well). */
 struct line_response;
 
 /* `shortest_edge` s, > 0: the shortest edge that will be asked for.  Owned by `arena`. */
@@ -71,10 +99,10 @@ bool line_response_peaks(const struct line_response *response, size_t victim, do
 /* The worst sequence of edges at both ends of `victim`, V per volt of swing:
  *   free     edges of alternating sign, any two at least `bit_time` apart
  *   clocked  edges on whole multiples of `bit_time`, worst over the phase of the observation
- * `free` never grows with bit_time; `clocked` may.  Exact for the sampled response (32 samples an edge);
- * `error` is the relative change on twice the sample step, of the larger.  Fails: ERROR_INPUT when
- * bit_time is not above 0 or so short against the ringing that more than a million samples would be
- * needed; ERROR_MEMORY. */
+ * `free` never grows with bit_time; `clocked` may.  Exact for the sampled response (32 samples an
+ * edge); `error` is the relative change on twice the sample step, of the larger.  Fails:
+ * ERROR_INPUT when bit_time is not above 0 or so short against the ringing that more than a million
+ * samples would be needed; ERROR_MEMORY. */
 struct line_sequence {
     double free, clocked;
     double error;

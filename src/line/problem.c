@@ -1,5 +1,7 @@
 #include "problem.h"
 
+#include "loss.h"
+
 #include <math.h>
 
 /* Field solvers deliver symmetric matrices to about 1e-9; what is off by more is a mistake. */
@@ -70,6 +72,8 @@ bool problem_check(const struct line_problem *problem, size_t driven, struct err
     if (!(problem->length >= SHORTEST_LENGTH && problem->length <= LONGEST_LENGTH))
         return error_set(error, ERROR_INPUT, "length is %g m, must be within %g and %g",
                          problem->length, SHORTEST_LENGTH, LONGEST_LENGTH);
+    if (!loss_check(problem, error))
+        return false;
     for (size_t i = 0; i < problem->count; i++)
         if (!check_end(&problem->near[i], "near", i, error) ||
             !check_end(&problem->far[i], "far", i, error))

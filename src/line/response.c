@@ -1,9 +1,11 @@
 #include "response.h"
 
+#include "loss.h"
 #include "problem.h"
 
 #include <math.h>
 #include <stdint.h>
+#include <string.h>
 
 /* Shares of the EMF below which a front no longer matters: as exact bounces every front is kept
  * that could still add up to a visible crosstalk; on the grid a front only sharpens what the
@@ -138,6 +140,14 @@ struct line_response *line_response_create(const struct line_problem *problem, s
         return NULL;
     response->count = problem->count;
     response->shortest_edge = shortest_edge;
+    if (loss_present(problem)) {
+        response->lossy = arena_new(arena, 1, struct lossy, error);
+        if (response->lossy == NULL ||
+            !lossy_build(problem, driven, shortest_edge, arena, response->lossy, error))
+            return NULL;
+        memcpy(response->rest_error, response->lossy->tail, sizeof response->rest_error);
+        return response;
+    }
     double negligible = NEGLIGIBLE * shortest_edge;
     if (!end_system_build(problem, &setup.modes, problem->near, driven, negligible, &setup.near,
                           error) ||
@@ -180,8 +190,21 @@ bool response_check(const struct line_response *response, size_t victim, double 
 
 double response_at(const struct line_response *response, size_t end, size_t victim, double edge,
                    double time) {
+    if (response->lossy != NULL)
+        return smooth_response(&response->lossy->end[end][victim], edge, time);
     return response->exact ? staircase_at(&response->staircase[end], victim, edge, time)
                            : curve_response(&response->curve[end][victim], edge, time);
+}
+
+static bool lossy_peaks(const struct lossy *lossy, size_t victim, double edge,
+                        struct line_peak *near, struct line_peak *far, struct error *error) {
+    struct line_peak peak[2];
+    for (size_t end = 0; end < 2; end++)
+        if (!smooth_peak(&lossy->end[end][victim], edge, &peak[end], error))
+            return false;
+    *near = peak[0];
+    *far = peak[1];
+    return true;
 }
 
 static struct line_peak peak_at(const struct line_response *response, size_t end, size_t victim,
@@ -204,6 +227,8 @@ bool line_response_peaks(const struct line_response *response, size_t victim, do
                          struct line_peak *near, struct line_peak *far, struct error *error) {
     if (!response_check(response, victim, edge, error))
         return false;
+    if (response->lossy != NULL)
+        return lossy_peaks(response->lossy, victim, edge, near, far, error);
     *near = peak_at(response, 0, victim, edge);
     *far = peak_at(response, 1, victim, edge);
     return true;

@@ -2,9 +2,11 @@
 #define LINE_RESPONSE_H
 
 #include "curve.h"
+#include "lossy.h"
 #include "staircase.h"
 
-/* What is kept of a prepared response: exact staircases, or curves on two grids. */
+/* What is kept of a prepared response: exact staircases, curves on two grids, or what the Laplace
+ * transform of a lossy line gave. */
 struct line_response {
     size_t count;
     double shortest_edge;
@@ -12,6 +14,7 @@ struct line_response {
     struct staircase staircase[2];
     struct curve curve[2][LINE_MOST_CONDUCTORS];
     struct curve coarse[2][LINE_MOST_CONDUCTORS]; /* the same on twice the step */
+    struct lossy *lossy;                          /* NULL without loss */
     double rest_error[2][LINE_MOST_CONDUCTORS];   /* relative: what may follow the window */
 };
 

@@ -37,6 +37,8 @@ double sequence_clocked(const double *response, size_t count, size_t period) {
 /* When the response to a ramp has come to rest. */
 static double resting_time(const struct line_response *response, size_t end, size_t victim,
                            double edge) {
+    if (response->lossy != NULL)
+        return response->lossy->window + edge;
     if (!response->exact) {
         const struct curve *curve = &response->curve[end][victim];
         return (double)(curve->samples - 1) * curve->step + edge;
