@@ -92,7 +92,7 @@ static struct section_problem problem_of(const struct memo_key *key) {
     for (size_t i = 0; i < problem.count; i++)
         problem.conductors[i] = (struct section_conductor){(double)key->conductors[i][0] * GRAIN,
                                                            (double)key->conductors[i][1] * GRAIN,
-                                                           (double)key->conductors[i][2] * GRAIN};
+                                                           (double)key->conductors[i][2] * GRAIN, 0.0};
     return problem;
 }
 

@@ -11,6 +11,17 @@ static const char *fab_line(struct flow *flow, const struct study_stackup *stack
     const char *text = flow_print(
         flow, "Trace foot to plane %s, copper %s, dk %s.", words_quantity(flow, &stackup->height),
         words_quantity(flow, &stackup->thickness), words_quantity(flow, &stackup->dk));
+    if (stackup->df > 0.0)
+        text = flow_print(flow, "%s Loss tangent %s at %s.", text,
+                          words_value(flow, stackup->df, DIMENSION_NUMBER),
+                          words_value(flow, stackup->material_frequency, DIMENSION_FREQUENCY));
+    if (stackup->mask.value > 0.0)
+        text = flow_print(flow, "%s Solder mask %s, dk %s.", text,
+                          words_quantity(flow, &stackup->mask),
+                          words_quantity(flow, &stackup->mask_dk));
+    if (stackup->etch.value > 0.0)
+        text = flow_print(flow, "%s Top of a trace narrower by %s per side.", text,
+                          words_quantity(flow, &stackup->etch));
     if (stackup->smallest_width > 0.0)
         text = flow_print(flow, "%s Smallest width %s", text,
                           words_value(flow, stackup->smallest_width, DIMENSION_LENGTH));
@@ -87,7 +98,11 @@ static const char *load_words(struct flow *flow, const struct study_signal *sign
 }
 
 static void signal_cells(struct flow *flow, const struct study_signal *signal, const char **cells) {
+    static const char *const beside[] = {"", "on both sides", "two on each side"};
     cells[0] = flow_escape(flow, signal->name);
+    if (signal->aggressors > 0)
+        cells[0] = flow_print(flow, "%s, %s of a victim%s", cells[0], beside[signal->aggressors],
+                              signal->independent ? ", each on its own" : "");
     cells[1] = words_value(flow, signal->swing, DIMENSION_VOLTAGE);
     cells[2] = flow_escape(flow, signal->edge_text);
     cells[3] = words_range(flow, signal->edge, DIMENSION_TIME);
@@ -101,6 +116,9 @@ static void signal_cells(struct flow *flow, const struct study_signal *signal, c
         flow_print(flow, "<b>%s</b>",
                    words_value(flow, signal->share * signal->noise_margin, DIMENSION_VOLTAGE));
     cells[8] = receiver_words(signal->receiver);
+    if (signal->settling > 0.0)
+        cells[8] = flow_print(flow, "%s, sampled %s after an edge’s start", cells[8],
+                              words_value(flow, signal->settling, DIMENSION_TIME));
 }
 
 enum { SIGNAL_COLUMNS = 9 };

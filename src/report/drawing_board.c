@@ -4,6 +4,7 @@
 #include <assert.h>
 #include <math.h>
 #include <stdio.h>
+#include <string.h>
 
 /* A board: heights to scale, widths only a strip; copper layers that carry signals show as traces,
  * planes run through. */
@@ -179,6 +180,22 @@ static void draw(struct drawing_frame *frame, const struct study_stackup *stacku
     scene_end(frame->scene);
 }
 
+/* The solder mask becomes a layer on either side. */
+static void coat(const struct study_stackup *stackup, struct study_layer layers[MOST_LAYERS],
+                 struct study_stackup *coated) {
+    *coated = *stackup;
+    if (!(stackup->mask.value > 0) || stackup->layer_count + 2 > MOST_LAYERS)
+        return;
+    struct study_layer mask = {.kind = STUDY_LAYER_DIELECTRIC,
+                               .name = "solder mask",
+                               .thickness = stackup->mask,
+                               .dk = stackup->mask_dk};
+    layers[0] = layers[stackup->layer_count + 1] = mask;
+    memcpy(layers + 1, stackup->layers, stackup->layer_count * sizeof *layers);
+    coated->layers = layers;
+    coated->layer_count = stackup->layer_count + 2;
+}
+
 struct scene *drawing_stackup(const struct study_stackup *stackup,
                               const struct drawing_options *options, struct text_setter *setter,
                               struct arena *arena, struct drawing_report *report,
@@ -196,8 +213,11 @@ struct scene *drawing_stackup(const struct study_stackup *stackup,
     else
         frame.scene = scene_create(options->width, 1, arena, kept);
     if (frame.scene != NULL) {
-        set_scale(&frame, stackup);
-        draw(&frame, stackup);
+        struct study_layer layers[MOST_LAYERS];
+        struct study_stackup coated;
+        coat(stackup, layers, &coated);
+        set_scale(&frame, &coated);
+        draw(&frame, &coated);
     }
     if (kept->kind != ERROR_NONE) {
         error_set(error, kept->kind, "%s", kept->message);
