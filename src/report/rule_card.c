@@ -137,33 +137,76 @@ struct line {
 
 enum { MOST_LINES = 7 };
 
-/* "Two layers: length at most 12 mm, or edge at least 9 ns, at a gap of 12 mm." */
+/* "gap at least 3.2 mm" */
+static const char *bound_words(struct flow *flow, const struct model_input *input, bool at_least,
+                               double value, double grid) {
+    return flow_print(flow, "%s %s %s%s", words_name(flow, input->name),
+                      at_least ? "at least" : "at most",
+                      words_grid(flow, value, grid, input->dimension),
+                      strcmp(input->name, "edge") == 0 ? " (0–100 %)" : "");
+}
+
+static const char *remedy_words(struct flow *flow, const struct study_chapter *chapter,
+                                const struct study_rule *rule,
+                                const struct guideline_remedy *remedy) {
+    const struct model_input *found = &chapter->model->inputs[rule->find];
+    const char *bound = bound_words(flow, &chapter->model->inputs[remedy->input], remedy->at_least,
+                                    remedy->value, remedy->grid);
+    if (remedy->kind == GUIDELINE_TIED_COPPER)
+        return flow_print(flow,
+                          "with a ground strip of %s between, tied along its whole length, %s",
+                          words_value(flow, remedy->strip_width, DIMENSION_LENGTH), bound);
+    if (remedy->kind == GUIDELINE_OTHER_BOARD)
+        return flow_print(flow, "on the board “%s” %s", flow_escape(flow, remedy->stackup->name),
+                          bound);
+    return flow_print(flow, "%s at a %s of %s", bound, words_name(flow, found->name),
+                      words_value(flow, rule->find_smallest ? rule->within.to : rule->within.from,
+                                  found->dimension));
+}
+
+/* The boards beside it that can. */
+static const char *other_boards(struct flow *flow, const struct study_chapter *chapter,
+                                const struct guideline_rule *rule, size_t v, const char *text) {
+    const struct study_rule *stated = rule->rule;
+    const struct study_variant *own = &stated->variants[v];
+    for (size_t w = 0; w < stated->variant_count; w++) {
+        const struct guideline_finding *finding = &rule->findings[w];
+        const struct study_variant *other = &stated->variants[w];
+        bool met =
+            finding->status == GUIDELINE_FOUND || finding->status == GUIDELINE_MET_EVERYWHERE;
+        if (!met || other->stackup == own->stackup || other->stackup == NULL ||
+            other->aggressor != own->aggressor || other->victim != own->victim)
+            continue;
+        text = flow_print(
+            flow, "%s%son the board “%s” %s", text, *text != '\0' ? "; or " : "",
+            flow_escape(flow, other->label != NULL ? other->label : other->stackup->name),
+            bound_words(flow, &chapter->model->inputs[stated->find], stated->find_smallest,
+                        finding->value, stated->grid));
+    }
+    return text;
+}
+
+/* "Two layers: length at most 12 mm at a gap of 12 mm; or on the board “Four layers” gap at least
+ * 0.4 mm." */
 static const char *would_do(struct flow *flow, const struct study_chapter *chapter,
                             const struct guideline_rule *rule) {
     const struct study_rule *stated = rule->rule;
-    const struct model_input *found = &chapter->model->inputs[stated->find];
-    const char *text = "";
+    const char *all = "";
     for (size_t v = 0; v < stated->variant_count; v++) {
         const struct guideline_finding *finding = &rule->findings[v];
-        const char *label = stated->variants[v].label;
-        for (size_t i = 0; i < finding->remedy_count; i++) {
-            const struct guideline_remedy *remedy = &finding->remedies[i];
-            const struct model_input *input = &chapter->model->inputs[remedy->input];
-            const char *lead = i > 0 ? ", or " : *text != '\0' ? " " : "";
-            if (i == 0 && label != NULL)
-                lead = flow_print(flow, "%s%s: ", lead, flow_escape(flow, label));
-            text = flow_print(flow, "%s%s%s %s %s%s", text, lead, words_name(flow, input->name),
-                              remedy->at_least ? "at least" : "at most",
-                              words_grid(flow, remedy->value, remedy->grid, input->dimension),
-                              remedy->at_least ? " (0–100 %)" : "");
-        }
-        if (finding->remedy_count > 0)
-            text = flow_print(
-                flow, "%s, at a %s of %s.", text, words_name(flow, found->name),
-                words_value(flow, stated->find_smallest ? stated->within.to : stated->within.from,
-                            found->dimension));
+        const char *label = stated->variants[v].label, *text = "";
+        if (finding->status != GUIDELINE_CANNOT_BE_MET)
+            continue;
+        for (size_t i = 0; i < finding->remedy_count; i++)
+            text = flow_print(flow, "%s%s%s", text, i > 0 ? "; or " : "",
+                              remedy_words(flow, chapter, stated, &finding->remedies[i]));
+        text = other_boards(flow, chapter, rule, v, text);
+        if (*text != '\0')
+            all = flow_print(flow, "%s%s%s%s%s.", all, *all != '\0' ? " " : "",
+                             label != NULL ? flow_escape(flow, label) : "",
+                             label != NULL ? ": " : "", text);
     }
-    return text;
+    return all;
 }
 
 static size_t lines_of(struct flow *flow, const struct study_chapter *chapter,

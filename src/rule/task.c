@@ -152,8 +152,9 @@ static bool find(struct task *task, struct solver *solver, const struct study_va
             return false;
     }
     return find_bound(rule, variant, &judge, region, finding, &task->error) &&
-           (finding->status != GUIDELINE_CANNOT_BE_MET ||
-            remedies_find(rule, variant, &judge, region, finding, &task->error));
+           (finding->status != GUIDELINE_CANNOT_BE_MET || task->kind != TASK_RULE ||
+            remedies_find(&(struct remedy_question){task->study, rule, variant, &judge, region},
+                          finding, &task->error));
 }
 
 static void restrict_to(struct region *region, const struct study_cell_axis *axis, size_t index) {
