@@ -196,13 +196,64 @@ static void board_table(struct flow *flow, const struct guideline_chapter *chapt
     flow_table(flow, &table);
 }
 
+/* A table of one input: the boards are its columns. */
+static void boards_table(struct flow *flow, const struct guideline_chapter *chapter,
+                         const struct guideline_rule *rule) {
+    const struct study_rule *stated = rule->rule;
+    size_t row_count = stated->rows.count, variants = stated->variant_count;
+    struct table_row *rows = arena_new(flow->arena, row_count, struct table_row, flow->error);
+    struct table_column *columns =
+        arena_new(flow->arena, variants + 1, struct table_column, flow->error);
+    struct table_head *heads = arena_new(flow->arena, variants + 1, struct table_head, flow->error);
+    if (rows == NULL || columns == NULL || heads == NULL)
+        return;
+    heads[0].text = words_name(flow, stated->rows.name);
+    for (size_t v = 0; v < variants; v++) {
+        columns[1 + v].align = TABLE_CENTRE;
+        heads[1 + v].text = flow_escape(flow, stated->variants[v].label);
+    }
+    for (size_t r = 0; r < row_count; r++) {
+        const char **cells = arena_new(flow->arena, variants + 1, const char *, flow->error);
+        if (cells == NULL)
+            return;
+        cells[0] = flow_escape(flow, stated->rows.labels[r]);
+        for (size_t v = 0; v < variants; v++)
+            cells[1 + v] = words_finding_short(flow, stated, chapter->chapter,
+                                               &rule->cells[v * row_count + r]);
+        rows[r].cells = cells;
+    }
+    const struct table_head_row head = {heads, variants + 1};
+    struct table table = {.name = flow_print(flow, "%s-table", stated->id),
+                          .columns = columns,
+                          .column_count = variants + 1,
+                          .heads = &head,
+                          .head_count = 1,
+                          .rows = rows,
+                          .row_count = row_count,
+                          .stretch = variants > 3};
+    flow_gap(flow, 8.0);
+    flow_need(flow, 40.0 + 14.0 * (double)row_count);
+    flow_text(flow, THEME_STRONG,
+              flow_print(flow, "%s: %s against %s", flow_escape(flow, stated->id),
+                         words_name(flow, chapter->chapter->model->inputs[stated->find].name),
+                         words_name(flow, stated->rows.name)));
+    flow_gap(flow, 2.0);
+    flow_table(flow, &table);
+}
+
 void chapter_rule_table(struct flow *flow, const struct guideline_chapter *chapter,
                         const struct guideline_rule *rule) {
     if (rule->rule->rows.count == 0 || rule->cells == NULL)
         return;
-    for (size_t v = 0; v < rule->rule->variant_count && !flow_failed(flow); v++)
+    bool side_by_side = rule->rule->columns.count == 0 && rule->rule->variant_count > 1;
+    if (side_by_side)
+        boards_table(flow, chapter, rule);
+    for (size_t v = 0; v < rule->rule->variant_count && !side_by_side && !flow_failed(flow); v++)
         board_table(flow, chapter, rule, v);
     flow_gap(flow, 3.0);
     flow_text(flow, THEME_NOTE,
-              "Each cell is proven like a rule, over everything that its row and column permit.");
+              side_by_side
+                  ? "Each cell is proven like a rule, over everything that its row permits."
+                  : "Each cell is proven like a rule, over everything that its row and column "
+                    "permit.");
 }
