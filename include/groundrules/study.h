@@ -157,12 +157,13 @@ enum study_strength { STUDY_MUST, STUDY_SHOULD, STUDY_MAY };
 enum study_against { STUDY_CONSTANT, STUDY_BUDGET, STUDY_REFERENCE };
 enum study_kept { STUDY_KEEP_WIDTH, STUDY_KEEP_IMPEDANCE };
 
-/* "worst_peak <= 200 mV", "worst_peak <= budget", "worst_peak <= reference". */
+/* "worst_peak <= 200 mV", "worst_peak <= budget", "worst_peak <= 105 % of reference". */
 struct study_condition {
     size_t output;
     bool at_most; /* <=, else >= */
     enum study_against against;
     double limit;     /* STUDY_CONSTANT */
+    double share;     /* of the budget or the reference, 1 = all of it */
     const char *text; /* as written */
 };
 

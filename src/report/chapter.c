@@ -252,7 +252,7 @@ static void add_limit(struct plot *plot, double value, const char *label, bool b
 
 static double limit_of(const struct study_rule *rule, const struct study_variant *variant) {
     if (rule->condition.against == STUDY_BUDGET && variant->victim != NULL)
-        return variant->victim->noise_margin * variant->victim->share;
+        return rule->condition.share * variant->victim->noise_margin * variant->victim->share;
     return rule->condition.limit;
 }
 

@@ -49,8 +49,9 @@ static bool limit_for(const struct judge *judge, const double *inputs, double *l
     const struct solver_case *solved = solver_ask(judge->solver, reference, error);
     if (solved == NULL)
         return error_in(error, "reference board");
-    *limit = solved->outputs[judge->output];
-    *uncertain = solved->errors[judge->output];
+    double share = judge->share > 0.0 ? judge->share : 1.0;
+    *limit = share * solved->outputs[judge->output];
+    *uncertain = share * solved->errors[judge->output];
     return true;
 }
 
