@@ -61,8 +61,8 @@ static size_t spokes_at(const struct outline *outline, double complex at, struct
         for (size_t end = 0; end < (f->endless ? 1 : 2) && count < MOST_SPOKES; end++) {
             if (!same_point(end == 0 ? f->from : f->to, at))
                 continue;
-            struct spoke new = {angle_of(end == 0 ? along : -along),
-                                end == 0 ? f->left : f->right, f->conductor != OUTLINE_NOBODY};
+            struct spoke new = {angle_of(end == 0 ? along : -along), end == 0 ? f->left : f->right,
+                                f->conductor != OUTLINE_NOBODY};
             size_t place = count++;
             for (; place > 0 && spokes[place - 1].angle > new.angle; place--)
                 spokes[place] = spokes[place - 1];
@@ -123,16 +123,34 @@ static void add_corner_images(struct outline *outline) {
     }
 }
 
+/* Faces share ends: each is looked at once. */
+struct visited {
+    size_t count;
+    double complex at[OUTLINE_MOST_CORNERS];
+    double power[OUTLINE_MOST_CORNERS];
+};
+
 /* At the plane's end the exponent is 1/2 whatever the two dielectrics: sin(nu pi) cos(nu pi)
  * (1 + 1/dk) = 0. */
+static double visit(const struct outline *outline, double complex at, struct visited *visited) {
+    for (size_t i = visited->count; i > 0; i--)
+        if (same_point(visited->at[i - 1], at))
+            return visited->power[i - 1];
+    bool plane_end = outline->map.kind == PLANE_HALF && same_point(at, outline->map.end);
+    double power = plane_end ? 2 : power_at(outline, at);
+    visited->at[visited->count] = at;
+    visited->power[visited->count++] = power;
+    return power;
+}
+
 void outline_find_corners(struct outline *outline) {
+    struct visited visited = {.count = 0};
     outline->corners = 0;
     for (size_t i = 0; i < outline->count; i++) {
         struct outline_face *f = &outline->face[i];
         for (size_t end = 0; end < (f->endless ? 1 : 2); end++) {
             double complex at = end == 0 ? f->from : f->to;
-            bool plane_end = outline->map.kind == PLANE_HALF && same_point(at, outline->map.end);
-            f->power[end] = plane_end ? 2 : power_at(outline, at);
+            f->power[end] = visit(outline, at, &visited);
             if (f->power[end] > 1)
                 add_corner(outline, at);
         }

@@ -11,6 +11,8 @@
 
 #include "outline_solve.h"
 
+#include "vector.h"
+
 #include <lapacke.h>
 #include <math.h>
 #include <string.h>
@@ -25,10 +27,10 @@ struct system {
     struct piece *pieces;
     size_t count, terms, unknowns, order, heads, conductors;
     bool mirrored, share;
-    double *a[PARITIES];                           /* [order][order], row = equation */
-    double *border[PARITIES];                      /* potential on borders of air, same rows */
+    double *a[PARITIES];                             /* [order][order], row = equation */
+    double *border[PARITIES];                        /* potential on borders of air, same rows */
     double *charge[PARITIES], *air_charge[PARITIES]; /* [heads][order] */
-    double *x[PARITIES];                           /* [heads][order] */
+    double *x[PARITIES];                             /* [heads][order] */
 };
 
 static size_t parities(const struct system *s) {
@@ -65,79 +67,97 @@ static bool make_system(struct system *s, struct arena *arena, struct error *err
     return true;
 }
 
-/* What one node of a piece sees of all charges: [parity][order]. */
+/* What the nodes of one piece see of all charges: [parity][node][order]. */
 struct view {
+    size_t nodes;
     double *potential[PARITIES], *field[PARITIES];
     bool wants_potential, wants_field;
 };
 
-static void look(const struct system *s, const struct piece *piece, double at,
-                 const struct view *view) {
-    double complex z = piece_position(piece, at), there = -conj(z);
-    struct piece_target here = {z, plane_map_at(&s->map, z), piece->normal};
-    struct piece_target mirror = {there, plane_map_at(&s->map, there), -conj(piece->normal)};
-    double potential[PIECE_MOST_TERMS], field[PIECE_MOST_TERMS];
-    for (size_t j = 0; j < s->count; j++) {
-        double *v = view->potential[EVEN] + j * s->terms, *e = view->field[EVEN] + j * s->terms;
-        piece_integrate(&s->pieces[j], s->rules, &s->map, &here, view->wants_potential ? v : NULL,
-                        view->wants_field ? e : NULL);
-        if (!s->mirrored)
-            continue;
-        piece_integrate(&s->pieces[j], s->rules, &s->map, &mirror,
-                        view->wants_potential ? potential : NULL,
-                        view->wants_field ? field : NULL);
-        for (size_t k = 0; k < s->terms; k++) {
-            size_t n = j * s->terms + k;
-            if (view->wants_potential) {
-                double own = view->potential[EVEN][n];
-                view->potential[EVEN][n] = own + potential[k];
-                view->potential[ODD][n] = own - potential[k];
-            }
-            if (view->wants_field) {
-                double own = view->field[EVEN][n];
-                view->field[EVEN][n] = own + field[k];
-                view->field[ODD][n] = own - field[k];
-            }
-        }
+static void split_parities(double *even, double *odd, const double *mirrored, size_t terms) {
+    for (size_t k = 0; k < terms; k++) {
+        odd[k] = even[k] - mirrored[k];
+        even[k] += mirrored[k];
     }
 }
 
-static void add_row(double *restrict row, const double *restrict values, double weight, size_t n) {
-    for (size_t j = 0; j < n; j++)
-        row[j] += weight * values[j];
+static void look(const struct system *s, const struct piece *piece, size_t node,
+                 const struct view *view) {
+    double complex z = piece_position(piece, s->rules->test.s[node]), there = -conj(z);
+    struct piece_target here = {z, plane_map_at(&s->map, z), piece->normal};
+    struct piece_target mirror = {there, plane_map_at(&s->map, there), -conj(piece->normal)};
+    double room[2 * PIECE_MOST_TERMS];
+    double *potential = view->wants_potential ? room : NULL;
+    double *field = view->wants_field ? room + PIECE_MOST_TERMS : NULL;
+    for (size_t j = 0; j < s->count; j++) {
+        size_t at = node * s->order + j * s->terms;
+        piece_integrate(&s->pieces[j], s->rules, &s->map, &here,
+                        potential != NULL ? view->potential[EVEN] + at : NULL,
+                        field != NULL ? view->field[EVEN] + at : NULL);
+        if (!s->mirrored)
+            continue;
+        piece_integrate(&s->pieces[j], s->rules, &s->map, &mirror, potential, field);
+        if (potential != NULL)
+            split_parities(view->potential[EVEN] + at, view->potential[ODD] + at, potential,
+                           s->terms);
+        if (field != NULL)
+            split_parities(view->field[EVEN] + at, view->field[ODD] + at, field, s->terms);
+    }
+}
+
+/* row += sum over nodes of weight times what they see */
+VECTOR_CLONES
+static void add_rows(double *restrict row, const double *restrict seen, const double *weight,
+                     size_t nodes, size_t order, size_t n) {
+    for (size_t q = 0; q < nodes; q++)
+        for (size_t j = 0; j < n; j++)
+            row[j] += weight[q] * seen[q * order + j];
 }
 
 /* The free charge of a sheet on its left less that on its right comes from the field. */
-static void add_sheet_node(struct system *s, const struct piece *piece, double weight,
-                           const struct view *view) {
+static void add_sheet_field(struct system *s, const struct piece *piece, const double *speed,
+                            const struct view *view) {
     size_t head = head_of(s, piece->conductor);
-    double field = weight / (2 * half_turn);
-    double air = (piece->left == 1 ? 1 : 0) - (piece->right == 1 ? 1 : 0);
+    double all = (piece->left - piece->right) / (2 * half_turn);
+    double air = ((piece->left == 1 ? 1 : 0) - (piece->right == 1 ? 1 : 0)) / (2 * half_turn);
+    double all_weight[PIECE_MOST_NODES], air_weight[PIECE_MOST_NODES];
+    for (size_t q = 0; q < view->nodes; q++) {
+        all_weight[q] = all * speed[q] * s->rules->test.moment[q][0];
+        air_weight[q] = air * speed[q] * s->rules->test.moment[q][0];
+    }
     for (size_t p = 0; p < parities(s); p++) {
-        add_row(s->charge[p] + head * s->order, view->field[p],
-                (piece->left - piece->right) * field, s->unknowns);
-        add_row(s->air_charge[p] + head * s->order, view->field[p], air * field, s->unknowns);
+        add_rows(s->charge[p] + head * s->order, view->field[p], all_weight, view->nodes, s->order,
+                 s->unknowns);
+        add_rows(s->air_charge[p] + head * s->order, view->field[p], air_weight, view->nodes,
+                 s->order, s->unknowns);
     }
 }
 
-static void add_node(struct system *s, size_t i, size_t q, const struct view *view) {
+static void add_equations(struct system *s, size_t i, const struct view *view) {
     const struct piece *piece = &s->pieces[i];
-    const double *moment = s->rules->test.moment[q];
-    double speed = cabs(piece_slope(piece, s->rules->test.s[q]));
+    const struct piece_rule *test = &s->rules->test;
     bool border = piece->conductor == OUTLINE_NOBODY;
     double reflection = (piece->left - piece->right) / (piece->left + piece->right);
-    for (size_t p = 0; p < parities(s); p++)
-        for (size_t m = 0; m < s->terms; m++) {
-            size_t at = (i * s->terms + m) * s->order;
-            if (border)
-                add_row(s->a[p] + at, view->field[p], moment[m] * speed * reflection / half_turn,
-                        s->unknowns);
-            if (!border || view->wants_potential)
-                add_row((border ? s->border[p] : s->a[p]) + at, view->potential[p],
-                        -moment[m] / (2 * half_turn), s->unknowns);
+    double speed[PIECE_MOST_NODES], for_field[PIECE_MOST_NODES], for_potential[PIECE_MOST_NODES];
+    for (size_t q = 0; q < view->nodes; q++)
+        speed[q] = cabs(piece_slope(piece, test->s[q]));
+    for (size_t m = 0; m < s->terms; m++) {
+        size_t at = (i * s->terms + m) * s->order;
+        for (size_t q = 0; q < view->nodes; q++) {
+            for_field[q] = test->moment[q][m] * speed[q] * reflection / half_turn;
+            for_potential[q] = -test->moment[q][m] / (2 * half_turn);
         }
-    if (!border && is_sheet(piece))
-        add_sheet_node(s, piece, moment[0] * speed, view);
+        for (size_t p = 0; p < parities(s); p++) {
+            if (border)
+                add_rows(s->a[p] + at, view->field[p], for_field, view->nodes, s->order,
+                         s->unknowns);
+            if (view->wants_potential)
+                add_rows((border ? s->border[p] : s->a[p]) + at, view->potential[p], for_potential,
+                         view->nodes, s->order, s->unknowns);
+        }
+    }
+    if (!border && view->wants_field)
+        add_sheet_field(s, piece, speed, view);
 }
 
 static void add_piece_charge(struct system *s, size_t i) {
@@ -155,19 +175,23 @@ static void add_piece_charge(struct system *s, size_t i) {
 }
 
 static bool assemble(struct system *s, struct arena *arena, struct error *error) {
-    double *room = arena_new(arena, 4 * s->order, double, error);
+    struct view view = {.nodes = s->rules->test.count};
+    size_t size = view.nodes * s->order;
+    double *room = arena_new(arena, 4 * size, double, error);
     if (room == NULL)
         return false;
-    struct view view = {{room, room + s->order}, {room + 2 * s->order, room + 3 * s->order}, 0, 0};
+    for (size_t p = 0; p < PARITIES; p++) {
+        view.potential[p] = room + p * size;
+        view.field[p] = room + (2 + p) * size;
+    }
     for (size_t i = 0; i < s->count; i++) {
         const struct piece *piece = &s->pieces[i];
         bool border = piece->conductor == OUTLINE_NOBODY;
         view.wants_potential = !border || (s->share && borders_air(piece));
-        view.wants_field = border || is_sheet(piece);
-        for (size_t q = 0; q < s->rules->test.count; q++) {
-            look(s, piece, s->rules->test.s[q], &view);
-            add_node(s, i, q, &view);
-        }
+        view.wants_field = border || (is_sheet(piece) && piece->left != piece->right);
+        for (size_t q = 0; q < view.nodes; q++)
+            look(s, piece, q, &view);
+        add_equations(s, i, &view);
         for (size_t p = 0; border && p < parities(s); p++)
             for (size_t m = 0; m < s->terms; m++)
                 s->a[p][(i * s->terms + m) * (s->order + 1)] += 1 / (2 * (double)m + 1);
@@ -188,7 +212,10 @@ static void close_free_space(struct system *s) {
         for (size_t i = 0; i < s->count; i++) {
             size_t n = i * s->terms;
             a[last * s->order + n] = 1;
-            (s->pieces[i].conductor == OUTLINE_NOBODY ? s->border[p] : a)[n * s->order + last] = 1;
+            if (s->pieces[i].conductor != OUTLINE_NOBODY)
+                a[n * s->order + last] = 1;
+            else if (s->share)
+                s->border[p][n * s->order + last] = 1;
         }
     }
 }
@@ -298,8 +325,7 @@ bool outline_solve(const struct outline *outline, bool mirrored, bool share,
         piece_rules_make(effort, rules);
         if (mirrored)
             outline_left_half(outline, half);
-        s.pieces =
-            piece_cut(mirrored ? half : outline, effort, rules, &s.count, arena, error);
+        s.pieces = piece_cut(mirrored ? half : outline, effort, rules, &s.count, arena, error);
         ok = s.pieces != NULL && make_system(&s, arena, error) && assemble(&s, arena, error);
         if (ok && s.map.kind == PLANE_NONE)
             close_free_space(&s);

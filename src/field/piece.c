@@ -8,10 +8,17 @@
 #include <math.h>
 #include <string.h>
 
-enum { MOST_PIECES = 2400 };
+enum { MOST_PIECES = 1000 };
 
-/* Galerkin boundary elements without mapping: end panels this small, ratio of neighbours. */
-static const double graded_smallest = 1e-6, graded_ratio = 0.15;
+/* Graded boundary elements without mapping: smallest end piece, ratio of neighbours. */
+static const double graded_smallest = 1e-8, graded_ratio = 0.15;
+
+/* A plain expansion is that much shorter where the corner lies aside, not on its own face: what it
+ * sees of it is a peak, not a tail. */
+static const double beside_share = 0.55;
+
+/* The half-plane's end is a branch point of every kernel, sharper than a corner is to a charge. */
+static const double end_share = 0.3;
 
 static void make_rule(size_t count, size_t terms, bool crowded, struct piece_rule *rule) {
     double t[PIECE_MOST_NODES], weight[PIECE_MOST_NODES];
@@ -42,7 +49,7 @@ void piece_rules_make(const struct piece_effort *effort, struct piece_rules *rul
 }
 
 double complex piece_position(const struct piece *piece, double s) {
-    return piece->origin + piece->step * (piece->tail ? pow(1 - s, -piece->power)
+    return piece->origin + piece->step * (piece->tail         ? pow(1 - s, -piece->power)
                                           : piece->power == 1 ? s
                                                               : pow(s, piece->power));
 }
@@ -57,16 +64,37 @@ struct cutter {
     const struct piece_effort *effort;
     const struct outline_face *face;
     double complex along; /* unit */
+    struct arena *arena;
+    struct error *error;
     struct piece *pieces;
-    size_t count;
-    bool full;
+    size_t count, room;
+    bool failed;
 };
 
+static bool make_room(struct cutter *cutter) {
+    if (cutter->count < cutter->room)
+        return true;
+    if (cutter->count == MOST_PIECES)
+        return error_set(cutter->error, ERROR_INPUT,
+                         "section: copper is too wide beside its height, thickness and gaps: more "
+                         "than %d pieces of outline",
+                         MOST_PIECES);
+    size_t room = cutter->room == 0 ? 48 : 2 * cutter->room;
+    room = room > MOST_PIECES ? MOST_PIECES : room;
+    struct piece *pieces = arena_new(cutter->arena, room, struct piece, cutter->error);
+    if (pieces == NULL)
+        return false;
+    if (cutter->count > 0)
+        memcpy(pieces, cutter->pieces, cutter->count * sizeof *pieces);
+    cutter->pieces = pieces;
+    cutter->room = room;
+    return true;
+}
+
 static void add_piece(struct cutter *cutter, struct piece piece) {
-    if (cutter->count == MOST_PIECES) {
-        cutter->full = true;
+    cutter->failed = cutter->failed || !make_room(cutter);
+    if (cutter->failed)
         return;
-    }
     piece.normal = I * cutter->along;
     piece.left = cutter->face->left;
     piece.right = cutter->face->right;
@@ -79,18 +107,18 @@ static double clearance(const struct cutter *cutter, double from, double to, boo
                         bool corner_to) {
     double least = INFINITY, tiny = 1e-10 * (to - from);
     for (size_t i = 0; i < cutter->outline->corners; i++) {
-        double complex at =
-            (cutter->outline->corner[i] - cutter->face->from) * conj(cutter->along);
+        double complex at = (cutter->outline->corner[i] - cutter->face->from) * conj(cutter->along);
         double across = cimag(at), x = creal(at);
         if (fabs(across) <= tiny &&
             ((corner_from && fabs(x - from) <= tiny) || (corner_to && fabs(x - to) <= tiny)))
             continue;
         double beside = fmax(0, fmax(from - x, x - to));
         double distance = hypot(across, beside);
-        /* The map's branch point is closer to every kernel than a corner to a charge. */
+        if (!corner_from && !corner_to && fabs(across) > tiny)
+            distance *= beside_share;
         if (cutter->outline->map.kind == PLANE_HALF &&
             cutter->outline->corner[i] == cutter->outline->map.end)
-            distance *= 0.3;
+            distance *= end_share;
         least = fmin(least, distance);
     }
     if (cutter->outline->map.kind == PLANE_TWO)
@@ -103,7 +131,7 @@ static void cut(struct cutter *cutter, double from, double to, double power_from
     double length = to - from, reach = cutter->effort->reach;
     bool corner_from = power_from > 1, corner_to = power_to > 1;
     double middle = 0.5 * (from + to);
-    if (cutter->full)
+    if (cutter->failed)
         return;
     if (corner_from && corner_to) {
         cut(cutter, from, middle, power_from, 1);
@@ -137,8 +165,7 @@ static void cut(struct cutter *cutter, double from, double to, double power_from
 static double tail_start(const struct cutter *cutter) {
     double start = 0;
     for (size_t i = 0; i < cutter->outline->corners; i++) {
-        double complex at =
-            (cutter->outline->corner[i] - cutter->face->from) * conj(cutter->along);
+        double complex at = (cutter->outline->corner[i] - cutter->face->from) * conj(cutter->along);
         double offset = fabs(cimag(at)), x = creal(at);
         start = fmax(start, 0.6 * cabs(at));
         if (x > 0)
@@ -158,16 +185,14 @@ static void cut_face(struct cutter *cutter, const struct outline_face *face) {
     cutter->along = face->to;
     double start = tail_start(cutter);
     cut(cutter, 0, start, face->power[0], 1);
-    add_piece(cutter,
-              (struct piece){.tail = true,
-                             .origin = face->from,
-                             .step = cutter->along * start,
-                             .power = cutter->outline->map.kind == PLANE_HALF ? 2 : 1});
+    add_piece(cutter, (struct piece){.tail = true,
+                                     .origin = face->from,
+                                     .step = cutter->along * start,
+                                     .power = cutter->outline->map.kind == PLANE_HALF ? 2 : 1});
 }
 
 static bool place_nodes(struct piece *piece, const struct plane_map *map,
-                        const struct piece_rules *rules, struct arena *arena,
-                        struct error *error) {
+                        const struct piece_rules *rules, struct arena *arena, struct error *error) {
     size_t far = rules->far.count, near = rules->near.count;
     double *all = arena_new(arena, 2 * (far + near), double, error);
     if (all == NULL)
@@ -189,19 +214,11 @@ static bool place_nodes(struct piece *piece, const struct plane_map *map,
 struct piece *piece_cut(const struct outline *outline, const struct piece_effort *effort,
                         const struct piece_rules *rules, size_t *count, struct arena *arena,
                         struct error *error) {
-    struct cutter cutter = {.outline = outline, .effort = effort};
-    cutter.pieces = arena_new(arena, MOST_PIECES, struct piece, error);
-    if (cutter.pieces == NULL)
-        return NULL;
+    struct cutter cutter = {.outline = outline, .effort = effort, .arena = arena, .error = error};
     for (size_t i = 0; i < outline->count; i++)
         cut_face(&cutter, &outline->face[i]);
-    if (cutter.full) {
-        error_set(error, ERROR_INPUT,
-                  "section: copper is too wide beside its height, thickness and gaps: more than %d "
-                  "pieces of outline",
-                  MOST_PIECES);
+    if (cutter.failed)
         return NULL;
-    }
     for (size_t i = 0; i < cutter.count; i++)
         if (!place_nodes(&cutter.pieces[i], &outline->map, rules, arena, error))
             return NULL;

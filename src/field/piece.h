@@ -11,7 +11,8 @@
  *   origin + step s^power             from a corner, power the reciprocal of its exponent, so that
  *                                     the singular charge is one of the functions; 1: no corner;
  *   origin + step / (1 - s)^power     to infinity, where the charge decays like
- *                                     distance^(-1 - 1/power): power 1, or 2 beside a half-plane. */
+ *                                     distance^(-1 - 1/power): power 1, or 2 beside a half-plane.
+ */
 
 enum { PIECE_MOST_TERMS = 16, PIECE_MOST_NODES = 64 };
 
@@ -43,7 +44,7 @@ struct piece_rule {
 
 struct piece_rules {
     size_t terms;
-    struct piece_rule test, far, near; /* near: nodes crowd at s = 0 */
+    struct piece_rule test, far, near;      /* near: nodes crowd at s = 0 */
     double end_logarithm[PIECE_MOST_TERMS]; /* integrals of P_k ln(1 - s) */
 };
 

@@ -17,7 +17,7 @@ enum { MOST_ROOTS = 4 };
 static const double near_ellipse = 1.35;
 
 struct root {
-    double re, im;       /* s* */
+    double re, im;             /* s* */
     double slope_re, slope_im; /* weight of 1/(s* - s) in the field */
     double sign;
 };
@@ -44,7 +44,8 @@ static void add_roots(const struct piece *piece, double complex z, double comple
                       double sign, struct roots *roots) {
     const double pi = 3.14159265358979323846;
     double complex w = (z - piece->origin) * conj(piece->step);
-    double scale = creal(piece->step) * creal(piece->step) + cimag(piece->step) * cimag(piece->step);
+    double scale =
+        creal(piece->step) * creal(piece->step) + cimag(piece->step) * cimag(piece->step);
     w /= scale;
     double a = piece->power;
     if (piece->tail) {
@@ -72,7 +73,8 @@ static bool is_close(const struct piece *piece, double complex z) {
         return true;
     double complex away = z - piece->origin - 0.5 * piece->step;
     double distance = creal(away) * creal(away) + cimag(away) * cimag(away);
-    double length = creal(piece->step) * creal(piece->step) + cimag(piece->step) * cimag(piece->step);
+    double length =
+        creal(piece->step) * creal(piece->step) + cimag(piece->step) * cimag(piece->step);
     return distance < 2.25 * length;
 }
 
@@ -111,8 +113,8 @@ static void closed_form(double re, double im, size_t terms, double *restrict log
     q_im[0] = 0.5 * (angle_plus - angle_minus);
     q_re[1] = x * q_re[0] - y * q_im[0] - 1;
     q_im[1] = x * q_im[0] + y * q_re[0];
-    logarithms[0] = 0.5 * ((x + 1) * plus - y * angle_plus - (x - 1) * minus + y * angle_minus) - 1 -
-                    0.69314718055994530942;
+    logarithms[0] = 0.5 * ((x + 1) * plus - y * angle_plus - (x - 1) * minus + y * angle_minus) -
+                    1 - 0.69314718055994530942;
     for (size_t n = 1; n < terms; n++) {
         double k = (double)n;
         double b_re = x * q_re[n] - y * q_im[n], b_im = x * q_im[n] + y * q_re[n];
@@ -132,8 +134,7 @@ static void add_closed_forms(const struct roots *roots, size_t terms, double *po
             if (potential != NULL)
                 potential[k] += root->sign * logarithms[k];
             if (field != NULL)
-                field[k] +=
-                    root->sign * 2 * (root->slope_re * re[k] - root->slope_im * im[k]);
+                field[k] += root->sign * 2 * (root->slope_re * re[k] - root->slope_im * im[k]);
         }
     }
 }
@@ -189,11 +190,23 @@ static void sample_field(const struct samples *at, double x, double y, double c_
     }
 }
 
+/* Four functions at a time make vector code. */
+VECTOR_CLONES
 static void add_moments(const struct piece_rule *rule, size_t terms, const double *value,
-                        double *restrict sum) {
-    for (size_t q = 0; q < rule->count; q++)
-        for (size_t k = 0; k < terms; k++)
-            sum[k] += rule->moment[q][k] * value[q];
+                        double *restrict total) {
+    for (size_t k = 0; k < terms; k += 4) {
+        double sum[4] = {0};
+        for (size_t q = 0; q < rule->count; q++) {
+            const double *moment = rule->moment[q] + k;
+            double v = value[q];
+            sum[0] += moment[0] * v;
+            sum[1] += moment[1] * v;
+            sum[2] += moment[2] * v;
+            sum[3] += moment[3] * v;
+        }
+        for (size_t j = 0; j < 4 && k + j < terms; j++)
+            total[k + j] += sum[j];
+    }
 }
 
 void piece_integrate(const struct piece *piece, const struct piece_rules *rules,

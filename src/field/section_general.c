@@ -18,10 +18,10 @@ bool section_is_bare(const struct section_problem *problem) {
 
 void section_general_effort(int effort, struct piece_effort *chosen) {
     size_t more = (size_t)effort;
-    *chosen = (struct piece_effort){.terms = 4 + more,
+    *chosen = (struct piece_effort){.terms = 3 + more,
                                     .more_tests = 1,
-                                    .far_nodes = 8 + 2 * more,
-                                    .near_nodes = 14 + 4 * more,
+                                    .far_nodes = 6 + 2 * more,
+                                    .near_nodes = 10 + 2 * more,
                                     .reach = 4};
 }
 
@@ -30,7 +30,7 @@ void section_general_graded(int effort, struct piece_effort *chosen) {
                                     .more_tests = 3,
                                     .far_nodes = 12,
                                     .near_nodes = 20,
-                                    .reach = effort > 0 ? 2 : 3,
+                                    .reach = effort > 0 ? 3 : 4,
                                     .graded = true};
 }
 
@@ -84,8 +84,8 @@ bool section_general(const struct section_problem *problem, const struct piece_e
     result.count = problem->count - (problem->plane == SECTION_NO_PLANE ? 1 : 0);
     struct arena *arena = arena_create(error);
     struct outline *outlines = arena == NULL ? NULL : arena_new(arena, 2, struct outline, error);
-    bool ok = outlines != NULL &&
-              solve(problem, effort, share, outlines, outlines + 1, &result, error);
+    bool ok =
+        outlines != NULL && solve(problem, effort, share, outlines, outlines + 1, &result, error);
     arena_free(arena);
     if (ok)
         *solution = result;

@@ -8,7 +8,7 @@
 /* Rectangles on a slab over an endless plane, nothing else: the image solvers' case. */
 bool section_is_bare(const struct section_problem *problem);
 
-/* Efforts 0 and up: about 1e-4, then about ten times less with each. */
+/* Efforts 0 and up: about 1e-4, then a few times less with each. */
 void section_general_effort(int effort, struct piece_effort *chosen);
 /* Graded meshes without corner exponents, the oracle: a coarse (0) and a fine one (1). */
 void section_general_graded(int effort, struct piece_effort *chosen);

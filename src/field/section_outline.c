@@ -203,7 +203,7 @@ bool section_outline(const struct section_problem *problem, struct outline *outl
     b.coating = problem->mask_dk;
     outline->count = outline->corners = 0;
     outline->conductors = problem->count;
-    outline->map = (struct plane_map){.kind = problem->cover > 0                      ? PLANE_TWO
+    outline->map = (struct plane_map){.kind = problem->cover > 0                     ? PLANE_TWO
                                               : problem->plane == SECTION_PLANE_ENDS ? PLANE_HALF
                                               : problem->plane == SECTION_NO_PLANE   ? PLANE_NONE
                                                                                      : PLANE_BELOW,
