@@ -84,8 +84,10 @@ static void split_parities(double *even, double *odd, const double *mirrored, si
 static void look(const struct system *s, const struct piece *piece, size_t node,
                  const struct view *view) {
     double complex z = piece_position(piece, s->rules->test.s[node]), there = -conj(z);
-    struct piece_target here = {z, plane_map_at(&s->map, z), piece->normal};
-    struct piece_target mirror = {there, plane_map_at(&s->map, there), -conj(piece->normal)};
+    struct piece_target here = {z, plane_map_at(&s->map, z), piece->normal, piece,
+                                s->rules->test.s[node]};
+    struct piece_target mirror = {there, plane_map_at(&s->map, there), -conj(piece->normal), NULL,
+                                  0};
     double room[2 * PIECE_MOST_TERMS];
     double *potential = view->wants_potential ? room : NULL;
     double *field = view->wants_field ? room + PIECE_MOST_TERMS : NULL;

@@ -60,6 +60,8 @@ struct piece *piece_cut(const struct outline *outline, const struct piece_effort
 
 struct piece_target {
     double complex z, w, normal;
+    const struct piece *own; /* the piece that it is a point of, or NULL */
+    double s;                /* where on it */
 };
 
 /* potential[k], field[k] = integrals over the piece of P_k ds times ln|W - W'| - ln|W - conj W'|

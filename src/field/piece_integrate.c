@@ -28,8 +28,8 @@ struct roots {
 };
 
 /* Poles of 1/(s* - s): `factor` over dz/ds. */
-static void add_root(const struct piece *piece, double complex s, double complex slope,
-                     double complex factor, double sign, struct roots *roots) {
+static void add_root(double complex s, double complex slope, double complex factor, double sign,
+                     struct roots *roots) {
     double x = 2 * creal(s) - 1, y = 2 * cimag(s);
     double ellipse = 0.5 * (sqrt((x - 1) * (x - 1) + y * y) + sqrt((x + 1) * (x + 1) + y * y));
     if (ellipse > near_ellipse || roots->count == MOST_ROOTS)
@@ -37,7 +37,6 @@ static void add_root(const struct piece *piece, double complex s, double complex
     double complex weight = factor / slope;
     roots->root[roots->count++] =
         (struct root){creal(s), cimag(s), creal(weight), cimag(weight), sign};
-    (void)piece;
 }
 
 static void add_roots(const struct piece *piece, double complex z, double complex factor,
@@ -50,21 +49,21 @@ static void add_roots(const struct piece *piece, double complex z, double comple
     double a = piece->power;
     if (piece->tail) {
         double complex rest = a == 1 ? 1 / w : cpow(w, -1 / a);
-        add_root(piece, 1 - rest, piece->step * a * w / rest, factor, sign, roots);
+        add_root(1 - rest, piece->step * a * w / rest, factor, sign, roots);
         return;
     }
     if (a == 1) {
-        add_root(piece, w, piece->step, factor, sign, roots);
+        add_root(w, piece->step, factor, sign, roots);
         return;
     }
     double angle = carg(w), size = pow(cabs(w), 1 / a);
     double complex s = size * cexp(I * angle / a);
-    add_root(piece, s, piece->step * a * w / s, factor, sign, roots);
+    add_root(s, piece->step * a * w / s, factor, sign, roots);
     /* The next sheet's root, behind the corner. */
     double other = (angle - copysign(2 * pi, angle)) / a;
     if (fabs(other) < 0.8 * pi) {
         s = size * cexp(I * other);
-        add_root(piece, s, piece->step * a * w / s, factor, sign, roots);
+        add_root(s, piece->step * a * w / s, factor, sign, roots);
     }
 }
 
@@ -84,7 +83,11 @@ static bool find_roots(const struct piece *piece, const struct plane_map *map,
     bool close = false;
     double complex z = target->z, image = conj(z), factor = conj(target->normal);
     roots->count = 0;
-    if (is_close(piece, z)) {
+    if (target->own == piece) {
+        /* Exactly on the cut, where the principal value is. */
+        close = true;
+        add_root(target->s, piece_slope(piece, target->s), target->normal, 1, roots);
+    } else if (is_close(piece, z)) {
         close = true;
         add_roots(piece, z, target->normal, 1, roots);
     }
