@@ -9,13 +9,17 @@
 /* Coupled lossless lines of one length between two sets of ends.
  *     dV/dx = -L dI/dt,   dI/dx = -C dV/dt          (C is the Maxwell matrix, reference = the plane
  * at 0 V) Every end of every conductor has a resistance in series with an EMF (0 V where the end is
- * not driven) to the plane, and a capacitance to the plane in parallel with that branch. */
+ * not driven) to the plane, and a capacitance to the plane in parallel with that branch.  Any
+ * number of near ends may be driven, all by the same ramp in their own proportion; far ends are
+ * not. */
 
 enum { LINE_MOST_CONDUCTORS = 8 };
 
 struct line_end {
     double resistance;  /* ohm, >= 0; INFINITY = open */
     double capacitance; /* F, >= 0 */
+    double emf; /* V per volt of swing, of either sign; 0 = not driven, as all far ends and open
+                   ones are */
 };
 
 struct line_problem {
@@ -38,9 +42,9 @@ struct line_modes {
 };
 bool line_modes(const struct line_problem *problem, struct line_modes *modes, struct error *error);
 
-/* Voltages of all ends at one frequency for an EMF of 1 V at the near end of conductor `driven`.
- * near[count], far[count]: complex volts per volt of EMF.  frequency in Hz, > 0. */
-bool line_frequency_response(const struct line_problem *problem, size_t driven, double frequency,
+/* Voltages of all ends at one frequency, for the EMFs of the near ends.
+ * near[count], far[count]: complex volts per volt of swing.  frequency in Hz, > 0. */
+bool line_frequency_response(const struct line_problem *problem, double frequency,
                              double complex *near, double complex *far, struct error *error);
 
 /* The 2 count x 2 count scattering matrix between ports of `reference` ohms at all ends (near ends
@@ -49,14 +53,14 @@ bool line_frequency_response(const struct line_problem *problem, size_t driven, 
 bool line_scattering(const struct line_problem *problem, double reference, double frequency,
                      double complex *scattering, struct error *error);
 
-/* The response in time, prepared once for one driven conductor and asked for any edge.
- * The EMF is one linear ramp from 0 to 1 V within `edge` seconds, then held. */
+/* The response in time, prepared once for one set of EMFs and asked for any edge.
+ * Every EMF is one linear ramp within `edge` seconds from 0 to its share of the swing, then held.
+ */
 struct line_response;
 
 /* `shortest_edge` s, > 0: the shortest edge that will be asked for.  Owned by `arena`. */
-struct line_response *line_response_create(const struct line_problem *problem, size_t driven,
-                                           double shortest_edge, struct arena *arena,
-                                           struct error *error);
+struct line_response *line_response_create(const struct line_problem *problem, double shortest_edge,
+                                           struct arena *arena, struct error *error);
 
 struct line_peak {
     double highest; /* V per volt of swing, largest |v(t)| */
@@ -71,10 +75,10 @@ bool line_response_peaks(const struct line_response *response, size_t victim, do
 /* The worst sequence of edges at both ends of `victim`, V per volt of swing:
  *   free     edges of alternating sign, any two at least `bit_time` apart
  *   clocked  edges on whole multiples of `bit_time`, worst over the phase of the observation
- * `free` never grows with bit_time; `clocked` may.  Exact for the sampled response (32 samples an edge);
- * `error` is the relative change on twice the sample step, of the larger.  Fails: ERROR_INPUT when
- * bit_time is not above 0 or so short against the ringing that more than a million samples would be
- * needed; ERROR_MEMORY. */
+ * `free` never grows with bit_time; `clocked` may.  Exact for the sampled response (32 samples an
+ * edge); `error` is the relative change on twice the sample step, of the larger.  Fails:
+ * ERROR_INPUT when bit_time is not above 0 or so short against the ringing that more than a million
+ * samples would be needed; ERROR_MEMORY. */
 struct line_sequence {
     double free, clocked;
     double error;

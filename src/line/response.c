@@ -23,7 +23,6 @@ static const double NEGLIGIBLE = 1e-4;
 struct line_setup {
     const struct line_problem *problem;
     struct line_modes modes;
-    size_t driven;
     struct end_system near, far;
 };
 
@@ -45,15 +44,23 @@ static double settling_time(const struct line_problem *problem) {
     return slowest;
 }
 
-/* The lines are wires in the end: the EMF divides between the resistances of its conductor.  One
+/* The lines are wires in the end: an EMF divides between the resistances of its conductor.  One
  * with none at either end keeps a charge that only the march knows. */
-static double final_voltage(const struct line_problem *problem, size_t driven, size_t conductor) {
+static double final_voltage(const struct line_problem *problem, size_t conductor) {
+    double emf = problem->near[conductor].emf;
     double near = problem->near[conductor].resistance, far = problem->far[conductor].resistance;
     if (isinf(near) && isinf(far))
         return NAN;
-    if (conductor != driven || isinf(near))
+    if (emf == 0)
         return 0;
-    return isinf(far) ? 1 : near + far > 0 ? far / (near + far) : NAN;
+    return isinf(far) ? emf : near + far > 0 ? emf * far / (near + far) : NAN;
+}
+
+static double largest_emf(const struct line_problem *problem) {
+    double largest = 0;
+    for (size_t i = 0; i < problem->count; i++)
+        largest = fmax(largest, fabs(problem->near[i].emf));
+    return largest;
 }
 
 static bool grid_at(const struct line_setup *setup, const struct fronts *fronts, size_t passage,
@@ -73,7 +80,7 @@ static bool grid_at(const struct line_setup *setup, const struct fronts *fronts,
                                       .exact_steps = exact_steps};
     for (size_t end = 0; end < 2; end++)
         for (size_t k = 0; k < modes->count; k++)
-            march_setup.final[end][k] = final_voltage(setup->problem, setup->driven, k);
+            march_setup.final[end][k] = final_voltage(setup->problem, k);
     return march_run(&march_setup, arena, march, error);
 }
 
@@ -90,7 +97,7 @@ static bool build_curves(const struct line_setup *setup, struct arena *arena,
     /* A front that is dropped is late or early by part of a step; one that is kept with a series
      * that does not converge is wrong by its last term: the lesser evil of the two. */
     double converged = fmin(fmax(scale / response->shortest_edge, 0.05), 0.2);
-    struct fronts_limit limit = {.smallest = GRID_FRONT,
+    struct fronts_limit limit = {.smallest = GRID_FRONT * largest_emf(problem),
                                  .most = MOST_GRID_FRONTS,
                                  .latest = INFINITY,
                                  .scale = scale,
@@ -122,11 +129,10 @@ static bool build_curves(const struct line_setup *setup, struct arena *arena,
     return true;
 }
 
-struct line_response *line_response_create(const struct line_problem *problem, size_t driven,
-                                           double shortest_edge, struct arena *arena,
-                                           struct error *error) {
-    struct line_setup setup = {.problem = problem, .driven = driven};
-    if (!problem_check(problem, driven, error) || !line_modes(problem, &setup.modes, error))
+struct line_response *line_response_create(const struct line_problem *problem, double shortest_edge,
+                                           struct arena *arena, struct error *error) {
+    struct line_setup setup = {.problem = problem};
+    if (!problem_check(problem, error) || !line_modes(problem, &setup.modes, error))
         return NULL;
     if (!(shortest_edge > 0 && shortest_edge <= 1e6)) {
         error_set(error, ERROR_INPUT, "shortest edge is %g s, must be above 0, at most 1e6",
@@ -139,14 +145,14 @@ struct line_response *line_response_create(const struct line_problem *problem, s
     response->count = problem->count;
     response->shortest_edge = shortest_edge;
     double negligible = NEGLIGIBLE * shortest_edge;
-    if (!end_system_build(problem, &setup.modes, problem->near, driven, negligible, &setup.near,
-                          error) ||
-        !end_system_build(problem, &setup.modes, problem->far, SIZE_MAX, negligible, &setup.far,
-                          error))
+    if (!end_system_build(problem, &setup.modes, problem->near, negligible, &setup.near, error) ||
+        !end_system_build(problem, &setup.modes, problem->far, negligible, &setup.far, error))
         return NULL;
     if (setup.near.states + setup.far.states == 0) {
-        struct fronts_limit limit = {
-            .smallest = EXACT_FRONT, .most = MOST_EXACT_FRONTS, .latest = INFINITY, .scale = 0};
+        struct fronts_limit limit = {.smallest = EXACT_FRONT * largest_emf(problem),
+                                     .most = MOST_EXACT_FRONTS,
+                                     .latest = INFINITY,
+                                     .scale = 0};
         struct fronts fronts;
         if (!fronts_follow(&setup.modes, problem->length, &setup.near, &setup.far, &limit, arena,
                            &fronts, error))

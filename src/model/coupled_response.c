@@ -118,10 +118,10 @@ static struct line_problem line_of(const struct coupled_pair *pair,
     problem.capacitance[0] = pair->capacitance;
     problem.capacitance[1] = problem.capacitance[2] = -pair->mutual_capacitance;
     problem.capacitance[3] = pair->victim_capacitance;
-    struct line_end driver = {drive->victim_source, 0.0};
-    struct line_end receiver = {drive->victim_load, drive->victim_load_capacitance};
-    problem.near[0] = (struct line_end){drive->source, 0.0};
-    problem.far[0] = (struct line_end){drive->load, drive->load_capacitance};
+    struct line_end driver = {drive->victim_source, 0.0, 0.0};
+    struct line_end receiver = {drive->victim_load, drive->victim_load_capacitance, 0.0};
+    problem.near[0] = (struct line_end){drive->source, 0.0, 1.0};
+    problem.far[0] = (struct line_end){drive->load, drive->load_capacitance, 0.0};
     problem.near[1] = drive->receiver_near ? receiver : driver;
     problem.far[1] = drive->receiver_near ? driver : receiver;
     return problem;

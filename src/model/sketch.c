@@ -45,7 +45,7 @@ void sketch_section(const struct sketch *sketch, double dk, struct section_probl
         assert(problem->count < SECTION_MOST_CONDUCTORS);
         problem->height = solid->bottom;
         problem->conductors[problem->count] = (struct section_conductor){
-            solid->left, solid->right - solid->left, solid->top - solid->bottom};
+            solid->left, solid->right - solid->left, solid->top - solid->bottom, 0};
         ties[problem->count++] = tie_of(solid->role);
     }
 }

@@ -48,7 +48,7 @@ const struct line_response *worker_response(struct model_worker *worker,
         memcmp(&worker->problem, problem, sizeof *problem) == 0)
         return worker->response;
     arena_rewind(worker->arena, (struct arena_mark){0, 0});
-    worker->response = line_response_create(problem, 0, shortest, worker->arena, error);
+    worker->response = line_response_create(problem, shortest, worker->arena, error);
     worker->problem = *problem;
     worker->shortest_edge = shortest;
     return worker->response;

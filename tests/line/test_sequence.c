@@ -68,13 +68,12 @@ static void sequences_of(const struct line_problem *problem, double edge, double
     struct error error = {0};
     struct arena *arena = arena_create(&error);
     assert_ok(arena != NULL);
-    struct line_response *response = line_response_create(problem, 0, edge, arena, &error);
+    struct line_response *response = line_response_create(problem, edge, arena, &error);
     assert_ok(response != NULL);
     struct line_peak near, far;
     struct line_sequence at_near, at_far;
     assert_ok(line_response_peaks(response, 1, edge, &near, &far, &error));
-    assert_ok(
-        line_response_sequences(response, 1, edge, bit_time, &at_near, &at_far, &error));
+    assert_ok(line_response_sequences(response, 1, edge, bit_time, &at_near, &at_far, &error));
     *peak = far;
     *sequence = at_far;
     assert_true(at_near.free >= near.highest * (1 - 1e-3));
@@ -97,8 +96,8 @@ static void test_a_single_edge_understates_what_rings(void **state) {
                                    .inductance = {l[0], l[1], l[1], l[0]},
                                    .capacitance = {c[0], c[1], c[1], c[0]}};
     for (size_t i = 0; i < 2; i++) {
-        problem.near[i] = (struct line_end){30, 0};
-        problem.far[i] = (struct line_end){INFINITY, 5e-12};
+        problem.near[i] = (struct line_end){30, 0, i == 0};
+        problem.far[i] = (struct line_end){INFINITY, 5e-12, 0};
     }
     struct line_peak single;
     struct line_sequence at[3];
@@ -121,8 +120,8 @@ static void test_rare_edges_are_single_edges(void **state) {
                                    .length = 0.05,
                                    .inductance = {3e-7, 5e-8, 5e-8, 3e-7},
                                    .capacitance = {1e-10, -1e-11, -1e-11, 1e-10},
-                                   .near = {{50, 0}, {50, 0}},
-                                   .far = {{50, 0}, {50, 0}}};
+                                   .near = {{50, 0, 1}, {50, 0, 0}},
+                                   .far = {{50, 0, 0}, {50, 0, 0}}};
     struct line_peak single;
     struct line_sequence sequence;
     sequences_of(&problem, 1e-9, 1e-3, &single, &sequence);
