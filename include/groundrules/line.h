@@ -62,6 +62,13 @@ struct line_response;
 struct line_response *line_response_create(const struct line_problem *problem, double shortest_edge,
                                            struct arena *arena, struct error *error);
 
+/* The same, followed until the integral swings by a thousandth of its range instead of a fiftieth:
+ * for sequences of edges, where ringing adds up, and for victims that are sampled late.  Up to
+ * twice the time where little damps. */
+struct line_response *line_response_create_long(const struct line_problem *problem,
+                                                double shortest_edge, struct arena *arena,
+                                                struct error *error);
+
 struct line_peak {
     double highest; /* V per volt of swing, largest |v(t)| */
     double time;    /* s after the start of the ramp */
@@ -76,9 +83,10 @@ bool line_response_peaks(const struct line_response *response, size_t victim, do
  *   free     edges of alternating sign, any two at least `bit_time` apart
  *   clocked  edges on whole multiples of `bit_time`, worst over the phase of the observation
  * `free` never grows with bit_time; `clocked` may.  Exact for the sampled response (32 samples an
- * edge); `error` is the relative change on twice the sample step, of the larger.  Fails:
- * ERROR_INPUT when bit_time is not above 0 or so short against the ringing that more than a million
- * samples would be needed; ERROR_MEMORY. */
+ * edge, more where it rings faster), and no less than a single edge; `error` is the relative change
+ * on twice the sample step, of the larger, and what the response may still hold after its end.
+ * Fails: ERROR_INPUT when bit_time is not above 0 or so short against the ringing that more than a
+ * million samples would be needed; ERROR_MEMORY. */
 struct line_sequence {
     double free, clocked;
     double error;
@@ -86,6 +94,22 @@ struct line_sequence {
 bool line_response_sequences(const struct line_response *response, size_t victim, double edge,
                              double bit_time, struct line_sequence *near, struct line_sequence *far,
                              struct error *error);
+
+/* What a victim sees that is sampled `settling` seconds or more after the start of the ramp of the
+ * latest edge, at both its ends.  settling = 0: every instant counts. */
+struct line_settled {
+    double single; /* V per volt of swing: largest |v(t)|, t >= settling, of one edge */
+    double time;   /* s, where that is */
+    double free;  /* V per volt of swing: the worst sequence as above, its latest edge `settling` or
+                     more before the instant; `single` without a bit time */
+    double error; /* V per volt of swing, of the larger: of what was found, and of what the response
+                     may still hold after its end */
+};
+/* bit_time >= 0, 0 = a single edge.  `single` is found between samples too (exact with resistive
+ * ends), `free` from samples that begin at `settling`.  Errors as line_response_sequences. */
+bool line_response_settled(const struct line_response *response, size_t victim, double edge,
+                           double bit_time, double settling, struct line_settled *near,
+                           struct line_settled *far, struct error *error);
 
 /* Samples v(t) at t = 0, step, 2 step ... for plots and sequences of edges; near[samples],
  * far[samples]. */

@@ -17,6 +17,9 @@ enum { STEPS_PER_PASSAGE = 12, STEPS_PER_SHORT_PASSAGE = 6 };
 static const double SHORT_PASSAGE = 30;
 /* Steps per shortest edge where fronts that no longer are followed blur over a step. */
 static const double STEPS_PER_EDGE = 16;
+/* Share of its range by which the integral may still swing when the march ends: where one edge is
+ * asked for, and where late ringing counts by itself or adds up. */
+static const double SETTLED_FOR_PEAKS = 0.02, SETTLED_FOR_SEQUENCES = 0.001;
 /* A capacitance this much faster than the shortest edge is left out. */
 static const double NEGLIGIBLE = 1e-4;
 
@@ -24,6 +27,7 @@ struct line_setup {
     const struct line_problem *problem;
     struct line_modes modes;
     struct end_system near, far;
+    double settled;
 };
 
 /* The slowest way the whole structure can settle once waves have died: capacitances through both
@@ -77,6 +81,7 @@ static bool grid_at(const struct line_setup *setup, const struct fronts *fronts,
                                       .window = (size_t)steps,
                                       .edge = edge,
                                       .most_steps = MOST_STEPS,
+                                      .settled = setup->settled,
                                       .exact_steps = exact_steps};
     for (size_t end = 0; end < 2; end++)
         for (size_t k = 0; k < modes->count; k++)
@@ -123,15 +128,18 @@ static bool build_curves(const struct line_setup *setup, struct arena *arena,
             !curves_build(&coarse, fine.rest[end], &fronts, end == 0, arena, response->coarse[end],
                           error))
             return false;
-        for (size_t k = 0; k < problem->count; k++)
+        for (size_t k = 0; k < problem->count; k++) {
             response->rest_error[end][k] = fine.rest[end][k].error;
+            response->range[end][k] = fine.rest[end][k].range * fine.step;
+            response->late[end][k] = fine.rest[end][k].late * fine.step;
+        }
     }
     return true;
 }
 
-struct line_response *line_response_create(const struct line_problem *problem, double shortest_edge,
-                                           struct arena *arena, struct error *error) {
-    struct line_setup setup = {.problem = problem};
+static struct line_response *create(const struct line_problem *problem, double shortest_edge,
+                                    double settled, struct arena *arena, struct error *error) {
+    struct line_setup setup = {.problem = problem, .settled = settled};
     if (!problem_check(problem, error) || !line_modes(problem, &setup.modes, error))
         return NULL;
     if (!(shortest_edge > 0 && shortest_edge <= 1e6)) {
@@ -172,6 +180,17 @@ struct line_response *line_response_create(const struct line_problem *problem, d
     return build_curves(&setup, arena, response, error) ? response : NULL;
 }
 
+struct line_response *line_response_create(const struct line_problem *problem, double shortest_edge,
+                                           struct arena *arena, struct error *error) {
+    return create(problem, shortest_edge, SETTLED_FOR_PEAKS, arena, error);
+}
+
+struct line_response *line_response_create_long(const struct line_problem *problem,
+                                                double shortest_edge, struct arena *arena,
+                                                struct error *error) {
+    return create(problem, shortest_edge, SETTLED_FOR_SEQUENCES, arena, error);
+}
+
 bool response_check(const struct line_response *response, size_t victim, double edge,
                     struct error *error) {
     if (victim >= response->count)
@@ -190,19 +209,29 @@ double response_at(const struct line_response *response, size_t end, size_t vict
                            : curve_response(&response->curve[end][victim], edge, time);
 }
 
+struct line_peak response_peak(const struct line_response *response, size_t end, size_t victim,
+                               double edge, double from) {
+    return response->exact ? staircase_peak(&response->staircase[end], victim, edge, from)
+                           : curve_peak(&response->curve[end][victim], edge, from);
+}
+
+/* Fourth order would leave a fifteenth of the difference, fronts that blur all of it. */
+double response_peak_error(const struct line_response *response, size_t end, size_t victim,
+                           double edge, double from) {
+    if (response->exact)
+        return 0;
+    return fabs(curve_peak(&response->curve[end][victim], edge, from).highest -
+                curve_peak(&response->coarse[end][victim], edge, from).highest);
+}
+
 static struct line_peak peak_at(const struct line_response *response, size_t end, size_t victim,
                                 double edge) {
-    if (response->exact) {
-        struct line_peak peak = staircase_peak(&response->staircase[end], victim, edge);
-        peak.error = response->rest_error[end][victim];
-        return peak;
-    }
-    struct line_peak peak = curve_peak(&response->curve[end][victim], edge);
-    struct line_peak coarse = curve_peak(&response->coarse[end][victim], edge);
-    /* Fourth order would leave a fifteenth of the difference, fronts that blur all of it. */
+    struct line_peak peak = response_peak(response, end, victim, edge, 0);
     peak.error = response->rest_error[end][victim];
-    if (peak.highest > 0)
-        peak.error += fabs(peak.highest - coarse.highest) / peak.highest;
+    if (peak.highest > 0 && !response->exact)
+        peak.error +=
+            fabs(peak.highest - curve_peak(&response->coarse[end][victim], edge, 0).highest) /
+            peak.highest;
     return peak;
 }
 
