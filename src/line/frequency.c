@@ -104,7 +104,7 @@ static void scale_columns(struct line_modes *modes) {
 }
 
 bool problem_solve_at(const struct line_problem *problem, const struct line_modes *modes,
-                      size_t driven, double complex s, double complex *near, double complex *far,
+                      double complex s, double complex *near, double complex *far,
                       struct error *error) {
     size_t count = problem->count;
     struct line_modes scaled = *modes;
@@ -112,7 +112,8 @@ bool problem_solve_at(const struct line_problem *problem, const struct line_mode
     struct equations equations;
     fill_equations(problem, &scaled, problem->near, problem->far, s, &equations);
     memset(equations.right, 0, equations.size * sizeof *equations.right);
-    equations.right[driven] = equations.drive[driven];
+    for (size_t i = 0; i < count; i++)
+        equations.right[i] = equations.drive[i] * problem->near[i].emf;
     if (!solve(&equations, 1, error))
         return false;
     double complex delay[LINE_MOST_CONDUCTORS];
@@ -132,14 +133,14 @@ static bool check_frequency(double frequency, struct error *error) {
     return true;
 }
 
-bool line_frequency_response(const struct line_problem *problem, size_t driven, double frequency,
+bool line_frequency_response(const struct line_problem *problem, double frequency,
                              double complex *near, double complex *far, struct error *error) {
     struct line_modes modes;
-    if (!problem_check(problem, driven, error) || !check_frequency(frequency, error) ||
+    if (!problem_check(problem, error) || !check_frequency(frequency, error) ||
         !line_modes(problem, &modes, error))
         return false;
     const double pi = 3.14159265358979323846;
-    return problem_solve_at(problem, &modes, driven, I * 2 * pi * frequency, near, far, error);
+    return problem_solve_at(problem, &modes, I * 2 * pi * frequency, near, far, error);
 }
 
 bool line_scattering(const struct line_problem *problem, double reference, double frequency,
@@ -152,7 +153,8 @@ bool line_scattering(const struct line_problem *problem, double reference, doubl
     struct line_problem matched = *problem;
     for (size_t i = 0; i < LINE_MOST_CONDUCTORS; i++)
         ports[i] = matched.near[i] = matched.far[i] = (struct line_end){.resistance = reference};
-    if (!problem_check(&matched, 0, error) || !check_frequency(frequency, error) ||
+    matched.near[0].emf = 1; /* a port is driven */
+    if (!problem_check(&matched, error) || !check_frequency(frequency, error) ||
         !line_modes(problem, &modes, error))
         return false;
     scale_columns(&modes);

@@ -39,7 +39,7 @@ static bool sketch_of(const struct study_chapter *chapter, size_t v, struct sket
 }
 
 static bool same_picture(const struct sketch *a, const struct sketch *b) {
-    if (a->solid_count != b->solid_count)
+    if (a->solid_count != b->solid_count || a->etch != b->etch)
         return false;
     for (size_t i = 0; i < a->solid_count; i++) {
         const struct sketch_solid *p = &a->solids[i], *q = &b->solids[i];
