@@ -109,7 +109,6 @@ void pages_signals(struct flow *flow) {
     const struct study *study = flow->guideline->study;
     if (study->signal_count == 0)
         return;
-    flow_heading(flow, 1, "Signal classes", "part.signals", 120.0);
     struct table_row *rows =
         arena_new(flow->arena, study->signal_count, struct table_row, flow->error);
     for (size_t i = 0; rows != NULL && i < study->signal_count; i++) {
@@ -120,7 +119,7 @@ void pages_signals(struct flow *flow) {
         rows[i] = (struct table_row){.cells = cells};
     }
     const struct table_column columns[SIGNAL_COLUMNS] = {
-        [0] = {.most = 80.0}, [7] = {.least = 38.0}, [8] = {.least = 40.0}};
+        [0] = {.most = 120.0}, [7] = {.least = 38.0}, [8] = {.least = 40.0}};
     const struct table_head heads[SIGNAL_COLUMNS] = {
         {"Class", 1},         {"Swing", 1},  {"Edge, as stated", 1},
         {"Edge, 0–100 %", 1}, {"Driver", 1}, {"Receiver load", 1},
@@ -131,6 +130,7 @@ void pages_signals(struct flow *flow) {
         "give up to 28 % more at a matched far end. Budget: the share of the noise margin that "
         "crosstalk may take. Ends are counted from the aggressor’s driver."};
     struct table table = {.name = "signals",
+                          .leading = 1,
                           .columns = columns,
                           .column_count = SIGNAL_COLUMNS,
                           .heads = &head,
@@ -140,5 +140,6 @@ void pages_signals(struct flow *flow) {
                           .notes = notes,
                           .note_count = 1,
                           .stretch = true};
+    flow_heading(flow, 1, "Signal classes", "part.signals", flow_table_start(flow, &table));
     flow_table(flow, &table);
 }

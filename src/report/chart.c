@@ -6,7 +6,8 @@
 
 static const double LEAST_WIDTH = 120, LEAST_HEIGHT = 90;
 static const double TICK = 3.2, MINOR_TICK = 1.8;
-static const double TITLE_HEIGHT = 15, AXIS_TITLE_HEIGHT = 12;
+static const double TITLE_LEADING = 12, TITLE_GAP = 3, AXIS_TITLE_HEIGHT = 12;
+enum { TITLE_LINES = 3 };
 static const double BELOW = 27; /* tick numbers and the title of the x axis */
 
 double chart_x(const struct chart_frame *frame, double value) {
@@ -139,6 +140,35 @@ static double widest_tick(struct chart_frame *frame, const struct axis *axis) {
     return widest;
 }
 
+static struct scene_text title_text(const struct chart_frame *frame, double width) {
+    return (struct scene_text){.markup = frame->title,
+                               .style = theme_style(THEME_FIGURE),
+                               .y = 9,
+                               .width = width,
+                               .leading = TITLE_LEADING};
+}
+
+static void plan_title(struct chart_frame *frame, double width) {
+    struct text_size size = {0};
+    if (frame->chart->title == NULL)
+        return;
+    frame->title = frame->chart->title;
+    struct scene_text text = title_text(frame, width);
+    frame->title = text_shorten(frame->setter, &text, TITLE_LINES, frame->arena, frame->error);
+    text = title_text(frame, width);
+    if (text_measure(frame->setter, &text, &size, frame->error))
+        frame->title_height = (double)size.lines * TITLE_LEADING + TITLE_GAP;
+}
+
+/* What stands above the plot does not take more than half of the height from it. */
+static void grow(struct chart_frame *frame, double height) {
+    double missing = 0.5 * height - (frame->bottom - frame->top);
+    if (missing <= 0 || height < 2 * LEAST_HEIGHT)
+        return;
+    frame->bottom += missing;
+    frame->scene->height += missing;
+}
+
 /* The plot's edges depend on the tick numbers and these on the edges: two rounds settle it. */
 static bool layout(struct chart_frame *frame, double width, double height) {
     const struct chart *chart = frame->chart;
@@ -148,7 +178,8 @@ static bool layout(struct chart_frame *frame, double width, double height) {
     struct range y = range_of_y(chart, x);
     if (!(y.low <= y.high))
         return error_set(frame->error, ERROR_INPUT, "nothing in the chart is finite");
-    double head = (chart->title == NULL ? 0 : TITLE_HEIGHT) + AXIS_TITLE_HEIGHT + 2;
+    plan_title(frame, width);
+    double head = frame->title_height + AXIS_TITLE_HEIGHT + 2;
     frame->bottom = height - BELOW;
     frame->top = head;
     frame->left = 30;
@@ -161,6 +192,7 @@ static bool layout(struct chart_frame *frame, double width, double height) {
         frame->left = TICK + 3 + widest_tick(frame, &frame->y);
         frame->top = head + CHART_MARK_ROW * (double)chart_mark_rows(frame, width);
     }
+    grow(frame, height);
     if (frame->right - frame->left < 40 || frame->bottom - frame->top < 30)
         return error_set(frame->error, ERROR_INPUT, "a chart of %g x %g pt is too small", width,
                          height);
@@ -234,11 +266,10 @@ static const char *axis_title(struct chart_frame *frame, const char *label, cons
 static void draw_titles(struct chart_frame *frame, double width) {
     const struct chart *chart = frame->chart;
     double y = 0;
-    if (chart->title != NULL) {
-        scene_text(frame->scene, &(struct scene_text){.markup = chart->title,
-                                                      .style = theme_style(THEME_FIGURE),
-                                                      .y = 9});
-        y = TITLE_HEIGHT;
+    if (frame->title != NULL) {
+        struct scene_text title = title_text(frame, width);
+        scene_text(frame->scene, &title);
+        y = frame->title_height;
     }
     if (frame->report.legend) {
         chart_draw_legend(frame, width, y);

@@ -29,7 +29,9 @@ struct chart_frame {
     struct axis x, y;
     struct chart_end ends[CHART_MOST_SERIES];
     size_t end_count;
-    double end_width; /* the labels are wrapped to it */
+    double end_width;    /* the labels are wrapped to it */
+    const char *title;   /* cut to what the chart has room for */
+    double title_height; /* 0 without a title */
     struct chart_report report;
 };
 

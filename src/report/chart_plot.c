@@ -310,12 +310,21 @@ static bool overlap(struct chart_box a, struct chart_box b) {
            b.y < a.y + a.height;
 }
 
+/* One line, not wider than the plot. */
+static const char *limit_label(struct chart_frame *frame, const char *label,
+                               struct scene_style style) {
+    struct scene_text text = {
+        .markup = label, .style = style, .width = frame->right - frame->left - 10};
+    return text_shorten(frame->setter, &text, 1, frame->arena, frame->error);
+}
+
 /* Of a few places along the line, on its allowed or forbidden side, the first that no curve and no
  * earlier label touches; else the first of all, on a white ground. */
 static void draw_limit_label(struct chart_frame *frame, const char *label, double y, bool below,
                              struct chart_box *taken, size_t *taken_count) {
     struct scene_style style = theme_style(THEME_LABEL);
     style.colour = theme_colour(THEME_ALARM);
+    label = limit_label(frame, label, style);
     double width = text_width(frame->setter, label, style, frame->error);
     double height = style.size;
     double allowed = below ? y - 2.5 - height : y + 2.5;
@@ -354,7 +363,7 @@ static void draw_limit_beyond(struct chart_frame *frame, const char *label, bool
         return;
     struct scene_style style = theme_style(THEME_LABEL);
     style.colour = theme_colour(THEME_ALARM);
-    scene_text(frame->scene, &(struct scene_text){.markup = markup,
+    scene_text(frame->scene, &(struct scene_text){.markup = limit_label(frame, markup, style),
                                                   .style = style,
                                                   .x = frame->left + 5,
                                                   .y = above ? frame->top + 9 : frame->bottom - 4});

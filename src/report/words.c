@@ -41,7 +41,8 @@ const char *words_quantity(struct flow *flow, const struct quantity *quantity) {
     if (quantity->minus == 0.0 && quantity->plus == 0.0)
         return value;
     if (quantity->dimension == DIMENSION_LENGTH && fabs(quantity->minus - quantity->plus) < 1e-12)
-        return flow_print(flow, "%s ±\u00a0%.3g\u2009%%", value, 100.0 * quantity->plus / quantity->value);
+        return flow_print(flow, "%s ±\u00a0%.3g\u2009%%", value,
+                          100.0 * quantity->plus / quantity->value);
     if (fabs(quantity->minus - quantity->plus) < 1e-12)
         return flow_print(flow, "%s ±\u00a0%s", value,
                           words_value(flow, quantity->plus, quantity->dimension));
@@ -62,6 +63,13 @@ const char *words_name(struct flow *flow, const char *name) {
         if (*at == '_' || *at == '-')
             *at = ' ';
     return text != NULL ? text : "";
+}
+
+const char *words_capital(struct flow *flow, const char *name) {
+    const char *text = words_name(flow, name);
+    if (*text < 'a' || *text > 'z')
+        return text;
+    return flow_print(flow, "%c%s", *text - 'a' + 'A', text + 1);
 }
 
 const char *words_strength(enum study_strength strength) {
@@ -105,7 +113,7 @@ const char *words_finding_short(struct flow *flow, const struct study_rule *rule
     const char *value = words_grid(flow, finding->value, rule->grid, dimension);
     switch (finding->status) {
     case GUIDELINE_FOUND:
-        return flow_print(flow, "%s %s", rule->find_smallest ? "≥" : "≤", value);
+        return flow_print(flow, "%s\u00a0%s", rule->find_smallest ? "≥" : "≤", value);
     case GUIDELINE_MET_EVERYWHERE:
         return flow_print(flow, "any %s %s", rule->find_smallest ? "from" : "to", value);
     case GUIDELINE_CANNOT_BE_MET:
