@@ -5,6 +5,7 @@
 #include <string.h>
 
 static const double LEAST_WIDTH = 120, LEAST_HEIGHT = 90;
+static const double TICK_ROW = 8.5; /* least distance of the y axis's numbers */
 static const double TICK = 3.2, MINOR_TICK = 1.8;
 static const double TITLE_LEADING = 12, TITLE_GAP = 3, AXIS_TITLE_HEIGHT = 12;
 enum { TITLE_LINES = 3 };
@@ -220,6 +221,35 @@ static void draw_grid(struct chart_frame *frame) {
         }
 }
 
+static bool is_decade(const struct axis *axis, double value) {
+    double exponent = log10(fabs(value * axis->scale));
+    return fabs(exponent - round(exponent)) < 1e-9;
+}
+
+/* Numbers beside the y axis that keep clear of each other: on a logarithmic axis powers of ten come
+ * first, then the others from the bottom up. */
+static void label_y(struct chart_frame *frame) {
+    double taken[AXIS_MOST_TICKS];
+    size_t count = 0;
+    for (int round = 0; round < 2; round++)
+        for (size_t i = 0; i < frame->y.count; i++) {
+            const struct axis_tick *tick = &frame->y.ticks[i];
+            double y = chart_y(frame, tick->value);
+            bool first = !frame->y.logarithmic || is_decade(&frame->y, tick->value);
+            bool free = tick->major && first == (round == 0);
+            for (size_t t = 0; t < count; t++)
+                free = free && fabs(taken[t] - y) >= TICK_ROW;
+            if (!free)
+                continue;
+            taken[count++] = y;
+            scene_text(frame->scene, &(struct scene_text){.markup = tick->label,
+                                                          .style = theme_style(THEME_TICK),
+                                                          .x = frame->left - TICK - 2.5,
+                                                          .y = y + 2.7,
+                                                          .align = SCENE_RIGHT});
+        }
+}
+
 static void draw_axes(struct chart_frame *frame) {
     struct scene_colour ink = theme_colour(THEME_QUIET);
     double left = frame->left, bottom = frame->bottom, free_from = -INFINITY;
@@ -229,13 +259,8 @@ static void draw_axes(struct chart_frame *frame) {
         const struct axis_tick *tick = &frame->y.ticks[i];
         double y = chart_y(frame, tick->value);
         scene_line(frame->scene, left - (tick->major ? TICK : MINOR_TICK), y, left, y, 0.5, ink);
-        if (tick->major)
-            scene_text(frame->scene, &(struct scene_text){.markup = tick->label,
-                                                          .style = theme_style(THEME_TICK),
-                                                          .x = left - TICK - 2.5,
-                                                          .y = y + 2.7,
-                                                          .align = SCENE_RIGHT});
     }
+    label_y(frame);
     for (size_t i = 0; i < frame->x.count; i++) {
         const struct axis_tick *tick = &frame->x.ticks[i];
         double x = chart_x(frame, tick->value);
@@ -301,6 +326,7 @@ static void draw(struct chart_frame *frame, double width) {
     chart_draw_limits(frame);
     chart_draw_curves(frame);
     chart_draw_marks(frame, width);
+    chart_name_limits(frame);
     if (!frame->report.legend)
         chart_draw_ends(frame);
     draw_titles(frame, width);
