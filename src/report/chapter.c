@@ -174,6 +174,9 @@ static bool judges_the_curves(const struct guideline_chapter *chapter,
     return true;
 }
 
+/* A rule whose marks would crowd the plot has none: its card and the table say it better. */
+enum { MOST_FLAGS = 6 };
+
 struct plot {
     struct chart_series series[CHART_MOST_SERIES];
     struct chart_limit limits[16];
@@ -271,6 +274,8 @@ static void add_rule(struct flow *flow, const struct guideline_chapter *chapter,
     if (!draws(asked, rule->condition.output) || !judges_the_curves(chapter, rule))
         return;
     const struct model_output *output = &chapter->chapter->model->outputs[rule->condition.output];
+    bool marked = rule->find == chapter->chapter->vary.input &&
+                  plot->chart.mark_count + rule->variant_count <= MOST_FLAGS;
     for (size_t v = 0; v < rule->variant_count; v++) {
         const struct guideline_finding *finding = &result->findings[v];
         if (rule->condition.against != STUDY_REFERENCE) {
@@ -280,8 +285,7 @@ static void add_rule(struct flow *flow, const struct guideline_chapter *chapter,
                                  words_value(flow, limit, output->dimension)),
                       !rule->condition.at_most);
         }
-        if (rule->find != chapter->chapter->vary.input || finding->status != GUIDELINE_FOUND ||
-            plot->chart.mark_count == CHART_MOST_MARKS)
+        if (!marked || finding->status != GUIDELINE_FOUND)
             continue;
         if (is_marked(plot, finding->value))
             continue;

@@ -5,7 +5,11 @@
 #include "words.h"
 
 #include <ctype.h>
+#include <stdbool.h>
 #include <string.h>
+
+/* What the cover has room for; a title of more is cut with an ellipsis. */
+enum { TITLE_LINES = 5, SUBTITLE_LINES = 4, FACT_LINES = 3, BOARD_LINES = 3, MOST_NAMED = 6 };
 
 const char *pages_destination(struct flow *flow, const char *kind, const char *id) {
     char *name = arena_print(flow->arena, flow->error, "%s.%s", kind, id);
@@ -22,8 +26,8 @@ static void fact(struct flow *flow, const char *name, const char *value) {
     double left = theme_column(&flow->page, 0, 1, &label);
     double right = theme_column(&flow->page, 1, 4, &width);
     flow_text_box(flow, THEME_NOTE, name, left, flow->y + 1.0, label + flow->page.gutter);
-    flow->y +=
-        flow_text_box(flow, THEME_BODY, flow_escape(flow, value), right, flow->y, width) + 3.0;
+    const char *text = flow_shorten(flow, THEME_BODY, flow_escape(flow, value), width, FACT_LINES);
+    flow->y += flow_text_box(flow, THEME_BODY, text, right, flow->y, width) + 3.0;
 }
 
 static const char *reviewers(struct flow *flow) {
@@ -76,23 +80,72 @@ static void motif(struct flow *flow, double top, double height) {
                         theme_solid(SKETCH_AGGRESSOR).fill);
         scene_rectangle(flow->scene, x + each * 0.62, foot - depth - copper, trace, copper,
                         theme_solid(SKETCH_VICTIM).fill);
-        flow_text_box(flow, THEME_NOTE, flow_escape(flow, stackup->name), x, foot + copper + 6.0,
-                      each);
+        if (study->stackup_count > MOST_NAMED)
+            continue;
+        const char *name =
+            flow_shorten(flow, THEME_NOTE, flow_escape(flow, stackup->name), each, BOARD_LINES);
+        flow_text_box(flow, THEME_NOTE, name, x, foot + copper + 6.0, each);
     }
+}
+
+static const char *product_board(const struct study *study, const struct study_product *product) {
+    const struct study_stackup *stackup = study_find_stackup(study, product->stackup);
+    return stackup != NULL ? stackup->name : product->stackup;
+}
+
+static const char *product_text(struct flow *flow, size_t i) {
+    const struct study *study = flow->guideline->study;
+    return flow_print(flow, "%s, on %s", study->products[i].name,
+                      product_board(study, &study->products[i]));
+}
+
+static bool products_fit(struct flow *flow, double room) {
+    const struct study *study = flow->guideline->study;
+    double width, height = 10.0 + theme_leading(THEME_STRONG);
+    theme_column(&flow->page, 1, 4, &width);
+    for (size_t i = 0; i < study->product_count; i++)
+        height +=
+            flow_text_height(flow, THEME_BODY, flow_escape(flow, product_text(flow, i)), width) +
+            3.0;
+    return height <= room;
 }
 
 static void products(struct flow *flow) {
     const struct study *study = flow->guideline->study;
-    if (study->product_count == 0)
-        return;
     flow->y += 10.0;
     flow_text(flow, THEME_STRONG, "Products");
-    for (size_t i = 0; i < study->product_count; i++) {
-        const struct study_stackup *stackup = study_find_stackup(study, study->products[i].stackup);
-        fact(flow, flow_escape(flow, study->products[i].id),
-             flow_print(flow, "%s, on %s", study->products[i].name,
-                        stackup != NULL ? stackup->name : study->products[i].stackup));
+    for (size_t i = 0; i < study->product_count; i++)
+        fact(flow, flow_escape(flow, study->products[i].id), product_text(flow, i));
+}
+
+void pages_products(struct flow *flow) {
+    const struct study *study = flow->guideline->study;
+    if (study->product_count == 0 || flow->products_set)
+        return;
+    struct table_row *rows =
+        arena_new(flow->arena, study->product_count, struct table_row, flow->error);
+    for (size_t i = 0; rows != NULL && i < study->product_count; i++) {
+        const char **cells = arena_new(flow->arena, 3, const char *, flow->error);
+        if (cells == NULL)
+            return;
+        cells[0] = flow_print(flow, "<b>%s</b>", flow_escape(flow, study->products[i].id));
+        cells[1] = flow_escape(flow, study->products[i].name);
+        cells[2] = flow_escape(flow, product_board(study, &study->products[i]));
+        rows[i].cells = cells;
     }
+    const struct table_column columns[3] = {{0}};
+    const struct table_head heads[3] = {{"Product", 1}, {"Name", 1}, {"Board", 1}};
+    const struct table_head_row head = {heads, 3};
+    struct table table = {.name = "products",
+                          .columns = columns,
+                          .column_count = 3,
+                          .heads = &head,
+                          .head_count = 1,
+                          .rows = rows,
+                          .row_count = study->product_count,
+                          .stretch = true};
+    flow_heading(flow, 1, "Products", "part.products", flow_table_start(flow, &table));
+    flow_table(flow, &table);
 }
 
 void pages_cover(struct flow *flow) {
@@ -102,25 +155,33 @@ void pages_cover(struct flow *flow) {
         return;
     double width = flow->page.right - flow->page.left;
     if (document->organisation != NULL)
-        flow_text_box(flow, THEME_STRONG, flow_escape(flow, document->organisation),
-                      flow->page.left, flow->page.top, width);
+        flow_text_box(
+            flow, THEME_STRONG,
+            flow_shorten(flow, THEME_STRONG, flow_escape(flow, document->organisation), width, 1),
+            flow->page.left, flow->page.top, width);
     scene_rectangle(flow->scene, flow->page.left, flow->page.top + 18.0, width, 0.6,
                     theme_colour(THEME_INK));
     motif(flow, flow->page.top + 60.0, 190.0);
     flow->y = flow->page.top + 280.0;
     scene_rectangle(flow->scene, flow->page.left, flow->y, 42.0, 3.0, theme_colour(THEME_ACCENT));
     flow->y += 14.0;
-    flow_text(flow, THEME_TITLE, flow_escape(flow, document->title));
+    flow_text(
+        flow, THEME_TITLE,
+        flow_shorten(flow, THEME_TITLE, flow_escape(flow, document->title), width, TITLE_LINES));
     if (document->subtitle != NULL) {
         flow->y += 4.0;
-        flow_text(flow, THEME_LEAD, flow_escape(flow, document->subtitle));
+        flow_text(flow, THEME_LEAD,
+                  flow_shorten(flow, THEME_LEAD, flow_escape(flow, document->subtitle), width,
+                               SUBTITLE_LINES));
     }
     flow->y += 24.0;
     facts(flow);
-    products(flow);
     const char *note =
         "Crosstalk and ground layout only. No promise on emission, immunity, electrostatic "
         "discharge or insulation; see Cautions.";
     double height = flow_text_height(flow, THEME_NOTE, note, width);
+    flow->products_set = products_fit(flow, flow_room(flow) - height - 12.0);
+    if (flow->products_set && flow->guideline->study->product_count > 0)
+        products(flow);
     flow_text_box(flow, THEME_NOTE, note, flow->page.left, flow->page.bottom - height, width);
 }
