@@ -160,7 +160,6 @@ void pages_signals(struct flow *flow) {
         "give up to 28 % more at a matched far end. Budget: the share of the noise margin that "
         "crosstalk may take. Ends are counted from the aggressor’s driver."};
     struct table table = {.name = "signals",
-                          .leading = 1,
                           .columns = columns,
                           .column_count = SIGNAL_COLUMNS,
                           .heads = &head,

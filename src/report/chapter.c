@@ -358,6 +358,8 @@ static bool anything_to_show(const struct guideline_chapter *chapter,
     return false;
 }
 
+enum { SENTENCE_LINES = 16 }; /* of names as long as a study may have them */
+
 static void charts(struct flow *flow, const struct guideline_chapter *chapter) {
     double width = flow->page.right - flow->page.left;
     for (size_t i = 0; i < chapter->chapter->chart_count && !flow_failed(flow); i++) {
@@ -373,7 +375,8 @@ static void charts(struct flow *flow, const struct guideline_chapter *chapter) {
         struct scene *scene = draw_chart(flow, chapter, asked, name, width);
         if (scene == NULL)
             return;
-        const char *sentence = sentence_of_chart(flow, chapter, asked);
+        const char *sentence = flow_shorten(
+            flow, THEME_BODY, sentence_of_chart(flow, chapter, asked), width, SENTENCE_LINES);
         flow_gap(flow, 10.0);
         flow_need(flow, scene->height + flow_text_height(flow, THEME_BODY, sentence, width) + 6.0);
         flow_place(flow, scene, flow->page.left);

@@ -141,6 +141,11 @@ void chapter_table(struct flow *flow, const struct guideline_chapter *chapter) {
 
 /* ---- a rule's table ---- */
 
+static const char *const row_note =
+    "Each cell is proven like a rule, over everything that its row permits.";
+static const char *const cells_note =
+    "Each cell is proven like a rule, over everything that its row and column permit.";
+
 static void board_table(struct flow *flow, const struct guideline_chapter *chapter,
                         const struct guideline_rule *rule, size_t v) {
     const struct study_rule *stated = rule->rule;
@@ -189,6 +194,8 @@ static void board_table(struct flow *flow, const struct guideline_chapter *chapt
                           .head_count = grouped ? 2 : 1,
                           .rows = rows,
                           .row_count = row_count,
+                          .notes = &cells_note,
+                          .note_count = v + 1 == stated->variant_count ? 1 : 0,
                           .stretch = column_count > 4};
     flow_gap(flow, 8.0);
     flow_table(flow, &table);
@@ -228,6 +235,9 @@ static void boards_table(struct flow *flow, const struct guideline_chapter *chap
                           .head_count = 1,
                           .rows = rows,
                           .row_count = row_count,
+                          .notes = &row_note,
+                          .note_count = 1,
+                          .leading = 1,
                           .stretch = variants > 3};
     flow_gap(flow, 8.0);
     flow_need(flow, 40.0 + 14.0 * (double)row_count);
@@ -248,10 +258,4 @@ void chapter_rule_table(struct flow *flow, const struct guideline_chapter *chapt
         boards_table(flow, chapter, rule);
     for (size_t v = 0; v < rule->rule->variant_count && !side_by_side && !flow_failed(flow); v++)
         board_table(flow, chapter, rule, v);
-    flow_gap(flow, 3.0);
-    flow_text(flow, THEME_NOTE,
-              side_by_side
-                  ? "Each cell is proven like a rule, over everything that its row permits."
-                  : "Each cell is proven like a rule, over everything that its row and column "
-                    "permit.");
 }

@@ -268,7 +268,7 @@ static struct legend plan_legend(struct chart_frame *frame, double width) {
         widest = fmax(widest,
                       text_width(frame->setter, frame->chart->series[frame->ends[i].series].label,
                                  theme_style(THEME_LABEL), frame->error));
-    struct legend legend = {.text = fmin(widest, most) + 0.05};
+    struct legend legend = {.text = fmin(widest + 0.05, most - 0.05)};
     legend.column = SAMPLE + SAMPLE_GAP + legend.text + ENTRY_GAP;
     legend.columns = (size_t)fmax(1, floor((width + ENTRY_GAP) / legend.column));
     return legend;

@@ -134,7 +134,7 @@ struct line {
     const char *name, *text;
 };
 
-enum { MOST_LINES = 7 };
+enum { MOST_LINES = 7, REMEDY_LINES = 40 };
 
 /* "gap at least 3.2 mm" */
 static const char *bound_words(struct flow *flow, const struct model_input *input, bool at_least,
@@ -209,14 +209,15 @@ static const char *would_do(struct flow *flow, const struct study_chapter *chapt
 }
 
 static size_t lines_of(struct flow *flow, const struct study_chapter *chapter,
-                       const struct guideline_rule *result, struct line *lines) {
+                       const struct guideline_rule *result, double width, struct line *lines) {
     const struct study_rule *rule = result->rule;
     const char *remedies = would_do(flow, chapter, result);
     size_t count = 0;
     lines[count++] =
         (struct line){"So that", words_condition(flow, rule, chapter, &rule->variants[0])};
     if (*remedies != '\0')
-        lines[count++] = (struct line){"Would do", remedies};
+        lines[count++] = (struct line){
+            "Would do", flow_shorten(flow, THEME_BODY, remedies, width, REMEDY_LINES)};
     if (rule->applies_to != NULL)
         lines[count++] = (struct line){"Applies to", flow_escape(flow, rule->applies_to)};
     lines[count++] = (struct line){"Proven over", proven_over(flow, chapter, rule)};
@@ -366,15 +367,15 @@ void pages_rule_card(struct flow *flow, const struct guideline_chapter *chapter,
                      const struct guideline_rule *rule) {
     double x = flow->page.left + INSET, width = flow->page.right - x;
     struct line lines[MOST_LINES];
-    struct card card = {.flow = flow,
-                        .rule = rule->rule,
-                        .title =
-                            card_title(flow, chapter->chapter, rule->rule, width - STRENGTH_ROOM),
-                        .table = findings(flow, chapter->chapter, rule, width),
-                        .lines = lines,
-                        .line_count = lines_of(flow, chapter->chapter, rule, lines),
-                        .x = x,
-                        .width = width};
+    struct card card = {
+        .flow = flow,
+        .rule = rule->rule,
+        .title = card_title(flow, chapter->chapter, rule->rule, width - STRENGTH_ROOM),
+        .table = findings(flow, chapter->chapter, rule, width),
+        .lines = lines,
+        .line_count = lines_of(flow, chapter->chapter, rule, width - NAME_WIDTH, lines),
+        .x = x,
+        .width = width};
     if (card.table != NULL && !flow_failed(flow))
         draw_card(&card);
 }

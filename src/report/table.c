@@ -8,9 +8,10 @@
 static const double NOTES_GAP = 4, CAPTION_GAP = 2;
 static const double PAD = 5, NARROW_PAD = 3; /* the second where many columns share the width */
 enum { MANY_COLUMNS = 8 };
-static const double LONGEST_WORD = 84; /* pt; what is longer may be parted anywhere */
-static const double MOST_HEAD = 90;    /* pt that a head asks for; it takes more lines then */
-static const double READABLE = 60;     /* pt that running text gets where the page has them */
+static const double LONGEST_WORD = 84;     /* pt; what is longer may be parted anywhere */
+enum { HEAD_LINES = 12, CELL_LINES = 32 }; /* more would not leave a page room for a row */
+static const double MOST_HEAD = 90;        /* pt that a head asks for; it takes more lines then */
+static const double READABLE = 60;         /* pt that running text gets where the page has them */
 
 /* ---- texts ---- */
 
@@ -283,10 +284,19 @@ static bool fit_columns(struct table_layout *layout, struct need *needs, double 
 
 /* ---- heights ---- */
 
-static double height_of(struct table_layout *layout, struct scene_text text, double width) {
-    struct text_size size = {0};
+struct scene_text table_wrapped(const struct table_layout *layout, struct scene_text text,
+                                double width) {
+    bool head = text.style.weight != SCENE_REGULAR;
     /* A hair of room keeps a text of exactly the column's width on its line. */
     text.width = width + 0.05;
+    text.markup = text_shorten(layout->setter, &text, head ? HEAD_LINES : CELL_LINES, layout->arena,
+                               layout->error);
+    return text;
+}
+
+static double height_of(struct table_layout *layout, struct scene_text text, double width) {
+    struct text_size size = {0};
+    text = table_wrapped(layout, text, width);
     if (!text_measure(layout->setter, &text, &size, layout->error))
         return 0;
     return (double)size.lines * text.leading;

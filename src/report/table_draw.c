@@ -11,14 +11,14 @@ static void draw_rule(struct scene *scene, double x, double y, double width, dou
     scene_line(scene, x, y, x + width, y, thickness, theme_colour(ink));
 }
 
-static void draw_at(struct scene *scene, struct scene_text text, double x, double width,
-                    enum scene_align align, double baseline) {
+static void draw_at(const struct table_layout *layout, struct scene *scene, struct scene_text text,
+                    double x, double width, enum scene_align align, double baseline) {
     if (*text.markup == '\0')
         return;
     text.align = align;
     text.x = align == SCENE_LEFT ? x : align == SCENE_RIGHT ? x + width : x + width / 2;
     text.y = baseline;
-    text.width = width + 0.05;
+    text = table_wrapped(layout, text, width);
     scene_text(scene, &text);
 }
 
@@ -37,15 +37,14 @@ static void draw_head_row(const struct table_layout *layout, size_t row, struct 
         double width = table_span(layout, column, span);
         double left = x + layout->left[column];
         struct text_size size = {0};
-        struct scene_text wrapped = text;
-        wrapped.width = width + 0.05;
+        struct scene_text wrapped = table_wrapped(layout, text, width);
         if (!text_measure(layout->setter, &wrapped, &size, scene->error))
             return;
         double lines = (double)size.lines;
         double baseline = bottom - TABLE_PAD_Y - (lines - 1) * text.leading - 2.4;
         enum scene_align align =
             span > 1 ? SCENE_CENTRE : align_of(layout->table->columns[column].align);
-        draw_at(scene, text, left, width, align, baseline);
+        draw_at(layout, scene, text, left, width, align, baseline);
         if (span > 1 && *text.markup != '\0')
             draw_rule(scene, left, bottom - 0.5, width, 0.4, THEME_QUIET);
         column += span;
@@ -64,12 +63,12 @@ static void draw_cell(const struct table_layout *layout, size_t row, size_t colu
         scene_text(scene, &text);
         return;
     }
-    draw_at(scene, text, left, width, align_of(align), baseline);
+    draw_at(layout, scene, text, left, width, align_of(align), baseline);
 }
 
 static void draw_heading(const struct table_layout *layout, size_t row, bool again,
                          struct scene *scene, double x, double y) {
-    draw_at(scene, table_heading_text(layout, row, again), x + layout->pad,
+    draw_at(layout, scene, table_heading_text(layout, row, again), x + layout->pad,
             layout->total - 2 * layout->pad, SCENE_LEFT, y + TABLE_PAD_Y + RISE);
 }
 
@@ -92,7 +91,7 @@ static void draw_notes(const struct table_layout *layout, struct scene *scene, d
     for (size_t n = 0; n < layout->table->note_count; n++)
         y -= layout->note_heights[n];
     for (size_t n = 0; n < layout->table->note_count; n++) {
-        draw_at(scene, table_note_text(layout->table->notes[n]), x + layout->pad,
+        draw_at(layout, scene, table_note_text(layout->table->notes[n]), x + layout->pad,
                 layout->total - 2 * layout->pad, SCENE_LEFT, y + RISE);
         y += layout->note_heights[n];
     }
@@ -103,7 +102,7 @@ static void draw_caption(const struct table_layout *layout, bool again, struct s
     const char *more =
         !again ? NULL
                : arena_print(layout->arena, layout->error, "%s, continued", layout->table->caption);
-    draw_at(scene, table_caption_text(layout->table, more), x, layout->room, SCENE_LEFT,
+    draw_at(layout, scene, table_caption_text(layout->table, more), x, layout->room, SCENE_LEFT,
             y + CAPTION_RISE);
 }
 

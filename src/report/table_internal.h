@@ -32,6 +32,10 @@ struct scene_text table_heading_text(const struct table_layout *layout, size_t r
 struct scene_text table_note_text(const char *markup);
 struct scene_text table_caption_text(const struct table *table, const char *more);
 
+/* The text set to the width; one that would fill a page is cut with an ellipsis. */
+struct scene_text table_wrapped(const struct table_layout *layout, struct scene_text text,
+                                double width);
+
 /* What each column needs at the least to be read, paddings and all, pt.  [column_count] */
 bool table_least(const struct table *table, struct text_setter *setter, struct arena *arena,
                  double *least, struct error *error);

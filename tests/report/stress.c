@@ -130,7 +130,7 @@ static void chapter(struct text *text, const struct stress *stress, size_t c) {
                    "\"victim\": \"s1\", \"width\": \"0.3 mm\", \"length\": \"up to 100 mm\"}, "
                    "\"vary\": {\"gap\": \"0.2 mm .. 12 mm in 20 points log\"}, \"compare\": "
                    "{\"stackup\": [");
-    for (size_t b = 0; b < stress->boards; b++)
+    for (size_t b = 0; b < stress->boards && b < STUDY_MOST_VARIANTS; b++)
         text_format(text, "%s\"b%zu\"", b > 0 ? ", " : "", b + 1);
     text_add(text, "]}, \"show\": [{\"outputs\": [\"worst_peak\"], \"y\": \"log\", ");
     named(text, "title", "Worst peak", c, stress->name);

@@ -10,7 +10,7 @@
 struct stress {
     size_t chapters;
     size_t rules;   /* of each chapter */
-    size_t boards;  /* in the study and compared in each chapter, at most STUDY_MOST_VARIANTS */
+    size_t boards;  /* in the study; each chapter compares the first STUDY_MOST_VARIANTS of them */
     size_t classes; /* signals; above 1 the first rule has a table of class against class */
     size_t name;    /* least length of titles and names, characters */
     size_t note;    /* of notes and reasons */

@@ -11,15 +11,18 @@
 #include <string.h>
 
 static const struct stress studies[] = {
-    {2, 2, 3, 2, 20, 60, false},    /* as studies are */
-    {30, 7, 3, 3, 20, 60, false},   /* very many chapters and rules */
-    {3, 3, 3, 4, 80, 200, false},   /* long names */
-    {2, 3, 3, 3, 120, 300, true},   /* very long ones */
-    {1, 1, 3, 8, 34, 80, false},    /* eight classes by eight on three boards */
-    {2, 3, 12, 2, 22, 80, false},   /* twelve boards side by side */
-    {2, 2, 12, 4, 100, 300, true},  /* the same with long names */
-    {1, 2, 3, 2, 120, 1900, false}, /* notes as long as a study may have them */
-    {1, 1, 1, 1, 8, 10, false},     /* hardly anything */
+    {2, 2, 3, 2, 20, 60, false},     /* as studies are */
+    {30, 7, 3, 3, 20, 60, false},    /* very many chapters and rules */
+    {3, 3, 3, 4, 80, 200, false},    /* long names */
+    {2, 3, 3, 3, 120, 300, true},    /* very long ones */
+    {1, 1, 3, 8, 34, 80, false},     /* eight classes by eight on three boards */
+    {2, 3, 12, 2, 22, 80, false},    /* twelve boards side by side */
+    {2, 2, 12, 4, 100, 300, true},   /* the same with long names */
+    {1, 2, 3, 2, 120, 1900, false},  /* notes as long as a study may have them */
+    {1, 1, 1, 1, 8, 10, false},      /* hardly anything */
+    {2, 2, 50, 3, 30, 80, false},    /* as many boards as a study may have */
+    {1, 2, 5, 4, 1900, 1900, false}, /* every text as long as it may be */
+    {2, 1, 3, 11, 120, 40, true},    /* eleven classes by eleven with long names */
 };
 enum { STUDIES = sizeof studies / sizeof *studies };
 
