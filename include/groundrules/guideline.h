@@ -29,13 +29,21 @@ enum guideline_status {
     GUIDELINE_BELOW_FAB,      /* only by what the fab cannot make */
 };
 
-/* What would meet a condition that cannot be met, the found input at its permitted end. */
+/* What would meet a condition that cannot be met. */
+enum guideline_remedy_kind {
+    GUIDELINE_OTHER_VALUE, /* of `input`, the found one at its permitted end */
+    GUIDELINE_TIED_COPPER, /* a strip of `strip_width` between, tied everywhere */
+    GUIDELINE_OTHER_BOARD,
+};
 struct guideline_remedy {
-    size_t input;
+    enum guideline_remedy_kind kind;
+    size_t input;  /* what `value` is of: the found one with copper or another board */
     bool at_least; /* else at most */
     double value, grid;
+    double strip_width;                  /* m */
+    const struct study_stackup *stackup; /* of GUIDELINE_OTHER_BOARD */
 };
-enum { GUIDELINE_MOST_REMEDIES = 2 };
+enum { GUIDELINE_MOST_REMEDIES = 8 };
 
 /* A rule's answer for one variant (or one cell of its table). */
 struct guideline_finding {
@@ -52,7 +60,7 @@ struct guideline_finding {
     double nearest;   /* the output one grid step beyond the bound: what the rule keeps away; NAN if
                          none */
     double fab_smallest; /* the fab's smallest of this input, 0 = not stated */
-    struct guideline_remedy remedies[GUIDELINE_MOST_REMEDIES]; /* of CANNOT_BE_MET */
+    struct guideline_remedy remedies[GUIDELINE_MOST_REMEDIES]; /* of CANNOT_BE_MET; not of cells */
     size_t remedy_count;
     unsigned flags;
 };

@@ -12,7 +12,8 @@
  *     Z(s) = dc_resistance + skin_resistance sqrt(s/pi) + s L
  *     Y(s) = s (C + dielectric_capacitance chi(s))
  * Every end of every conductor has a resistance in series with an EMF (0 V where the end is not
- * driven) to the plane, and a capacitance to the plane in parallel with that branch.
+ * driven) to the plane, and a capacitance to the plane in parallel with that branch.  Any number
+ * of near ends may be driven, all by the same ramp in their own proportion; far ends are not.
  *
  * At s = j 2 pi f the skin term is skin_resistance sqrt(f) (1 + j): resistance and internal
  * reactance are equal, as in good conductors thicker than a few skin depths.  chi is what the
@@ -30,6 +31,8 @@ enum { LINE_MOST_CONDUCTORS = 8 };
 struct line_end {
     double resistance;  /* ohm, >= 0; INFINITY = open */
     double capacitance; /* F, >= 0 */
+    double emf; /* V per volt of swing, of either sign; 0 = not driven, as all far ends and open
+                   ones are */
 };
 
 struct line_problem {
@@ -64,9 +67,9 @@ bool line_modes(const struct line_problem *problem, struct line_modes *modes, st
 bool line_propagation(const struct line_problem *problem, double frequency,
                       double complex *constants, struct error *error);
 
-/* Voltages of all ends at one frequency for an EMF of 1 V at the near end of conductor `driven`.
- * near[count], far[count]: complex volts per volt of EMF.  frequency in Hz, > 0. */
-bool line_frequency_response(const struct line_problem *problem, size_t driven, double frequency,
+/* Voltages of all ends at one frequency, for the EMFs of the near ends.
+ * near[count], far[count]: complex volts per volt of swing.  frequency in Hz, > 0. */
+bool line_frequency_response(const struct line_problem *problem, double frequency,
                              double complex *near, double complex *far, struct error *error);
 
 /* The 2 count x 2 count scattering matrix between ports of `reference` ohms at all ends (near ends
@@ -75,16 +78,22 @@ bool line_frequency_response(const struct line_problem *problem, size_t driven, 
 bool line_scattering(const struct line_problem *problem, double reference, double frequency,
                      double complex *scattering, struct error *error);
 
-/* The response in time, prepared once for one driven conductor and asked for any edge.
- * The EMF is one linear ramp from 0 to 1 V within `edge` seconds, then held.  Lossless lines are
- * solved by bounces and characteristics, lossy ones by inversion of the Laplace transform
- * (docs/methods-line.md says how, and how well). */
+/* The response in time, prepared once for one set of EMFs and asked for any edge.
+ * Every EMF is one linear ramp within `edge` seconds from 0 to its share of the swing, then held.
+ * Lossless lines are solved by bounces and characteristics, lossy ones by inversion of the Laplace
+ * transform (docs/methods-line.md says how, and how well). */
 struct line_response;
 
 /* `shortest_edge` s, > 0: the shortest edge that will be asked for.  Owned by `arena`. */
-struct line_response *line_response_create(const struct line_problem *problem, size_t driven,
-                                           double shortest_edge, struct arena *arena,
-                                           struct error *error);
+struct line_response *line_response_create(const struct line_problem *problem, double shortest_edge,
+                                           struct arena *arena, struct error *error);
+
+/* The same, followed until the integral swings by a thousandth of its range instead of a fiftieth:
+ * for sequences of edges, where ringing adds up, and for victims that are sampled late.  Up to
+ * twice the time where little damps. */
+struct line_response *line_response_create_long(const struct line_problem *problem,
+                                                double shortest_edge, struct arena *arena,
+                                                struct error *error);
 
 struct line_peak {
     double highest; /* V per volt of swing, largest |v(t)| */
@@ -100,9 +109,10 @@ bool line_response_peaks(const struct line_response *response, size_t victim, do
  *   free     edges of alternating sign, any two at least `bit_time` apart
  *   clocked  edges on whole multiples of `bit_time`, worst over the phase of the observation
  * `free` never grows with bit_time; `clocked` may.  Exact for the sampled response (32 samples an
- * edge); `error` is the relative change on twice the sample step, of the larger.  Fails:
- * ERROR_INPUT when bit_time is not above 0 or so short against the ringing that more than a million
- * samples would be needed; ERROR_MEMORY. */
+ * edge, more where it rings faster), and no less than a single edge; `error` is the relative change
+ * on twice the sample step, of the larger, and what the response may still hold after its end.
+ * Fails: ERROR_INPUT when bit_time is not above 0 or so short against the ringing that more than a
+ * million samples would be needed; ERROR_MEMORY. */
 struct line_sequence {
     double free, clocked;
     double error;
@@ -110,6 +120,22 @@ struct line_sequence {
 bool line_response_sequences(const struct line_response *response, size_t victim, double edge,
                              double bit_time, struct line_sequence *near, struct line_sequence *far,
                              struct error *error);
+
+/* What a victim sees that is sampled `settling` seconds or more after the start of the ramp of the
+ * latest edge, at both its ends.  settling = 0: every instant counts. */
+struct line_settled {
+    double single; /* V per volt of swing: largest |v(t)|, t >= settling, of one edge */
+    double time;   /* s, where that is */
+    double free;  /* V per volt of swing: the worst sequence as above, its latest edge `settling` or
+                     more before the instant; `single` without a bit time */
+    double error; /* V per volt of swing, of the larger: of what was found, and of what the response
+                     may still hold after its end */
+};
+/* bit_time >= 0, 0 = a single edge.  `single` is found between samples too (exact with resistive
+ * ends), `free` from samples that begin at `settling`.  Errors as line_response_sequences. */
+bool line_response_settled(const struct line_response *response, size_t victim, double edge,
+                           double bit_time, double settling, struct line_settled *near,
+                           struct line_settled *far, struct error *error);
 
 /* Samples v(t) at t = 0, step, 2 step ... for plots and sequences of edges; near[samples],
  * far[samples]. */

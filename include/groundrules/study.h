@@ -53,11 +53,13 @@ struct study_layer {
     const char *name;          /* may be NULL */
     struct quantity thickness; /* m */
     struct quantity dk;        /* of a dielectric */
+    double df;                 /* of a dielectric, 0 = not stated */
+    double material_frequency; /* Hz, at which dk and df hold */
     bool plane;                /* of copper: a ground plane, else a signal layer */
 };
 
 /* The fab's sheet, top to bottom; what the models use of it is the top signal layer over the next
- * plane. */
+ * plane, and the coating over it. */
 struct study_stackup {
     const char *id, *name, *fab; /* fab may be NULL */
     const struct study_layer *layers;
@@ -65,6 +67,9 @@ struct study_stackup {
     struct quantity height;    /* foot of a top-side trace to the top of the next plane */
     struct quantity thickness; /* finished copper of the top layer */
     struct quantity dk;
+    struct quantity mask, mask_dk; /* solder mask over the outer copper; 0 = bare */
+    struct quantity etch;          /* what the top of a trace is narrower, per side */
+    double df, material_frequency; /* of the dielectric under the trace */
     double smallest_width, smallest_gap, smallest_drill; /* m; 0 = not stated */
     unsigned line, column;
 };
@@ -83,10 +88,13 @@ struct study_signal {
     double load;                  /* ohm, INFINITY = open */
     double load_capacitance;      /* F */
     double bit_time;              /* s, least time between two edges; 0 = a single edge */
+    size_t aggressors;            /* index among the words 1, 2, 4 */
+    bool independent;             /* they switch each on its own */
     bool is_victim;               /* has a noise budget */
     double noise_margin;          /* V */
     double share;                 /* of it for crosstalk, 0..1 */
     enum study_receiver receiver;
+    double settling; /* s, from the aggressor's last edge to the sampling; 0 = edge-sensitive */
 };
 
 struct study_product {
@@ -149,12 +157,13 @@ enum study_strength { STUDY_MUST, STUDY_SHOULD, STUDY_MAY };
 enum study_against { STUDY_CONSTANT, STUDY_BUDGET, STUDY_REFERENCE };
 enum study_kept { STUDY_KEEP_WIDTH, STUDY_KEEP_IMPEDANCE };
 
-/* "worst_peak <= 200 mV", "worst_peak <= budget", "worst_peak <= reference". */
+/* "worst_peak <= 200 mV", "worst_peak <= budget", "worst_peak <= 105 % of reference". */
 struct study_condition {
     size_t output;
     bool at_most; /* <=, else >= */
     enum study_against against;
     double limit;     /* STUDY_CONSTANT */
+    double share;     /* of the budget or the reference, 1 = all of it */
     const char *text; /* as written */
 };
 
@@ -250,7 +259,17 @@ bool study_read(const char *path, struct arena *arena, struct study *study,
 bool study_read_text(const char *path, const char *text, size_t length, struct arena *arena,
                      struct study *study, struct study_problems *problems, struct error *error);
 
-/* Fills inputs that are NAN from a board: height, thickness, dk (nominal values). */
+/* What a board sets of any model's inputs. */
+enum { STUDY_BOARD_VALUES = 8 };
+struct study_board_value {
+    const char *input;
+    struct quantity value;
+    bool stated; /* else the sheet does not say it: nothing, or the models' standard */
+};
+void study_board_values(const struct study_stackup *stackup,
+                        struct study_board_value values[STUDY_BOARD_VALUES]);
+
+/* Fills inputs that are NAN from a board (nominal values). */
 void study_apply_stackup(const struct study_stackup *stackup, const struct model *model,
                          double *inputs);
 

@@ -16,6 +16,10 @@ double section_reflection(double dk);
 bool section_inductance(size_t count, const double *vacuum_capacitance, double *inductance,
                         struct error *error);
 
+/* The plain solver of rectangles on a slab, problem already checked. */
+bool section_plain(const struct section_problem *problem, struct section_solution *solution,
+                   struct error *error);
+
 /* Largest relative difference of any entry of the three matrices. */
 double section_difference(const struct section_solution *one, const struct section_solution *other);
 

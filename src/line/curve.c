@@ -3,7 +3,8 @@
  *   1. v on the grid, 0 .. end, then e .. e + end;
  *   2. cells that by their own and their neighbours' variation could hold more than the best so far
  *      are cut at fronts, at fronts + e and at the sample of t - e; inside a piece v is smooth and
- *      an extremum is a zero of its slope. */
+ *      an extremum is a zero of its slope.
+ * Of what is sought from a later time on, the first cell may be a part of one. */
 #include "curve.h"
 
 #include <math.h>
@@ -209,12 +210,18 @@ static void grid_values(const struct curve *curve, double edge, bool falling, si
     }
 }
 
-typedef void grid_visit(const struct curve *curve, double edge, double offset, size_t start,
-                        size_t count, const double *values, struct line_peak *peak);
+struct search {
+    const struct curve *curve;
+    double edge, from;
+    struct line_peak peak;
+};
 
-static void walk_grid(const struct curve *curve, double edge, bool falling, grid_visit *visit,
-                      struct line_peak *peak) {
-    double values[BLOCK];
+typedef void grid_visit(struct search *search, double offset, size_t start, size_t count,
+                        const double *values);
+
+static void walk_grid(struct search *search, bool falling, grid_visit *visit) {
+    const struct curve *curve = search->curve;
+    double values[BLOCK], edge = search->edge;
     size_t samples = curve->samples, start = 0;
     double offset = falling ? edge : 0;
     if (falling) { /* times up to the last sample were visited without */
@@ -224,26 +231,30 @@ static void walk_grid(const struct curve *curve, double edge, bool falling, grid
     while (start + 1 < samples) {
         size_t count = samples - start < BLOCK ? samples - start : BLOCK;
         grid_values(curve, edge, falling, start, count, values);
-        visit(curve, edge, offset, start, count, values, peak);
+        visit(search, offset, start, count, values);
         if (start + count == samples)
             return;
         start += count - 3; /* overlap: a cell is judged with both neighbours */
     }
 }
 
-static void visit_coarse(const struct curve *curve, double edge, double offset, size_t start,
-                         size_t count, const double *values, struct line_peak *peak) {
-    (void)edge;
-    size_t best = 0;
-    for (size_t k = 1; k < count; k++)
+static void visit_coarse(struct search *search, double offset, size_t start, size_t count,
+                         const double *values) {
+    const struct curve *curve = search->curve;
+    double skip = ceil((search->from - offset) / curve->step) - (double)start;
+    if (!(skip < (double)count))
+        return;
+    size_t best = skip > 0 ? (size_t)skip : 0;
+    for (size_t k = best + 1; k < count; k++)
         if (fabs(values[k]) > fabs(values[best]))
             best = k;
-    double time = (double)(start + best) * curve->step + offset;
-    offer(peak, response_at(curve, edge, time).value, time);
+    double time = fmax((double)(start + best) * curve->step + offset, search->from);
+    offer(&search->peak, response_at(curve, search->edge, time).value, time);
 }
 
-static void visit_fine(const struct curve *curve, double edge, double offset, size_t start,
-                       size_t count, const double *values, struct line_peak *peak) {
+static void visit_fine(struct search *search, double offset, size_t start, size_t count,
+                       const double *values) {
+    const struct curve *curve = search->curve;
     double h = curve->step;
     for (size_t k = 0; k + 1 < count; k++) {
         double here = fabs(values[k + 1] - values[k]);
@@ -252,18 +263,20 @@ static void visit_fine(const struct curve *curve, double edge, double offset, si
         /* fmax is a call. */
         double first = fabs(values[k]), second = fabs(values[k + 1]);
         double highest = first > second ? first : second, beside = left > right ? left : right;
-        if (highest + (here < beside ? here : beside) + beside / 4 < peak->highest)
+        if (highest + (here < beside ? here : beside) + beside / 4 < search->peak.highest)
             continue;
         double low = (double)(start + k) * h + offset;
-        search_cell(curve, edge, low, low + h, peak);
+        if (low + h > search->from)
+            search_cell(curve, search->edge, fmax(low, search->from), low + h, &search->peak);
     }
 }
 
-struct line_peak curve_peak(const struct curve *curve, double edge) {
-    struct line_peak peak = {0};
-    walk_grid(curve, edge, false, visit_coarse, &peak);
-    walk_grid(curve, edge, true, visit_coarse, &peak);
-    walk_grid(curve, edge, false, visit_fine, &peak);
-    walk_grid(curve, edge, true, visit_fine, &peak);
-    return peak;
+struct line_peak curve_peak(const struct curve *curve, double edge, double from) {
+    struct search search = {.curve = curve, .edge = edge, .from = from, .peak = {.time = from}};
+    offer(&search.peak, response_at(curve, edge, from).value, from);
+    walk_grid(&search, false, visit_coarse);
+    walk_grid(&search, true, visit_coarse);
+    walk_grid(&search, false, visit_fine);
+    walk_grid(&search, true, visit_fine);
+    return search.peak;
 }

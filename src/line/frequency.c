@@ -107,7 +107,7 @@ static void scale_columns(struct line_modes *modes) {
 }
 
 bool problem_solve_at(const struct line_problem *problem, const struct line_modes *modes,
-                      size_t driven, double complex s, double complex *near, double complex *far,
+                      double complex s, double complex *near, double complex *far,
                       struct error *error) {
     size_t count = problem->count;
     struct line_modes scaled = *modes;
@@ -115,7 +115,8 @@ bool problem_solve_at(const struct line_problem *problem, const struct line_mode
     struct equations equations;
     fill_equations(problem, &scaled, problem->near, problem->far, s, &equations);
     memset(equations.right, 0, equations.size * sizeof *equations.right);
-    equations.right[driven] = equations.drive[driven];
+    for (size_t i = 0; i < count; i++)
+        equations.right[i] = equations.drive[i] * problem->near[i].emf;
     if (!solve(&equations, 1, error))
         return false;
     double complex delay[LINE_MOST_CONDUCTORS];
@@ -143,11 +144,11 @@ static bool all_finite(const double complex *voltages, size_t count, struct erro
     return true;
 }
 
-static bool lossy_response(const struct line_problem *problem, size_t driven, double complex s,
+static bool lossy_response(const struct line_problem *problem, double complex s,
                            double complex *near, double complex *far, struct error *error) {
     double complex v_near[LINE_MOST_CONDUCTORS], v_far[LINE_MOST_CONDUCTORS];
     struct terminated line = terminated_of(problem, problem->near, problem->far);
-    terminated_voltages(&line, driven, s, v_near, v_far);
+    terminated_voltages(&line, s, v_near, v_far);
     if (!all_finite(v_near, problem->count, error) || !all_finite(v_far, problem->count, error))
         return false;
     memcpy(near, v_near, problem->count * sizeof *near);
@@ -155,25 +156,30 @@ static bool lossy_response(const struct line_problem *problem, size_t driven, do
     return true;
 }
 
-bool line_frequency_response(const struct line_problem *problem, size_t driven, double frequency,
+bool line_frequency_response(const struct line_problem *problem, double frequency,
                              double complex *near, double complex *far, struct error *error) {
     struct line_modes modes;
-    if (!problem_check(problem, driven, error) || !check_frequency(frequency, error) ||
+    if (!problem_check(problem, error) || !check_frequency(frequency, error) ||
         !line_modes(problem, &modes, error))
         return false;
     const double pi = 3.14159265358979323846;
     if (loss_present(problem))
-        return lossy_response(problem, driven, I * 2 * pi * frequency, near, far, error);
-    return problem_solve_at(problem, &modes, driven, I * 2 * pi * frequency, near, far, error);
+        return lossy_response(problem, I * 2 * pi * frequency, near, far, error);
+    return problem_solve_at(problem, &modes, I * 2 * pi * frequency, near, far, error);
 }
 
 static bool lossy_scattering(const struct line_problem *problem, const struct line_end *ports,
                              double complex s, double complex *scattering, struct error *error) {
-    struct terminated line = terminated_of(problem, ports, ports);
     size_t count = problem->count, size = 2 * count;
     double complex own[LINE_MOST_CONDUCTORS], other[LINE_MOST_CONDUCTORS];
     for (size_t column = 0; column < size; column++) {
-        terminated_voltages(&line, column % count, s, own, other);
+        struct line_end driven[LINE_MOST_CONDUCTORS];
+        for (size_t i = 0; i < count; i++) {
+            driven[i] = ports[i];
+            driven[i].emf = i == column % count;
+        }
+        struct terminated line = terminated_of(problem, driven, ports);
+        terminated_voltages(&line, s, own, other);
         if (!all_finite(own, count, error) || !all_finite(other, count, error))
             return false;
         /* Equal ports at both ends: driven from the far end the two exchange their roles. */
@@ -196,7 +202,8 @@ bool line_scattering(const struct line_problem *problem, double reference, doubl
     struct line_problem matched = *problem;
     for (size_t i = 0; i < LINE_MOST_CONDUCTORS; i++)
         ports[i] = matched.near[i] = matched.far[i] = (struct line_end){.resistance = reference};
-    if (!problem_check(&matched, 0, error) || !check_frequency(frequency, error) ||
+    matched.near[0].emf = 1; /* a port is driven */
+    if (!problem_check(&matched, error) || !check_frequency(frequency, error) ||
         !line_modes(problem, &modes, error))
         return false;
     scale_columns(&modes);

@@ -18,14 +18,13 @@ static const double SHIFT = 8, USED = 0.85;
 static const double LAST = 4.1;
 
 /* H(s) = final + creep sqrt(s) + a s for s small against the line, from three values of s. */
-struct inversion inversion_of(const struct line_problem *problem, size_t driven, double slowest) {
-    struct inversion inversion = {.count = problem->count, .driven = driven};
+struct inversion inversion_of(const struct line_problem *problem, double slowest) {
+    struct inversion inversion = {.count = problem->count};
     inversion.line = terminated_of(problem, problem->near, problem->far);
     double small = 1e-6 / slowest;
     double complex at[3][2][LINE_MOST_CONDUCTORS];
     for (size_t k = 0; k < 3; k++)
-        terminated_voltages(&inversion.line, driven, small * (double)(1 << 2 * k), at[k][0],
-                            at[k][1]);
+        terminated_voltages(&inversion.line, small * (double)(1 << 2 * k), at[k][0], at[k][1]);
     for (size_t side = 0; side < 2; side++)
         for (size_t i = 0; i < problem->count; i++) {
             double one = creal(at[0][side][i]), two = creal(at[1][side][i]);
@@ -63,7 +62,7 @@ static void fill_spectrum(const struct inversion *inversion, const struct grid *
     for (size_t k = 0; k < grid->frequencies; k++) {
         double complex s = CMPLX(SHIFT / grid->period, 2 * pi * (double)k / grid->period);
         double complex weight = weight_at(s, grid->wider, grid->sigma) / grid->period;
-        terminated_voltages(&inversion->line, inversion->driven, s, end[0], end[1]);
+        terminated_voltages(&inversion->line, s, end[0], end[1]);
         for (size_t i = 0; i < inversion->count; i++) {
             if (grid->wider == 0) {
                 end[0][i] -= inversion->final[0][i];

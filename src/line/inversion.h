@@ -9,7 +9,7 @@ enum { INVERSION_LEAD = 6 };
 
 /* Numerical inversion of the Laplace transform on a shifted contour (Wilcox 1978). */
 struct inversion {
-    size_t count, driven;
+    size_t count;
     struct terminated line;
     /* Of all ends, for a step: at late times V = final + creep / sqrt(pi t). */
     double final[2][LINE_MOST_CONDUCTORS]; /* V */
@@ -17,7 +17,7 @@ struct inversion {
 };
 
 /* `problem` and its ends are borrowed.  `slowest` s: a time in which all of it settles. */
-struct inversion inversion_of(const struct line_problem *problem, size_t driven, double slowest);
+struct inversion inversion_of(const struct line_problem *problem, double slowest);
 
 /* One band of all ends, `period` s long of which 0.85 are used: with `wider` 0 the
  * integral of the step response less its final value, smoothed by `sigma`; else what `sigma` adds

@@ -13,6 +13,8 @@
 /* Of the shortest ramp's peak: what may still ring when the first band ends; what sequences of
  * edges need not see; where a further band ends; and where no further one is added. */
 static const double SETTLED = 3e-3, LITTLE = 5e-3, FELT = 5e-4, CONVERGED = 1e-3;
+/* Of the first two, for long runs. */
+static const double LONG = 0.3;
 static const double FIRST = 8, NARROWER = 4;
 /* Windows from one late band to the next, and sigmas per window that it follows. */
 static const double LATER = 40, LATE_SIGMAS = 20;
@@ -81,23 +83,22 @@ static double peak_of(const struct smooth *smooth, double edge) {
 }
 
 /* From when on the first band is no more than the late one, which sees the ringing averaged. */
-static double ringing_time(const struct smooth *smooth, double edge, double peak) {
+static double ringing_time(const struct smooth *smooth, double edge, double least) {
     double time = smooth_band_end(&smooth->band[0]) - smooth->band[0].step;
-    while (time > edge &&
-           fabs(ramp_of_band(&smooth->band[0], edge, time) -
-                ramp_of_band(&smooth->late[0], edge, time)) <= SETTLED * peak + NOTHING)
+    while (time > edge && fabs(ramp_of_band(&smooth->band[0], edge, time) -
+                               ramp_of_band(&smooth->late[0], edge, time)) <= least + NOTHING)
         time -= smooth->band[0].step;
     return time;
 }
 
 /* From when on a ramp shows little, as far as the late bands tell. */
-static double resting_time(const struct smooth *smooth, double edge, double peak) {
+static double resting_time(const struct smooth *smooth, double edge, double least) {
     for (size_t k = SMOOTH_LATE_BANDS; k-- > 0;) {
         const struct smooth_band *band = &smooth->late[k];
         double start =
             k > 0 ? smooth_band_end(&smooth->late[k - 1]) : smooth_band_end(&smooth->band[0]);
         for (double time = smooth_band_end(band) - band->step; time > start; time -= band->step)
-            if (fabs(ramp_of_band(band, fmax(edge, band->step), time)) > LITTLE * peak + NOTHING)
+            if (fabs(ramp_of_band(band, fmax(edge, band->step), time)) > least + NOTHING)
                 return time;
     }
     return 0;
@@ -106,7 +107,7 @@ static double resting_time(const struct smooth *smooth, double edge, double peak
 struct builder {
     struct inversion inversion;
     struct lossy *lossy;
-    double edge;
+    double edge, strict;
     double peak[SIDES]; /* of the shortest ramp */
 };
 
@@ -155,7 +156,8 @@ static double look_for_rest(struct builder *builder) {
             end->creep = builder->inversion.creep[side][i];
             double peak = peak_of(end, builder->edge);
             builder->peak[side * LINE_MOST_CONDUCTORS + i] = peak;
-            ringing = fmax(ringing, ringing_time(end, builder->edge, peak));
+            ringing =
+                fmax(ringing, ringing_time(end, builder->edge, SETTLED * builder->strict * peak));
         }
     return ringing;
 }
@@ -197,10 +199,12 @@ static void note_errors(struct builder *builder) {
         for (size_t i = 0; i < builder->inversion.count; i++) {
             struct smooth *end = end_of(builder, side, i);
             double peak = builder->peak[side * LINE_MOST_CONDUCTORS + i];
-            double resting = resting_time(end, edge, peak);
+            double little = LITTLE * builder->strict * peak;
+            double resting = resting_time(end, edge, little);
             double last = smooth_band_end(&end->late[SMOOTH_LATE_BANDS - 1]);
             end->missing = LEFT * FELT * peak * edge + disagreement(end);
-            lossy->tail[side][i] = resting < 0.9 * last ? LITTLE : 1;
+            lossy->late[side][i] = (resting < 0.9 * last ? little : peak) * edge;
+            lossy->range[side][i] = end->band[0].largest;
             lossy->window = fmax(lossy->window, resting);
         }
 }
@@ -238,11 +242,13 @@ static bool next_band(struct builder *builder, double *felt) {
     return wanted;
 }
 
-bool lossy_build(const struct line_problem *problem, size_t driven, double shortest_edge,
+bool lossy_build(const struct line_problem *problem, double shortest_edge, bool long_run,
                  struct arena *arena, struct lossy *lossy, struct error *error) {
     double passage = passage_of(problem), charging = charging_time(problem);
-    struct builder builder = {
-        inversion_of(problem, driven, passage + charging), lossy, shortest_edge, {0}};
+    struct builder builder = {.inversion = inversion_of(problem, passage + charging),
+                              .lossy = lossy,
+                              .edge = shortest_edge,
+                              .strict = long_run ? LONG : 1};
     double window = passages_to_rest(problem) * passage + 6 * shortest_edge;
     window += fmin(4 * charging, 10 * window); /* longer ones are for the late bands */
     if (!add_settled_bands(&builder, window, arena, error))

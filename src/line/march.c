@@ -120,7 +120,8 @@ static bool all_at_rest(const struct grid *grid, size_t samples, double *sum, st
             sum[0] = 0;
             for (size_t i = 1; i < samples; i++)
                 sum[i] = sum[i - 1] + 0.5 * (value[i] + value[i - 1]);
-            march->rest[end][k] = rest_of(sum, samples, setup->window, edge, setup->final[end][k]);
+            march->rest[end][k] =
+                rest_of(sum, samples, setup->window, edge, setup->final[end][k], setup->settled);
             reached = reached && march->rest[end][k].reached;
         }
     return reached;

@@ -20,6 +20,7 @@ struct march_setup {
     double edge;   /* s, > 0: the shortest that will be asked for */
     double final[2][LINE_MOST_CONDUCTORS]; /* V, what all ends settle to; NAN where not known */
     size_t most_steps;                     /* give up then */
+    double settled;                        /* see rest_of */
     size_t exact_steps;                    /* > 0: take exactly so many, without looking for rest */
 };
 

@@ -19,14 +19,17 @@ enum { STEPS_PER_PASSAGE = 12, STEPS_PER_SHORT_PASSAGE = 6 };
 static const double SHORT_PASSAGE = 30;
 /* Steps per shortest edge where fronts that no longer are followed blur over a step. */
 static const double STEPS_PER_EDGE = 16;
+/* Share of its range by which the integral may still swing when the march ends: where one edge is
+ * asked for, and where late ringing counts by itself or adds up. */
+static const double SETTLED_FOR_PEAKS = 0.02, SETTLED_FOR_SEQUENCES = 0.001;
 /* A capacitance this much faster than the shortest edge is left out. */
 static const double NEGLIGIBLE = 1e-4;
 
 struct line_setup {
     const struct line_problem *problem;
     struct line_modes modes;
-    size_t driven;
     struct end_system near, far;
+    double settled;
 };
 
 /* The slowest way the whole structure can settle once waves have died: capacitances through both
@@ -47,15 +50,23 @@ static double settling_time(const struct line_problem *problem) {
     return slowest;
 }
 
-/* The lines are wires in the end: the EMF divides between the resistances of its conductor.  One
+/* The lines are wires in the end: an EMF divides between the resistances of its conductor.  One
  * with none at either end keeps a charge that only the march knows. */
-static double final_voltage(const struct line_problem *problem, size_t driven, size_t conductor) {
+static double final_voltage(const struct line_problem *problem, size_t conductor) {
+    double emf = problem->near[conductor].emf;
     double near = problem->near[conductor].resistance, far = problem->far[conductor].resistance;
     if (isinf(near) && isinf(far))
         return NAN;
-    if (conductor != driven || isinf(near))
+    if (emf == 0)
         return 0;
-    return isinf(far) ? 1 : near + far > 0 ? far / (near + far) : NAN;
+    return isinf(far) ? emf : near + far > 0 ? emf * far / (near + far) : NAN;
+}
+
+static double largest_emf(const struct line_problem *problem) {
+    double largest = 0;
+    for (size_t i = 0; i < problem->count; i++)
+        largest = fmax(largest, fabs(problem->near[i].emf));
+    return largest;
 }
 
 static bool grid_at(const struct line_setup *setup, const struct fronts *fronts, size_t passage,
@@ -72,10 +83,11 @@ static bool grid_at(const struct line_setup *setup, const struct fronts *fronts,
                                       .window = (size_t)steps,
                                       .edge = edge,
                                       .most_steps = MOST_STEPS,
+                                      .settled = setup->settled,
                                       .exact_steps = exact_steps};
     for (size_t end = 0; end < 2; end++)
         for (size_t k = 0; k < modes->count; k++)
-            march_setup.final[end][k] = final_voltage(setup->problem, setup->driven, k);
+            march_setup.final[end][k] = final_voltage(setup->problem, k);
     return march_run(&march_setup, arena, march, error);
 }
 
@@ -92,7 +104,7 @@ static bool build_curves(const struct line_setup *setup, struct arena *arena,
     /* A front that is dropped is late or early by part of a step; one that is kept with a series
      * that does not converge is wrong by its last term: the lesser evil of the two. */
     double converged = fmin(fmax(scale / response->shortest_edge, 0.05), 0.2);
-    struct fronts_limit limit = {.smallest = GRID_FRONT,
+    struct fronts_limit limit = {.smallest = GRID_FRONT * largest_emf(problem),
                                  .most = MOST_GRID_FRONTS,
                                  .latest = INFINITY,
                                  .scale = scale,
@@ -118,17 +130,19 @@ static bool build_curves(const struct line_setup *setup, struct arena *arena,
             !curves_build(&coarse, fine.rest[end], &fronts, end == 0, arena, response->coarse[end],
                           error))
             return false;
-        for (size_t k = 0; k < problem->count; k++)
+        for (size_t k = 0; k < problem->count; k++) {
             response->rest_error[end][k] = fine.rest[end][k].error;
+            response->range[end][k] = fine.rest[end][k].range * fine.step;
+            response->late[end][k] = fine.rest[end][k].late * fine.step;
+        }
     }
     return true;
 }
 
-struct line_response *line_response_create(const struct line_problem *problem, size_t driven,
-                                           double shortest_edge, struct arena *arena,
-                                           struct error *error) {
-    struct line_setup setup = {.problem = problem, .driven = driven};
-    if (!problem_check(problem, driven, error) || !line_modes(problem, &setup.modes, error))
+static struct line_response *create(const struct line_problem *problem, double shortest_edge,
+                                    double settled, struct arena *arena, struct error *error) {
+    struct line_setup setup = {.problem = problem, .settled = settled};
+    if (!problem_check(problem, error) || !line_modes(problem, &setup.modes, error))
         return NULL;
     if (!(shortest_edge > 0 && shortest_edge <= 1e6)) {
         error_set(error, ERROR_INPUT, "shortest edge is %g s, must be above 0, at most 1e6",
@@ -143,20 +157,22 @@ struct line_response *line_response_create(const struct line_problem *problem, s
     if (loss_present(problem)) {
         response->lossy = arena_new(arena, 1, struct lossy, error);
         if (response->lossy == NULL ||
-            !lossy_build(problem, driven, shortest_edge, arena, response->lossy, error))
+            !lossy_build(problem, shortest_edge, settled < SETTLED_FOR_PEAKS, arena,
+                         response->lossy, error))
             return NULL;
-        memcpy(response->rest_error, response->lossy->tail, sizeof response->rest_error);
+        memcpy(response->late, response->lossy->late, sizeof response->late);
+        memcpy(response->range, response->lossy->range, sizeof response->range);
         return response;
     }
     double negligible = NEGLIGIBLE * shortest_edge;
-    if (!end_system_build(problem, &setup.modes, problem->near, driven, negligible, &setup.near,
-                          error) ||
-        !end_system_build(problem, &setup.modes, problem->far, SIZE_MAX, negligible, &setup.far,
-                          error))
+    if (!end_system_build(problem, &setup.modes, problem->near, negligible, &setup.near, error) ||
+        !end_system_build(problem, &setup.modes, problem->far, negligible, &setup.far, error))
         return NULL;
     if (setup.near.states + setup.far.states == 0) {
-        struct fronts_limit limit = {
-            .smallest = EXACT_FRONT, .most = MOST_EXACT_FRONTS, .latest = INFINITY, .scale = 0};
+        struct fronts_limit limit = {.smallest = EXACT_FRONT * largest_emf(problem),
+                                     .most = MOST_EXACT_FRONTS,
+                                     .latest = INFINITY,
+                                     .scale = 0};
         struct fronts fronts;
         if (!fronts_follow(&setup.modes, problem->length, &setup.near, &setup.far, &limit, arena,
                            &fronts, error))
@@ -174,6 +190,17 @@ struct line_response *line_response_create(const struct line_problem *problem, s
         }
     }
     return build_curves(&setup, arena, response, error) ? response : NULL;
+}
+
+struct line_response *line_response_create(const struct line_problem *problem, double shortest_edge,
+                                           struct arena *arena, struct error *error) {
+    return create(problem, shortest_edge, SETTLED_FOR_PEAKS, arena, error);
+}
+
+struct line_response *line_response_create_long(const struct line_problem *problem,
+                                                double shortest_edge, struct arena *arena,
+                                                struct error *error) {
+    return create(problem, shortest_edge, SETTLED_FOR_SEQUENCES, arena, error);
 }
 
 bool response_check(const struct line_response *response, size_t victim, double edge,
@@ -196,30 +223,37 @@ double response_at(const struct line_response *response, size_t end, size_t vict
                            : curve_response(&response->curve[end][victim], edge, time);
 }
 
-static bool lossy_peaks(const struct lossy *lossy, size_t victim, double edge,
-                        struct line_peak *near, struct line_peak *far, struct error *error) {
-    struct line_peak peak[2];
-    for (size_t end = 0; end < 2; end++)
-        if (!smooth_peak(&lossy->end[end][victim], edge, &peak[end], error))
-            return false;
-    *near = peak[0];
-    *far = peak[1];
-    return true;
+struct line_peak response_peak(const struct line_response *response, size_t end, size_t victim,
+                               double edge, double from) {
+    if (response->lossy != NULL)
+        return smooth_peak(&response->lossy->end[end][victim], edge, from);
+    return response->exact ? staircase_peak(&response->staircase[end], victim, edge, from)
+                           : curve_peak(&response->curve[end][victim], edge, from);
+}
+
+/* Fourth order would leave a fifteenth of the difference, fronts that blur all of it. */
+double response_peak_error(const struct line_response *response, size_t end, size_t victim,
+                           double edge, double from) {
+    if (response->exact)
+        return 0;
+    if (response->lossy != NULL) {
+        struct line_peak peak = response_peak(response, end, victim, edge, from);
+        return peak.error * peak.highest;
+    }
+    return fabs(curve_peak(&response->curve[end][victim], edge, from).highest -
+                curve_peak(&response->coarse[end][victim], edge, from).highest);
 }
 
 static struct line_peak peak_at(const struct line_response *response, size_t end, size_t victim,
                                 double edge) {
-    if (response->exact) {
-        struct line_peak peak = staircase_peak(&response->staircase[end], victim, edge);
-        peak.error = response->rest_error[end][victim];
+    struct line_peak peak = response_peak(response, end, victim, edge, 0);
+    if (response->lossy != NULL)
         return peak;
-    }
-    struct line_peak peak = curve_peak(&response->curve[end][victim], edge);
-    struct line_peak coarse = curve_peak(&response->coarse[end][victim], edge);
-    /* Fourth order would leave a fifteenth of the difference, fronts that blur all of it. */
     peak.error = response->rest_error[end][victim];
-    if (peak.highest > 0)
-        peak.error += fabs(peak.highest - coarse.highest) / peak.highest;
+    if (peak.highest > 0 && !response->exact)
+        peak.error +=
+            fabs(peak.highest - curve_peak(&response->coarse[end][victim], edge, 0).highest) /
+            peak.highest;
     return peak;
 }
 
@@ -227,8 +261,6 @@ bool line_response_peaks(const struct line_response *response, size_t victim, do
                          struct line_peak *near, struct line_peak *far, struct error *error) {
     if (!response_check(response, victim, edge, error))
         return false;
-    if (response->lossy != NULL)
-        return lossy_peaks(response->lossy, victim, edge, near, far, error);
     *near = peak_at(response, 0, victim, edge);
     *far = peak_at(response, 1, victim, edge);
     return true;

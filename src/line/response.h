@@ -16,7 +16,16 @@ struct line_response {
     struct curve coarse[2][LINE_MOST_CONDUCTORS]; /* the same on twice the step */
     struct lossy *lossy;                          /* NULL without loss */
     double rest_error[2][LINE_MOST_CONDUCTORS];   /* relative: what may follow the window */
+    /* V s: range of the integral, and by how much it still swings at the end of the march */
+    double range[2][LINE_MOST_CONDUCTORS], late[2][LINE_MOST_CONDUCTORS];
 };
+
+/* Largest magnitude at one end from `from` seconds on; without its error. */
+struct line_peak response_peak(const struct line_response *response, size_t end, size_t victim,
+                               double edge, double from);
+/* By how much the two grids differ there, V; 0 for staircases. */
+double response_peak_error(const struct line_response *response, size_t end, size_t victim,
+                           double edge, double from);
 
 /* Whether the conductor exists and the edge was prepared for; ERROR_INPUT otherwise. */
 bool response_check(const struct line_response *response, size_t victim, double edge,

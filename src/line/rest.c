@@ -2,8 +2,8 @@
 
 #include <math.h>
 
-/* Of the peak, and of the range of the integral. */
-static const double SETTLED_RAMP = 1e-4, SETTLED_INTEGRAL = 0.02;
+/* Of the peak. */
+static const double SETTLED_RAMP = 1e-4;
 /* A Hann window leaves so much of a swing of one and a half periods or more in the mean. */
 static const double LEFT_IN_MEAN = 0.03;
 
@@ -36,7 +36,8 @@ double rest_settled(const double *integral, size_t samples, size_t window, doubl
     return mean / total;
 }
 
-struct rest rest_of(const double *sum, size_t samples, size_t window, size_t edge, double final) {
+struct rest rest_of(const double *sum, size_t samples, size_t window, size_t edge, double final,
+                    double settled) {
     size_t last = samples - 1, late = last - window;
     struct rest rest = {.final = isnan(final) ? (sum[last] - sum[late]) / (double)window : final};
     struct extremes ramp = {0}, integral = {0};
@@ -59,7 +60,9 @@ struct rest rest_of(const double *sum, size_t samples, size_t window, size_t edg
      */
     if (fabs(rest.final) * (double)edge + 2 * fmax(of_ramp, swing) < 0.9 * peak)
         of_ramp = 0;
+    rest.range = range;
+    rest.late = swing;
     rest.error = of_ramp / peak + LEFT_IN_MEAN * swing / range;
-    rest.reached = of_ramp <= SETTLED_RAMP * peak && swing <= SETTLED_INTEGRAL * range;
+    rest.reached = of_ramp <= SETTLED_RAMP * peak && swing <= settled * range;
     return rest;
 }

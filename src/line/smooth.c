@@ -64,14 +64,18 @@ static double broad_bands_at(const struct smooth *smooth, double time) {
            2 * smooth->creep / root_pi * (sqrt(time) - sqrt(end));
 }
 
-static double integral_at(const struct smooth *smooth, double time) {
+static double integral_at(const struct smooth *smooth, size_t bands, double time) {
     double sum = smooth->final * smooth_ramp(time, smooth->band[0].sigma);
     sum += broad_bands_at(smooth, time);
-    for (size_t k = 1; k < smooth->bands; k++)
+    for (size_t k = 1; k < bands; k++)
         sum += smooth_band_at(&smooth->band[k], time);
     return sum;
 }
 
+double smooth_bands_response(const struct smooth *smooth, size_t bands, double edge, double time) {
+    return (integral_at(smooth, bands, time) - integral_at(smooth, bands, time - edge)) / edge;
+}
+
 double smooth_response(const struct smooth *smooth, double edge, double time) {
-    return (integral_at(smooth, time) - integral_at(smooth, time - edge)) / edge;
+    return smooth_bands_response(smooth, smooth->bands, edge, time);
 }

@@ -32,13 +32,13 @@ struct smooth {
 double smooth_band_at(const struct smooth_band *band, double time);
 double smooth_band_end(const struct smooth_band *band);
 
-/* The response to a ramp of `edge` at `time`. */
+/* The response to a ramp of `edge` at `time`; and that of the first `bands` alone. */
 double smooth_response(const struct smooth *smooth, double edge, double time);
+double smooth_bands_response(const struct smooth *smooth, size_t bands, double edge, double time);
 
-/* The largest magnitude.  A corner of the response is lowered in proportion to sigma, a smooth top
- * by its square: the error is what the limit of sigma = 0 would still add by the first of these,
- * and what the bands leave out.  Fails: ERROR_MEMORY. */
-bool smooth_peak(const struct smooth *smooth, double edge, struct line_peak *peak,
-                 struct error *error);
+/* The largest magnitude from `from` seconds on.  A corner of the response is lowered in proportion
+ * to sigma, a smooth top by its square: the error is what the limit of sigma = 0 would still add by
+ * the first of these, and what the bands leave out. */
+struct line_peak smooth_peak(const struct smooth *smooth, double edge, double from);
 
 #endif

@@ -39,7 +39,7 @@ fill_end(const struct terminated *line, const struct line_end *ends, size_t n, d
 }
 
 static inline __attribute__((always_inline)) void solve(const struct terminated *line,
-                                                        size_t driven, double complex s, size_t n,
+                                                        double complex s, size_t n,
                                                         double complex *near, double complex *far) {
     struct propagation wave;
     double complex towards[MOST], away[MOST], turned[MOST], product[MOST];
@@ -58,7 +58,7 @@ static inline __attribute__((always_inline)) void solve(const struct terminated 
     for (size_t k = 0; k < n * n; k++)
         towards[k] += product[k];
     for (size_t i = 0; i < n; i++)
-        leaving[i] = i == driven ? driving_share(&line->near[i], line->impedance[i]) : 0;
+        leaving[i] = line->near[i].emf * driving_share(&line->near[i], line->impedance[i]);
     complex_solve(n, 1, towards, leaving);
     complex_multiply(n, n, 1, turned, leaving, near);
     complex_multiply(n, n, 1, wave.across, leaving, far);
@@ -69,10 +69,10 @@ static inline __attribute__((always_inline)) void solve(const struct terminated 
     }
 }
 
-void terminated_voltages(const struct terminated *line, size_t driven, double complex s,
-                         double complex *near, double complex *far) {
+void terminated_voltages(const struct terminated *line, double complex s, double complex *near,
+                         double complex *far) {
     if (line->laws.problem->count == 2)
-        solve(line, driven, s, 2, near, far);
+        solve(line, s, 2, near, far);
     else
-        solve(line, driven, s, line->laws.problem->count, near, far);
+        solve(line, s, line->laws.problem->count, near, far);
 }

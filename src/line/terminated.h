@@ -18,8 +18,8 @@ struct terminated {
 struct terminated terminated_of(const struct line_problem *problem, const struct line_end *near,
                                 const struct line_end *far);
 
-/* Voltages of all ends for an EMF of 1 V at the near end of `driven`. */
-void terminated_voltages(const struct terminated *line, size_t driven, double complex s,
-                         double complex *near, double complex *far);
+/* Voltages of all ends for the EMFs of the near ends. */
+void terminated_voltages(const struct terminated *line, double complex s, double complex *near,
+                         double complex *far);
 
 #endif

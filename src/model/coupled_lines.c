@@ -21,6 +21,7 @@ enum {
     VICTIM_LOAD_CAPACITANCE,
     RECEIVER,
     BIT_TIME,
+    SETTLING,
     DC_RESISTANCE,
     SKIN_RESISTANCE,
     DF,
@@ -61,6 +62,7 @@ static const struct model_input inputs[INPUT_COUNT] = {
     [VICTIM_LOAD_CAPACITANCE] = COUPLED_VICTIM_LOAD_CAPACITANCE,
     [RECEIVER] = COUPLED_RECEIVER,
     [BIT_TIME] = COUPLED_BIT_TIME,
+    [SETTLING] = COUPLED_SETTLING,
     [DC_RESISTANCE] = {"dc_resistance", "series resistance at zero frequency",
                        DIMENSION_RESISTANCE_PER_LENGTH, MODEL_DRIVE, 0, 0, 1e6, false, NULL, NULL,
                        0, LOSS_NOT_YET},
@@ -106,18 +108,19 @@ static bool prepare(const double *values, double *prepared, struct model_memo *m
 
 static bool respond(const double *values, const double *prepared, struct model_worker *worker,
                     double *answers, double *errors, unsigned *flags, struct error *error) {
-    struct coupled_pair pair = {prepared[INDUCTANCE],
-                                prepared[VICTIM_INDUCTANCE],
-                                prepared[MUTUAL_INDUCTANCE],
-                                prepared[CAPACITANCE],
-                                prepared[VICTIM_CAPACITANCE],
-                                prepared[MUTUAL_CAPACITANCE],
-                                0.0};
+    struct coupled_set pair = {
+        .count = 2,
+        .inductance = {prepared[INDUCTANCE], prepared[MUTUAL_INDUCTANCE],
+                       prepared[MUTUAL_INDUCTANCE], prepared[VICTIM_INDUCTANCE]},
+        .capacitance = {prepared[CAPACITANCE], -prepared[MUTUAL_CAPACITANCE],
+                        -prepared[MUTUAL_CAPACITANCE], prepared[VICTIM_CAPACITANCE]},
+    };
     struct coupled_drive drive = {
         .length = values[LENGTH],
         .swing = values[SWING],
         .edge = values[EDGE],
         .bit_time = values[BIT_TIME],
+        .settling = values[SETTLING],
         .source = values[SOURCE],
         .load = values[LOAD],
         .load_capacitance = values[LOAD_CAPACITANCE],

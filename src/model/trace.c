@@ -35,7 +35,7 @@ static const struct model_input inputs[INPUT_COUNT] = {
     [MASK_DK] = BOARD_MASK_DK,
     [COVER] = BOARD_COVER,
     [COVER_DK] = BOARD_COVER_DK,
-    [EDGE_DISTANCE] = BOARD_EDGE_DISTANCE,
+    [EDGE_DISTANCE] = BOARD_EDGE_DISTANCE("centre of the trace"),
     [FREQUENCY] = BOARD_FREQUENCY,
 };
 
@@ -74,30 +74,49 @@ static const struct model_output outputs[OUTPUT_COUNT] = {
 
 enum { PREPARED_L, PREPARED_C, PREPARED_C0, PREPARED_ERROR, PREPARED_COUNT };
 
+static struct board board_of(const double *values) {
+    return (struct board){
+        .height = values[HEIGHT],
+        .thickness = values[THICKNESS],
+        .dk = values[DK],
+        .etch = values[ETCH],
+        .mask = values[MASK],
+        .mask_dk = values[MASK_DK],
+        .cover = values[COVER],
+        .cover_dk = values[COVER_DK],
+        .edge_distance = values[EDGE_DISTANCE],
+    };
+}
+
+static bool check(const double *values, struct error *error) {
+    struct board board = board_of(values);
+    return board_check(&board, values[WIDTH], error);
+}
+
 static bool sketch(const double *values, struct sketch *drawing, struct error *error) {
     (void)error;
+    struct board board = board_of(values);
+    double half = values[WIDTH] / 2.0;
     *drawing = (struct sketch){0};
-    double height = values[HEIGHT], half = values[WIDTH] / 2.0;
-    board_sketch_slab(drawing, height);
-    sketch_add_solid(drawing, (struct sketch_solid){SKETCH_TRACE, -half, half, height,
-                                                    height + values[THICKNESS], "trace"});
-    sketch_add_dimension(drawing,
-                         (struct sketch_dimension){false, -half, half, height + values[THICKNESS],
-                                                   "width", values[WIDTH]});
-    sketch_add_dimension(drawing,
-                         (struct sketch_dimension){true, 0.0, height, half, "height", height});
+    board_sketch(drawing, &board, 0.0);
+    board_sketch_copper(drawing, &board, SKETCH_TRACE, -half, values[WIDTH], "trace");
+    sketch_add_dimension(drawing, (struct sketch_dimension){false, -half, half,
+                                                            board.height + board.thickness, "width",
+                                                            values[WIDTH]});
+    board_sketch_dimensions(drawing, &board, half, 0.0);
     return true;
 }
 
 static bool prepare(const double *values, double *prepared, struct model_memo *memo,
                     struct error *error) {
+    struct board board = board_of(values);
     struct sketch drawing;
     struct section_problem problem;
     struct section_solution solution;
     enum section_tie ties[SECTION_MOST_CONDUCTORS];
     if (!sketch(values, &drawing, error))
         return false;
-    sketch_section(&drawing, values[DK], &problem, ties);
+    board_section(&drawing, &board, &problem, ties);
     if (!model_memo_section(memo, &problem, &solution, error))
         return error_in(error, "section");
     prepared[PREPARED_L] = solution.inductance[0];
@@ -122,9 +141,8 @@ static bool respond(const double *values, const double *prepared, struct model_w
     for (size_t i = 0; i < OUTPUT_COUNT; i++)
         errors[i] = isnan(answers[i]) ? 0.0 : fabs(answers[i]) * prepared[PREPARED_ERROR];
     errors[EFFECTIVE_DK] *= 2.0; /* two capacitances */
-    *flags = 0;
-    if (values[THICKNESS] == 0.0)
-        *flags |= 1u << BOARD_FLAG_THIN;
+    struct board board = board_of(values);
+    *flags = board_flags_of_section(&board);
     return true;
 }
 
@@ -141,6 +159,7 @@ const struct model model_trace = {
     .output_count = OUTPUT_COUNT,
     .flags = board_flags,
     .flag_count = BOARD_FLAG_COUNT,
+    .check = check,
     .prepared_count = PREPARED_COUNT,
     .prepare = prepare,
     .respond = respond,

@@ -4,11 +4,16 @@
 #include <stdlib.h>
 #include <string.h>
 
-struct model_worker {
+struct kept {
     struct arena *arena;
     struct line_problem problem; /* padding and unused entries zeroed, so that memcmp compares */
     double shortest_edge;
+    bool to_rest;
     struct line_response *response;
+};
+
+struct model_worker {
+    struct kept kept[WORKER_RESPONSES];
 };
 
 struct model_worker *model_worker_create(struct error *error) {
@@ -17,10 +22,12 @@ struct model_worker *model_worker_create(struct error *error) {
         error_set(error, ERROR_MEMORY, "out of memory");
         return NULL;
     }
-    worker->arena = arena_create(error);
-    if (worker->arena == NULL) {
-        free(worker);
-        return NULL;
+    for (size_t i = 0; i < WORKER_RESPONSES; i++) {
+        worker->kept[i].arena = arena_create(error);
+        if (worker->kept[i].arena == NULL) {
+            model_worker_free(worker);
+            return NULL;
+        }
     }
     return worker;
 }
@@ -28,7 +35,8 @@ struct model_worker *model_worker_create(struct error *error) {
 void model_worker_free(struct model_worker *worker) {
     if (worker == NULL)
         return;
-    arena_free(worker->arena);
+    for (size_t i = 0; i < WORKER_RESPONSES; i++)
+        arena_free(worker->kept[i].arena);
     free(worker);
 }
 
@@ -40,16 +48,19 @@ static double shortest_edge_of_class(double edge) {
     return shortest <= edge ? shortest : shortest / 4.0;
 }
 
-const struct line_response *worker_response(struct model_worker *worker,
+const struct line_response *worker_response(struct model_worker *worker, size_t place,
                                             const struct line_problem *problem, double edge,
-                                            struct error *error) {
+                                            bool to_rest, struct error *error) {
+    struct kept *kept = &worker->kept[place];
     double shortest = shortest_edge_of_class(edge);
-    if (worker->response != NULL && worker->shortest_edge == shortest &&
-        memcmp(&worker->problem, problem, sizeof *problem) == 0)
-        return worker->response;
-    arena_rewind(worker->arena, (struct arena_mark){0, 0});
-    worker->response = line_response_create(problem, 0, shortest, worker->arena, error);
-    worker->problem = *problem;
-    worker->shortest_edge = shortest;
-    return worker->response;
+    if (kept->response != NULL && kept->shortest_edge == shortest && kept->to_rest == to_rest &&
+        memcmp(&kept->problem, problem, sizeof *problem) == 0)
+        return kept->response;
+    arena_rewind(kept->arena, (struct arena_mark){0, 0});
+    kept->response = to_rest ? line_response_create_long(problem, shortest, kept->arena, error)
+                             : line_response_create(problem, shortest, kept->arena, error);
+    kept->problem = *problem;
+    kept->shortest_edge = shortest;
+    kept->to_rest = to_rest;
+    return kept->response;
 }

@@ -101,7 +101,8 @@ static void chapter_inputs(struct flow *flow, const struct study_chapter *chapte
                           .rows = rows,
                           .row_count = count,
                           .stretch = true};
-    flow_heading(flow, 1, chapter->title, pages_destination(flow, "inputs", chapter->id), 60.0);
+    flow_heading(flow, 1, chapter->title, pages_destination(flow, "inputs", chapter->id),
+                 flow_table_start(flow, &table));
     flow_table(flow, &table);
 }
 
@@ -178,7 +179,6 @@ static void glossary(struct flow *flow) {
                         "fingerprints, equal "
                         "rules."},
     };
-    flow_heading(flow, 1, "Glossary", "part.glossary", 80.0);
     size_t count = sizeof terms / sizeof *terms;
     struct table_row *rows = arena_new(flow->arena, count, struct table_row, flow->error);
     for (size_t i = 0; rows != NULL && i < count; i++)
@@ -190,6 +190,7 @@ static void glossary(struct flow *flow) {
                           .rows = rows,
                           .row_count = count,
                           .stretch = true};
+    flow_heading(flow, 1, "Glossary", "part.glossary", flow_table_start(flow, &table));
     flow_table(flow, &table);
 }
 

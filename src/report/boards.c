@@ -11,6 +11,17 @@ static const char *fab_line(struct flow *flow, const struct study_stackup *stack
     const char *text = flow_print(
         flow, "Trace foot to plane %s, copper %s, dk %s.", words_quantity(flow, &stackup->height),
         words_quantity(flow, &stackup->thickness), words_quantity(flow, &stackup->dk));
+    if (stackup->df > 0.0)
+        text = flow_print(flow, "%s Loss tangent %s at %s.", text,
+                          words_value(flow, stackup->df, DIMENSION_NUMBER),
+                          words_value(flow, stackup->material_frequency, DIMENSION_FREQUENCY));
+    if (stackup->mask.value > 0.0)
+        text = flow_print(flow, "%s Solder mask %s, dk %s.", text,
+                          words_quantity(flow, &stackup->mask),
+                          words_quantity(flow, &stackup->mask_dk));
+    if (stackup->etch.value > 0.0)
+        text = flow_print(flow, "%s Top of a trace narrower by %s per side.", text,
+                          words_quantity(flow, &stackup->etch));
     if (stackup->smallest_width > 0.0)
         text = flow_print(flow, "%s Smallest width %s", text,
                           words_value(flow, stackup->smallest_width, DIMENSION_LENGTH));
@@ -21,6 +32,21 @@ static const char *fab_line(struct flow *flow, const struct study_stackup *stack
         text = flow_print(flow, "%s, drill %s", text,
                           words_value(flow, stackup->smallest_drill, DIMENSION_LENGTH));
     return flow_print(flow, "%s.", text);
+}
+
+/* What is said beside the drawing, at the cursor; returns its height. */
+static double side_text(struct flow *flow, const struct study_stackup *stackup, double x,
+                        double width, bool draw) {
+    double height = 0.0;
+    const char *sheet = flow_shorten(flow, THEME_STRONG, flow_escape(flow, stackup->fab), width, 8);
+    const char *figures = fab_line(flow, stackup);
+    if (draw && stackup->fab != NULL)
+        flow_text_box(flow, THEME_STRONG, sheet, x, flow->y, width);
+    if (stackup->fab != NULL)
+        height = flow_text_height(flow, THEME_STRONG, sheet, width) + 3.0;
+    if (draw)
+        flow_text_box(flow, THEME_BODY, figures, x, flow->y + height, width);
+    return height + flow_text_height(flow, THEME_BODY, figures, width);
 }
 
 static void board(struct flow *flow, const struct study_stackup *stackup) {
@@ -36,20 +62,17 @@ static void board(struct flow *flow, const struct study_stackup *stackup) {
         drawing_stackup(stackup, &options, flow->setter, flow->arena, &report, flow->error);
     if (drawing == NULL)
         return;
+    double side;
+    double right = theme_column(&flow->page, 4, 2, &side);
     flow_heading(flow, 1, stackup->name, pages_destination(flow, "board", stackup->id),
-                 drawing->height + 20.0);
+                 fmax(drawing->height, side_text(flow, stackup, right, side, false)) + 12.0);
     double top = flow->y;
     flow_place(flow, drawing, x);
     flow_figure(flow, flow_print(flow, "board-%s", stackup->id), flow_escape(flow, stackup->name),
                 drawing);
-    double side, after = flow->y;
-    double right = theme_column(&flow->page, 4, 2, &side);
-    double y = top;
-    if (stackup->fab != NULL)
-        y += flow_text_box(flow, THEME_STRONG, flow_escape(flow, stackup->fab), right, y, side) +
-             3.0;
-    y += flow_text_box(flow, THEME_BODY, fab_line(flow, stackup), right, y, side);
-    flow->y = y > after ? y : after;
+    double after = flow->y;
+    flow->y = top;
+    flow->y = fmax(after, top + side_text(flow, stackup, right, side, true));
 }
 
 void pages_boards(struct flow *flow) {
@@ -87,7 +110,11 @@ static const char *load_words(struct flow *flow, const struct study_signal *sign
 }
 
 static void signal_cells(struct flow *flow, const struct study_signal *signal, const char **cells) {
+    static const char *const beside[] = {"", "on both sides", "two on each side"};
     cells[0] = flow_escape(flow, signal->name);
+    if (signal->aggressors > 0)
+        cells[0] = flow_print(flow, "%s, %s of a victim%s", cells[0], beside[signal->aggressors],
+                              signal->independent ? ", each on its own" : "");
     cells[1] = words_value(flow, signal->swing, DIMENSION_VOLTAGE);
     cells[2] = flow_escape(flow, signal->edge_text);
     cells[3] = words_range(flow, signal->edge, DIMENSION_TIME);
@@ -101,6 +128,9 @@ static void signal_cells(struct flow *flow, const struct study_signal *signal, c
         flow_print(flow, "<b>%s</b>",
                    words_value(flow, signal->share * signal->noise_margin, DIMENSION_VOLTAGE));
     cells[8] = receiver_words(signal->receiver);
+    if (signal->settling > 0.0)
+        cells[8] = flow_print(flow, "%s, sampled %s after an edge’s start", cells[8],
+                              words_value(flow, signal->settling, DIMENSION_TIME));
 }
 
 enum { SIGNAL_COLUMNS = 9 };
@@ -109,7 +139,6 @@ void pages_signals(struct flow *flow) {
     const struct study *study = flow->guideline->study;
     if (study->signal_count == 0)
         return;
-    flow_heading(flow, 1, "Signal classes", "part.signals", 120.0);
     struct table_row *rows =
         arena_new(flow->arena, study->signal_count, struct table_row, flow->error);
     for (size_t i = 0; rows != NULL && i < study->signal_count; i++) {
@@ -120,7 +149,7 @@ void pages_signals(struct flow *flow) {
         rows[i] = (struct table_row){.cells = cells};
     }
     const struct table_column columns[SIGNAL_COLUMNS] = {
-        [0] = {.most = 80.0}, [7] = {.least = 38.0}, [8] = {.least = 40.0}};
+        [0] = {.most = 120.0}, [7] = {.least = 38.0}, [8] = {.least = 40.0}};
     const struct table_head heads[SIGNAL_COLUMNS] = {
         {"Class", 1},         {"Swing", 1},  {"Edge, as stated", 1},
         {"Edge, 0–100 %", 1}, {"Driver", 1}, {"Receiver load", 1},
@@ -140,5 +169,6 @@ void pages_signals(struct flow *flow) {
                           .notes = notes,
                           .note_count = 1,
                           .stretch = true};
+    flow_heading(flow, 1, "Signal classes", "part.signals", flow_table_start(flow, &table));
     flow_table(flow, &table);
 }

@@ -39,7 +39,7 @@ static bool sketch_of(const struct study_chapter *chapter, size_t v, struct sket
 }
 
 static bool same_picture(const struct sketch *a, const struct sketch *b) {
-    if (a->solid_count != b->solid_count)
+    if (a->solid_count != b->solid_count || a->etch != b->etch)
         return false;
     for (size_t i = 0; i < a->solid_count; i++) {
         const struct sketch_solid *p = &a->solids[i], *q = &b->solids[i];
@@ -174,6 +174,9 @@ static bool judges_the_curves(const struct guideline_chapter *chapter,
     return true;
 }
 
+/* A rule whose marks would crowd the plot has none: its card and the table say it better. */
+enum { MOST_FLAGS = 6 };
+
 struct plot {
     struct chart_series series[CHART_MOST_SERIES];
     struct chart_limit limits[16];
@@ -252,7 +255,7 @@ static void add_limit(struct plot *plot, double value, const char *label, bool b
 
 static double limit_of(const struct study_rule *rule, const struct study_variant *variant) {
     if (rule->condition.against == STUDY_BUDGET && variant->victim != NULL)
-        return variant->victim->noise_margin * variant->victim->share;
+        return rule->condition.share * variant->victim->noise_margin * variant->victim->share;
     return rule->condition.limit;
 }
 
@@ -271,6 +274,8 @@ static void add_rule(struct flow *flow, const struct guideline_chapter *chapter,
     if (!draws(asked, rule->condition.output) || !judges_the_curves(chapter, rule))
         return;
     const struct model_output *output = &chapter->chapter->model->outputs[rule->condition.output];
+    bool marked = rule->find == chapter->chapter->vary.input &&
+                  plot->chart.mark_count + rule->variant_count <= MOST_FLAGS;
     for (size_t v = 0; v < rule->variant_count; v++) {
         const struct guideline_finding *finding = &result->findings[v];
         if (rule->condition.against != STUDY_REFERENCE) {
@@ -280,8 +285,7 @@ static void add_rule(struct flow *flow, const struct guideline_chapter *chapter,
                                  words_value(flow, limit, output->dimension)),
                       !rule->condition.at_most);
         }
-        if (rule->find != chapter->chapter->vary.input || finding->status != GUIDELINE_FOUND ||
-            plot->chart.mark_count == CHART_MOST_MARKS)
+        if (!marked || finding->status != GUIDELINE_FOUND)
             continue;
         if (is_marked(plot, finding->value))
             continue;
@@ -354,6 +358,8 @@ static bool anything_to_show(const struct guideline_chapter *chapter,
     return false;
 }
 
+enum { SENTENCE_LINES = 16 }; /* of names as long as a study may have them */
+
 static void charts(struct flow *flow, const struct guideline_chapter *chapter) {
     double width = flow->page.right - flow->page.left;
     for (size_t i = 0; i < chapter->chapter->chart_count && !flow_failed(flow); i++) {
@@ -369,7 +375,8 @@ static void charts(struct flow *flow, const struct guideline_chapter *chapter) {
         struct scene *scene = draw_chart(flow, chapter, asked, name, width);
         if (scene == NULL)
             return;
-        const char *sentence = sentence_of_chart(flow, chapter, asked);
+        const char *sentence = flow_shorten(
+            flow, THEME_BODY, sentence_of_chart(flow, chapter, asked), width, SENTENCE_LINES);
         flow_gap(flow, 10.0);
         flow_need(flow, scene->height + flow_text_height(flow, THEME_BODY, sentence, width) + 6.0);
         flow_place(flow, scene, flow->page.left);

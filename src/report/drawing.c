@@ -6,8 +6,8 @@
 #include <string.h>
 
 static const double STANDARD_HEIGHT = 240;
-static const double LEAST_COPPER = 2.4, LEAST_PLANE = 4; /* pt */
-static const double BELOW = 20;                          /* under the plane: scale bar, note */
+static const double LEAST_COPPER = 2.4, LEAST_PLANE = 4, LEAST_MASK = 1; /* pt */
+static const double BELOW = 20;      /* under the plane: scale bar, note */
 static const double LABEL_ROOM = 20; /* pt of dielectric that labels under the copper need */
 static const double LEGEND_ROW = 12;
 static const double LEAST_NAMED = 11; /* pt of dielectric that hold its own name */
@@ -50,25 +50,39 @@ static void hatch(struct drawing_frame *frame, const struct theme_solid *solid, 
 
 void drawing_solid(struct drawing_frame *frame, const struct theme_solid *solid, double x, double y,
                    double width, double height) {
-    scene_rectangle(frame->scene, x, y, width, height, solid->fill);
-    if (solid->hatch > 0)
-        hatch(frame, solid, x, y, width, height);
-    if (!(solid->edge_width > 0))
-        return;
+    drawing_trapezoid(frame, solid, x, y, width, height, 0);
+}
+
+/* Hatches stay between the corners of the top. */
+void drawing_trapezoid(struct drawing_frame *frame, const struct theme_solid *solid, double x,
+                       double y, double width, double height, double etch) {
     struct scene_segment segments[] = {
-        {SCENE_MOVE, {x}, {y}},
-        {SCENE_LINE, {x + width}, {y}},
+        {SCENE_MOVE, {x + etch}, {y}},
+        {SCENE_LINE, {x + width - etch}, {y}},
         {SCENE_LINE, {x + width}, {y + height}},
         {SCENE_LINE, {x}, {y + height}},
         {SCENE_CLOSE, {0}, {0}},
     };
-    scene_path(frame->scene, &(struct scene_path){.segments = segments,
-                                                  .count = 5,
-                                                  .stroked = true,
-                                                  .stroke = solid->edge,
-                                                  .width = solid->edge_width,
-                                                  .dashes = {2, 1.4},
-                                                  .dash_count = solid->dashed ? 2 : 0});
+    struct scene_path path = {.segments = segments, .count = 5};
+    if (etch > 0) {
+        path.filled = true;
+        path.fill = solid->fill;
+        scene_path(frame->scene, &path);
+        path.filled = false;
+    } else {
+        scene_rectangle(frame->scene, x, y, width, height, solid->fill);
+    }
+    if (solid->hatch > 0)
+        hatch(frame, solid, x + etch, y, width - 2 * etch, height);
+    if (!(solid->edge_width > 0))
+        return;
+    path.stroked = true;
+    path.stroke = solid->edge;
+    path.width = solid->edge_width;
+    path.dashes[0] = 2;
+    path.dashes[1] = 1.4;
+    path.dash_count = solid->dashed ? 2 : 0;
+    scene_path(frame->scene, &path);
 }
 
 /* ---- extent and scale ---- */
@@ -78,22 +92,26 @@ struct extent {
     double top, bottom;     /* m, of everything */
     double height;          /* m, of the dielectric */
     double thinnest, plane; /* m */
+    double end;             /* m, x where a plane ends; INFINITY */
 };
 
 static bool is_copper(const struct sketch_solid *solid) {
-    return solid->role != SKETCH_PLANE && solid->role != SKETCH_DIELECTRIC;
+    return solid->role != SKETCH_PLANE && solid->role != SKETCH_DIELECTRIC &&
+           solid->role != SKETCH_MASK && solid->role != SKETCH_COVER;
 }
 
 static bool extent_of(const struct sketch *sketch, struct extent *extent, struct error *error) {
-    *extent = (struct extent){INFINITY, -INFINITY, 0, 0, 0, INFINITY, INFINITY};
+    *extent = (struct extent){INFINITY, -INFINITY, 0, 0, 0, INFINITY, INFINITY, INFINITY};
     for (size_t i = 0; i < sketch->solid_count; i++) {
         const struct sketch_solid *solid = &sketch->solids[i];
         extent->top = fmax(extent->top, solid->top);
         extent->bottom = fmin(extent->bottom, solid->bottom);
         if (solid->role == SKETCH_DIELECTRIC)
             extent->height = fmax(extent->height, solid->top);
-        if (solid->role == SKETCH_PLANE)
+        if (solid->role == SKETCH_PLANE || solid->role == SKETCH_COVER)
             extent->plane = fmin(extent->plane, solid->top - solid->bottom);
+        if (solid->role == SKETCH_PLANE)
+            extent->end = solid->right;
         if (!is_copper(solid))
             continue;
         extent->thinnest = fmin(extent->thinnest, solid->top - solid->bottom);
@@ -104,6 +122,10 @@ static bool extent_of(const struct sketch *sketch, struct extent *extent, struct
     }
     if (!(extent->left < extent->right))
         return error_set(error, ERROR_INPUT, "nothing to draw: no copper of finite width");
+    if (isfinite(extent->end)) {
+        extent->left = fmin(extent->left, extent->end);
+        extent->right = fmax(extent->right, extent->end);
+    }
     if (!(extent->height > 0))
         extent->height = fmax(extent->top, extent->right - extent->left);
     return true;
@@ -122,6 +144,23 @@ static bool labels_fit(const struct drawing_frame *frame, const struct sketch *s
         if (is_copper(&sketch->solids[i]) && sketch->solids[i].label != NULL)
             wide += drawing_width(frame, sketch->solids[i].label) + 8;
     return extent->height * frame->scale >= LABEL_ROOM && wide <= frame->right - frame->left;
+}
+
+/* pt that a coating is drawn with, 0 without one. */
+static double mask_room(const struct drawing_frame *frame, const struct sketch *sketch) {
+    for (size_t i = 0; i < sketch->solid_count; i++) {
+        const struct sketch_solid *solid = &sketch->solids[i];
+        if (solid->role == SKETCH_MASK)
+            return fmax((solid->top - solid->bottom) * frame->scale, LEAST_MASK);
+    }
+    return 0;
+}
+
+static bool covered(const struct sketch *sketch) {
+    for (size_t i = 0; i < sketch->solid_count; i++)
+        if (sketch->solids[i].role == SKETCH_COVER)
+            return true;
+    return false;
 }
 
 static void set_scale(struct drawing_frame *frame, const struct sketch *sketch,
@@ -147,7 +186,10 @@ static void set_scale(struct drawing_frame *frame, const struct sketch *sketch,
     frame->copper = LEAST_COPPER;
     double surface = extent->top * frame->scale;
     if (frame->report.copper_enlarged)
-        surface = fmax(surface, extent->height * frame->scale + LEAST_COPPER);
+        surface =
+            fmax(surface, extent->height * frame->scale + LEAST_COPPER + mask_room(frame, sketch));
+    if (covered(sketch))
+        surface = fmax(surface, extent->height * frame->scale + LEAST_PLANE);
     frame->top = HEADROOM + rows * DRAWING_DIMENSION_ROW + (rows > 0 ? 4 : 0);
     frame->y0 = frame->top + surface;
     double plane = isfinite(extent->plane) ? extent->plane * frame->scale : 0;
@@ -156,26 +198,54 @@ static void set_scale(struct drawing_frame *frame, const struct sketch *sketch,
 
 /* ---- solids and their names ---- */
 
-static void draw_solid(struct drawing_frame *frame, const struct sketch_solid *solid) {
+/* `etch`: m, of copper. */
+static void draw_solid(struct drawing_frame *frame, const struct sketch_solid *solid, double etch) {
     double left = fmax(drawing_x(frame, solid->left), frame->left);
     double right = fmin(drawing_x(frame, solid->right), frame->right);
     double top = drawing_y(frame, solid->top), bottom = drawing_y(frame, solid->bottom);
     if (solid->role == SKETCH_PLANE)
         bottom = fmax(bottom, top + LEAST_PLANE);
+    else if (solid->role == SKETCH_COVER)
+        top = fmin(top, bottom - LEAST_PLANE);
+    else if (solid->role == SKETCH_MASK)
+        top = fmin(top, bottom - LEAST_MASK);
     else if (solid->role != SKETCH_DIELECTRIC)
         top = fmin(top, bottom - frame->copper);
     struct theme_solid look = theme_solid(solid->role);
     if (left < right)
-        drawing_solid(frame, &look, left, top, right - left, bottom - top);
+        drawing_trapezoid(frame, &look, left, top, right - left, bottom - top,
+                          is_copper(solid) ? etch * frame->scale : 0);
+}
+
+/* The coating over one piece of copper as that is drawn, square at its corners. */
+static void draw_coat(struct drawing_frame *frame, const struct sketch_solid *copper, double etch,
+                      double thickness) {
+    double left = fmax(drawing_x(frame, copper->left) - thickness, frame->left);
+    double right = fmin(drawing_x(frame, copper->right) + thickness, frame->right);
+    double bottom = drawing_y(frame, copper->bottom);
+    double top = fmin(drawing_y(frame, copper->top), bottom - frame->copper) - thickness;
+    struct theme_solid look = theme_solid(SKETCH_MASK);
+    if (left < right)
+        drawing_trapezoid(frame, &look, left, top, right - left, bottom - top, etch * frame->scale);
+}
+
+static int layer_of(const struct sketch_solid *solid) {
+    if (solid->role == SKETCH_DIELECTRIC)
+        return 0;
+    if (solid->role == SKETCH_MASK)
+        return 1;
+    return is_copper(solid) ? 3 : 2;
 }
 
 static void draw_solids(struct drawing_frame *frame, const struct sketch *sketch) {
-    for (int layer = 0; layer < 3; layer++)
+    double coat = mask_room(frame, sketch);
+    for (int layer = 0; layer < 4; layer++)
         for (size_t i = 0; i < sketch->solid_count; i++) {
             const struct sketch_solid *solid = &sketch->solids[i];
-            int of = solid->role == SKETCH_DIELECTRIC ? 0 : is_copper(solid) ? 2 : 1;
-            if (of == layer)
-                draw_solid(frame, solid);
+            if (layer_of(solid) == layer)
+                draw_solid(frame, solid, sketch->etch);
+            if (layer == 1 && coat > 0 && is_copper(solid))
+                draw_coat(frame, solid, sketch->etch, coat);
         }
 }
 

@@ -33,6 +33,10 @@ void drawing_label(struct drawing_frame *frame, const char *markup, double x, do
 void drawing_solid(struct drawing_frame *frame, const struct theme_solid *solid, double x, double y,
                    double width, double height);
 
+/* The same with its top narrower by `etch` pt on either side. */
+void drawing_trapezoid(struct drawing_frame *frame, const struct theme_solid *solid, double x,
+                       double y, double width, double height, double etch);
+
 /* ---- drawing_dimension.c ---- */
 
 #define DRAWING_DIMENSION_ROW 13.0

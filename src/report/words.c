@@ -41,7 +41,8 @@ const char *words_quantity(struct flow *flow, const struct quantity *quantity) {
     if (quantity->minus == 0.0 && quantity->plus == 0.0)
         return value;
     if (quantity->dimension == DIMENSION_LENGTH && fabs(quantity->minus - quantity->plus) < 1e-12)
-        return flow_print(flow, "%s ±\u00a0%.3g\u2009%%", value, 100.0 * quantity->plus / quantity->value);
+        return flow_print(flow, "%s ±\u00a0%.3g\u2009%%", value,
+                          100.0 * quantity->plus / quantity->value);
     if (fabs(quantity->minus - quantity->plus) < 1e-12)
         return flow_print(flow, "%s ±\u00a0%s", value,
                           words_value(flow, quantity->plus, quantity->dimension));
@@ -62,6 +63,13 @@ const char *words_name(struct flow *flow, const char *name) {
         if (*at == '_' || *at == '-')
             *at = ' ';
     return text != NULL ? text : "";
+}
+
+const char *words_capital(struct flow *flow, const char *name) {
+    const char *text = words_name(flow, name);
+    if (*text < 'a' || *text > 'z')
+        return text;
+    return flow_print(flow, "%c%s", *text - 'a' + 'A', text + 1);
 }
 
 const char *words_strength(enum study_strength strength) {
@@ -105,7 +113,7 @@ const char *words_finding_short(struct flow *flow, const struct study_rule *rule
     const char *value = words_grid(flow, finding->value, rule->grid, dimension);
     switch (finding->status) {
     case GUIDELINE_FOUND:
-        return flow_print(flow, "%s %s", rule->find_smallest ? "≥" : "≤", value);
+        return flow_print(flow, "%s\u00a0%s", rule->find_smallest ? "≥" : "≤", value);
     case GUIDELINE_MET_EVERYWHERE:
         return flow_print(flow, "any %s %s", rule->find_smallest ? "from" : "to", value);
     case GUIDELINE_CANNOT_BE_MET:
@@ -116,20 +124,30 @@ const char *words_finding_short(struct flow *flow, const struct study_rule *rule
     return "below fab";
 }
 
+/* "105 % of "; nothing for all of it. */
+static const char *share_words(struct flow *flow, double share) {
+    return share == 1.0 ? ""
+                        : flow_print(flow, "%s of ", words_value(flow, share, DIMENSION_RATIO));
+}
+
 const char *words_condition(struct flow *flow, const struct study_rule *rule,
                             const struct study_chapter *chapter,
                             const struct study_variant *variant) {
     const struct model_output *output = &chapter->model->outputs[rule->condition.output];
     const char *sign = rule->condition.at_most ? "≤" : "≥";
     if (rule->condition.against == STUDY_REFERENCE)
-        return flow_print(flow, "%s %s that of %s, %s kept", output->title,
+        return flow_print(flow, "%s %s %sthat of %s, %s kept", output->title,
                           rule->condition.at_most ? "no more than" : "no less than",
+                          share_words(flow, rule->condition.share),
                           flow_escape(flow, rule->reference.text),
                           rule->reference.kept == STUDY_KEEP_WIDTH ? "width" : "impedance");
     if (rule->condition.against == STUDY_BUDGET && variant->victim != NULL)
-        return flow_print(flow, "%s %s %s (%s of the %s noise margin)", output->title, sign,
-                          words_value(flow, variant->victim->noise_margin * variant->victim->share,
+        return flow_print(flow, "%s %s %s (%s%s of the %s noise margin)", output->title, sign,
+                          words_value(flow,
+                                      rule->condition.share * variant->victim->noise_margin *
+                                          variant->victim->share,
                                       output->dimension),
+                          share_words(flow, rule->condition.share),
                           words_value(flow, variant->victim->share, DIMENSION_RATIO),
                           words_value(flow, variant->victim->noise_margin, DIMENSION_VOLTAGE));
     return flow_print(flow, "%s %s %s", output->title, sign,

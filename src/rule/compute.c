@@ -204,6 +204,8 @@ bool guideline_compute(const struct study *study, const struct guideline_options
         goto out;
     }
     size_t count = list_tasks(chapters, study->chapter_count, tasks);
+    for (size_t i = 0; i < count; i++)
+        tasks[i].study = study;
     run_all(tasks, count, memo, options);
     if (!first_error(tasks, count, error))
         goto out;

@@ -86,6 +86,14 @@ static void add_cells(struct lines *lines, const struct study_chapter *chapter,
                     &rule->cells[i]);
 }
 
+static void add_board(struct lines *lines, const char *where, const struct study_stackup *stackup) {
+    struct study_board_value values[STUDY_BOARD_VALUES];
+    study_board_values(stackup, values);
+    for (size_t i = 0; i < STUDY_BOARD_VALUES; i++)
+        add(lines, arena_print(lines->arena, lines->error, "%s reference %s %.9g\n", where,
+                               values[i].input, values[i].value.value));
+}
+
 static void add_rule(struct lines *lines, const struct study_chapter *chapter,
                      const struct study_rule *rule) {
     add(lines, arena_print(lines->arena, lines->error,
@@ -98,11 +106,10 @@ static void add_rule(struct lines *lines, const struct study_chapter *chapter,
     if (rule->condition.against != STUDY_REFERENCE)
         return;
     const struct study_stackup *stackup = rule->reference.stackup;
-    add(lines,
-        arena_print(lines->arena, lines->error, "%s reference %.9g %.9g %.9g kept %d\n", rule->id,
-                    stackup != NULL ? stackup->height.value : 0.0,
-                    stackup != NULL ? stackup->dk.value : 0.0,
-                    stackup != NULL ? stackup->thickness.value : 0.0, (int)rule->reference.kept));
+    add(lines, arena_print(lines->arena, lines->error, "%s reference kept %d\n", rule->id,
+                           (int)rule->reference.kept));
+    if (stackup != NULL)
+        add_board(lines, rule->id, stackup);
     for (size_t i = 0; i < chapter->model->input_count; i++)
         if (rule->reference.values[i] == rule->reference.values[i])
             add(lines, arena_print(lines->arena, lines->error, "%s reference %s %.9g\n", rule->id,

@@ -3,19 +3,25 @@
 #include <math.h>
 #include <string.h>
 
+/* All that a board sets, also what its sheet leaves at nothing. */
+static void put_board(const struct study_stackup *stackup, const struct model *model,
+                      double *inputs) {
+    struct study_board_value values[STUDY_BOARD_VALUES];
+    study_board_values(stackup, values);
+    for (size_t i = 0; i < STUDY_BOARD_VALUES; i++) {
+        size_t input = model_input_index(model, values[i].input);
+        if (input < model->input_count)
+            inputs[input] = values[i].value.value;
+    }
+}
+
 void judge_reference_board(const struct judge *judge, const double *inputs, double *reference) {
     const struct model *model = judge->solver->model;
     memcpy(reference, inputs, model->input_count * sizeof *inputs);
     for (size_t i = judge->region->range_count; i < judge->region->axis_count; i++)
         reference[judge->region->axes[i].input] = judge->region->axes[i].nominal;
-    static const char *const board[] = {"height", "thickness", "dk"};
-    for (size_t i = 0; judge->reference->stackup != NULL && i < sizeof board / sizeof *board; i++) {
-        size_t input = model_input_index(model, board[i]);
-        if (input < model->input_count)
-            reference[input] = NAN;
-    }
     if (judge->reference->stackup != NULL)
-        study_apply_stackup(judge->reference->stackup, model, reference);
+        put_board(judge->reference->stackup, model, reference);
     for (size_t i = 0; i < model->input_count; i++)
         if (!isnan(judge->reference->values[i]))
             reference[i] = judge->reference->values[i];
@@ -43,8 +49,9 @@ static bool limit_for(const struct judge *judge, const double *inputs, double *l
     const struct solver_case *solved = solver_ask(judge->solver, reference, error);
     if (solved == NULL)
         return error_in(error, "reference board");
-    *limit = solved->outputs[judge->output];
-    *uncertain = solved->errors[judge->output];
+    double share = judge->share > 0.0 ? judge->share : 1.0;
+    *limit = share * solved->outputs[judge->output];
+    *uncertain = share * solved->errors[judge->output];
     return true;
 }
 

@@ -17,6 +17,7 @@ struct judge {
     bool curve;
     double limit;                            /* constant or budget */
     const struct study_reference *reference; /* NULL = none */
+    double share;                            /* of its value; 0 = all of it */
     /* What the reference board has when its impedance is kept; NAN = as long as `width`. */
     double reference_width, reference_victim_width;
 };

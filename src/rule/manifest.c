@@ -59,12 +59,22 @@ static void finding(struct json *json, const struct model *model,
                             finding->worst_inputs[i]);
         json_close(json, '}');
     }
+    if (finding->remedy_count > 0)
+        json_open(json, "would_do", '[');
     for (size_t i = 0; i < finding->remedy_count; i++) {
         const struct guideline_remedy *remedy = &finding->remedies[i];
-        json_open(json, remedy->at_least ? "would_do_at_least" : "would_do_at_most", '{');
+        json_open(json, NULL, '{');
+        if (remedy->kind == GUIDELINE_TIED_COPPER)
+            json_number(json, "tied_strip_between", remedy->strip_width);
+        if (remedy->kind == GUIDELINE_OTHER_BOARD)
+            json_text(json, "stackup", remedy->stackup->id);
+        json_open(json, remedy->at_least ? "at_least" : "at_most", '{');
         json_number(json, model->inputs[remedy->input].name, remedy->value);
         json_close(json, '}');
+        json_close(json, '}');
     }
+    if (finding->remedy_count > 0)
+        json_close(json, ']');
     json_open(json, "flags", '[');
     for (size_t i = 0; i < model->flag_count; i++)
         if ((finding->flags >> i & 1u) != 0)

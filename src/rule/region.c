@@ -30,6 +30,14 @@ static void put_edge_last(struct region *region) {
         }
 }
 
+void region_add_tolerance(struct region *region, size_t input, const struct quantity *value) {
+    region->axes[region->axis_count++] = (struct region_axis){.input = input,
+                                                              .kind = REGION_TOLERANCE,
+                                                              .low = value->value - value->minus,
+                                                              .high = value->value + value->plus,
+                                                              .nominal = value->value};
+}
+
 void region_of(const struct model *model, const struct study_variant *variant, size_t without,
                bool nominal, struct region *region) {
     *region = (struct region){.model = model};
@@ -43,13 +51,10 @@ void region_of(const struct model *model, const struct study_variant *variant, s
     put_edge_last(region);
     for (size_t i = 0; i < model->input_count && !nominal; i++) {
         const struct study_setting *setting = &variant->settings[i];
+        struct quantity value = {
+            .value = setting->value, .minus = setting->minus, .plus = setting->plus};
         if (i != without && (setting->minus > 0.0 || setting->plus > 0.0))
-            region->axes[region->axis_count++] =
-                (struct region_axis){.input = i,
-                                     .kind = REGION_TOLERANCE,
-                                     .low = setting->value - setting->minus,
-                                     .high = setting->value + setting->plus,
-                                     .nominal = setting->value};
+            region_add_tolerance(region, i, &value);
     }
 }
 

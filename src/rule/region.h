@@ -33,6 +33,8 @@ struct region {
 void region_of(const struct model *model, const struct study_variant *variant, size_t without,
                bool nominal, struct region *region);
 
+void region_add_tolerance(struct region *region, size_t input, const struct quantity *value);
+
 /* Narrows or adds an axis for `input`; a single value fixes it. */
 void region_restrict(struct region *region, size_t input, struct interval range);
 

@@ -68,7 +68,7 @@ static bool point(struct task *task, struct solver *solver) {
 
 static double budget_of(const struct study_rule *rule, const struct study_variant *variant) {
     if (rule->condition.against == STUDY_BUDGET && variant->victim != NULL)
-        return variant->victim->noise_margin * variant->victim->share;
+        return rule->condition.share * variant->victim->noise_margin * variant->victim->share;
     return rule->condition.limit;
 }
 
@@ -143,7 +143,8 @@ static bool find(struct task *task, struct solver *solver, const struct study_va
                           .region = region,
                           .output = rule->condition.output,
                           .at_most = rule->condition.at_most,
-                          .limit = budget_of(rule, variant)};
+                          .limit = budget_of(rule, variant),
+                          .share = rule->condition.share};
     region->base[rule->find] = rule->find_smallest ? rule->within.to : rule->within.from;
     if (rule->condition.against == STUDY_REFERENCE) {
         judge.reference = &rule->reference;
@@ -152,8 +153,9 @@ static bool find(struct task *task, struct solver *solver, const struct study_va
             return false;
     }
     return find_bound(rule, variant, &judge, region, finding, &task->error) &&
-           (finding->status != GUIDELINE_CANNOT_BE_MET ||
-            remedies_find(rule, variant, &judge, region, finding, &task->error));
+           (finding->status != GUIDELINE_CANNOT_BE_MET || task->kind != TASK_RULE ||
+            remedies_find(&(struct remedy_question){task->study, rule, variant, &judge, region},
+                          finding, &task->error));
 }
 
 static void restrict_to(struct region *region, const struct study_cell_axis *axis, size_t index) {

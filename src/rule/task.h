@@ -8,6 +8,7 @@ enum task_kind { TASK_RULE, TASK_CELL, TASK_POINT };
 /* One piece of work with its place for the answer; runs on any thread. */
 struct task {
     enum task_kind kind;
+    const struct study *study;
     const struct guideline_chapter *chapter;
     const struct guideline_rule *rule; /* TASK_RULE, TASK_CELL */
     size_t variant;

@@ -1,5 +1,5 @@
 /* A stackup: its layers, and what the models take from them: the top signal layer over the next
- * plane. */
+ * plane, under its coating. */
 
 #include "sections.h"
 
@@ -9,16 +9,31 @@
 
 static const struct bounds layer_thickness = {1e-6, 10e-3};
 static const struct bounds layer_dk = {1.0, 20.0};
+static const struct bounds layer_df = {0.0, 0.2};
+static const struct bounds frequency = {1e3, 100e9};
+static const struct bounds mask_thickness = {1e-6, 0.2e-3};
+static const struct bounds mask_dk = {1.0, 15.0};
+static const struct bounds etch = {0.0, 0.2e-3};
+static const double standard_frequency = 1e9, standard_mask_dk = 3.5; /* as the models' */
 static const struct bounds fab_length = {1e-6, 0.1};
+
+static bool refuse_of_copper(const struct reader *reader, const struct node *node) {
+    static const char *const names[] = {"dk", "df", "material_frequency"};
+    bool ok = true;
+    for (size_t i = 0; i < sizeof names / sizeof *names; i++) {
+        const struct node *child = tree_get(node, names[i]);
+        if (child != NULL)
+            ok = reader_refuse_key(
+                reader, child, "\"%s\" belongs to a dielectric, this layer is copper", names[i]);
+    }
+    return ok;
+}
 
 static bool read_copper(const struct reader *reader, const struct node *node,
                         struct study_layer *layer) {
     const struct node *role = tree_get(node, "role");
-    const struct node *dk = tree_get(node, "dk");
-    bool ok = true;
+    bool ok = refuse_of_copper(reader, node);
     layer->kind = STUDY_LAYER_COPPER;
-    if (dk != NULL)
-        ok = reader_refuse_key(reader, dk, "\"dk\" belongs to a dielectric, this layer is copper");
     if (role == NULL) {
         bool there = false;
         for (const struct node *child = node->first; child != NULL; child = child->next)
@@ -38,8 +53,15 @@ static bool read_dielectric(const struct reader *reader, const struct node *node
                             struct study_layer *layer) {
     const struct node *dk = tree_get(node, "dk");
     const struct node *role = tree_get(node, "role");
+    const struct node *df = tree_get(node, "df"), *at = tree_get(node, "material_frequency");
     bool ok = true;
     layer->kind = STUDY_LAYER_DIELECTRIC;
+    layer->material_frequency = standard_frequency;
+    if (df != NULL && !reader_number(reader, df, DIMENSION_NUMBER, layer_df, &layer->df))
+        ok = false;
+    if (at != NULL &&
+        !reader_number(reader, at, DIMENSION_FREQUENCY, frequency, &layer->material_frequency))
+        ok = false;
     if (role != NULL)
         ok = reader_refuse_key(reader, role,
                                "\"role\" belongs to copper, this layer is a dielectric");
@@ -91,7 +113,8 @@ static bool check_order(const struct reader *reader, const struct node *node,
     if (layers[0].kind != STUDY_LAYER_COPPER || layers[count - 1].kind != STUDY_LAYER_COPPER)
         return reader_refuse(reader,
                              child_at(node, layers[0].kind == STUDY_LAYER_COPPER ? count - 1 : 0),
-                             "the outermost layers must be copper; a coating is not yet supported");
+                             "the outermost layers must be copper; a coating over it is the "
+                             "stackup's \"mask\"");
     for (size_t i = 1; i < count; i++)
         if (layers[i].kind == STUDY_LAYER_COPPER && layers[i - 1].kind == STUDY_LAYER_COPPER)
             return reader_refuse(reader, child_at(node, i),
@@ -107,6 +130,15 @@ static bool add_dielectric(const struct reader *reader, const struct node *node,
                              "between the top layer and its plane lie dielectrics of dk %.4g and "
                              "%.4g; mixed dielectrics are not yet supported",
                              stackup->dk.value, layer->dk.value);
+    if (stackup->height.value > 0 &&
+        (layer->df != stackup->df || layer->material_frequency != stackup->material_frequency))
+        return reader_refuse(
+            reader, node,
+            "between the top layer and its plane lie dielectrics of df %.4g at %.4g Hz "
+            "and %.4g at %.4g Hz; mixed dielectrics are not yet supported",
+            stackup->df, stackup->material_frequency, layer->df, layer->material_frequency);
+    stackup->df = layer->df;
+    stackup->material_frequency = layer->material_frequency;
     stackup->height.value += layer->thickness.value;
     stackup->height.minus += layer->thickness.minus;
     stackup->height.plus += layer->thickness.plus;
@@ -176,17 +208,36 @@ static void read_smallest(const struct reader *reader, const struct node *node,
     }
 }
 
+static void read_coating(const struct reader *reader, const struct node *node,
+                         struct study_stackup *stackup) {
+    const struct node *thickness = tree_get(node, "thickness"), *dk = tree_get(node, "dk");
+    if (thickness != NULL)
+        reader_quantity(reader, thickness, DIMENSION_LENGTH, mask_thickness, false, &stackup->mask);
+    if (dk != NULL)
+        reader_quantity(reader, dk, DIMENSION_NUMBER, mask_dk, false, &stackup->mask_dk);
+}
+
 /* A stackup that is wrong is kept with a NAN height, so that chapters which name it are not told
  * that it does not exist. */
 static void read_board(const struct reader *reader, const struct node *node,
                        struct study_stackup *stackup) {
     const struct node *name = tree_get(node, "name");
     const struct node *layers = tree_get(node, "layers");
-    *stackup = (struct study_stackup){.id = node->key, .fab = reader_text(tree_get(node, "fab"))};
+    const struct node *taper = tree_get(node, "etch");
+    *stackup = (struct study_stackup){
+        .id = node->key,
+        .fab = reader_text(tree_get(node, "fab")),
+        .mask = {.dimension = DIMENSION_LENGTH},
+        .mask_dk = {.value = standard_mask_dk, .dimension = DIMENSION_NUMBER},
+        .etch = {.dimension = DIMENSION_LENGTH},
+        .material_frequency = standard_frequency};
     stackup->name = name == NULL ? node->key : name->text;
     source_position(reader->source, node->key_offset, &stackup->line, &stackup->column);
     if (layers == NULL || !read_layers(reader, layers, stackup))
         stackup->height.value = NAN;
+    if (taper != NULL)
+        reader_quantity(reader, taper, DIMENSION_LENGTH, etch, false, &stackup->etch);
+    read_coating(reader, tree_get(node, "mask"), stackup);
     read_smallest(reader, tree_get(node, "smallest"), stackup);
 }
 
@@ -226,15 +277,4 @@ const struct study_stackup *boards_find(const struct reader *reader, const struc
     reader_refuse(reader, node, "there is no stackup \"%s\"%s", reader_shown(reader, node),
                   reader_advice(reader, node->text, names, study->stackup_count));
     return NULL;
-}
-
-void study_apply_stackup(const struct study_stackup *stackup, const struct model *model,
-                         double *inputs) {
-    static const char *const names[] = {"height", "thickness", "dk"};
-    const double values[] = {stackup->height.value, stackup->thickness.value, stackup->dk.value};
-    for (size_t i = 0; i < 3; i++) {
-        size_t index = model_input_index(model, names[i]);
-        if (index != SIZE_MAX && isnan(inputs[index]))
-            inputs[index] = values[i];
-    }
 }

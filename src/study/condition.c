@@ -20,8 +20,8 @@ static char *trimmed(const struct reader *reader, const char *from, const char *
 }
 
 static const char form[] =
-    "expected \"OUTPUT <= VALUE\" or \"OUTPUT >= VALUE\"; in place of the value, \"budget\" or "
-    "\"reference\"";
+    "expected \"OUTPUT <= VALUE\" or \"OUTPUT >= VALUE\"; in place of the value, \"budget\", "
+    "\"reference\" or a share of it, \"105 % of reference\"";
 
 static bool split(const struct reader *reader, const struct node *node, struct parts *parts) {
     static const struct {
@@ -103,6 +103,36 @@ static bool read_constant(const struct reader *reader, const struct node *node,
     return true;
 }
 
+/* "105 % of reference" becomes "reference" and 1.05. */
+static bool take_share(const struct reader *reader, const struct node *node,
+                       const struct model_output *output, struct parts *parts, double *share) {
+    const char *of = strstr(parts->against, " of ");
+    struct error error = {0};
+    struct quantity quantity;
+    *share = 1.0;
+    if (of == NULL)
+        return true;
+    const char *text = trimmed(reader, parts->against, of);
+    parts->against = trimmed(reader, of + 4, of + strlen(of));
+    if (text == NULL || parts->against == NULL)
+        return false;
+    if (strcmp(parts->against, "reference") != 0 && strcmp(parts->against, "budget") != 0)
+        return reader_refuse(reader, node,
+                             "\"%s\": a share is of the \"budget\" or of the \"reference\"%s",
+                             reader_shown(reader, node), nearest_word(reader, parts->against));
+    if (!quantity_parse(text, DIMENSION_RATIO, &quantity, &error))
+        return reader_refuse(reader, node, "%s", error.message);
+    if (!(quantity.value >= 0.01 && quantity.value <= 100.0) || quantity.minus > 0 ||
+        quantity.plus > 0)
+        return reader_refuse(reader, node, "a share of %s; allowed: 1 %% to 10000 %%, no tolerance",
+                             text);
+    if (output->dimension == DIMENSION_LEVEL || output->dimension == DIMENSION_ATTENUATION)
+        return reader_refuse(reader, node, "%s is in decibels, there is no share of it",
+                             output->name);
+    *share = quantity.value;
+    return true;
+}
+
 bool rule_read_condition(const struct reader *reader, const struct draft *draft,
                          struct rule_draft *rule) {
     const struct node *node = tree_get(rule->node, "so_that");
@@ -118,6 +148,8 @@ bool rule_read_condition(const struct reader *reader, const struct draft *draft,
     if (condition->output == SIZE_MAX)
         return false;
     const struct model_output *output = &model->outputs[condition->output];
+    if (!take_share(reader, node, output, &parts, &condition->share))
+        return false;
     if (strcmp(parts.against, "reference") == 0) {
         condition->against = STUDY_REFERENCE;
         return reference != NULL ||

@@ -13,6 +13,8 @@ const char *const keys_receivers[] = {"far", "near", "either", NULL};
 const char *const keys_strengths[] = {"must", "should", "may", NULL};
 const char *const keys_tolerances[] = {"corners", "nominal", NULL};
 const char *const keys_kept[] = {"width", "impedance", NULL};
+const char *const keys_aggressors[] = {"1", "2", "4", NULL};
+const char *const keys_switching[] = {"together", "independent", NULL};
 const char *const keys_scales[] = {"linear", "log", NULL};
 
 static const struct key document[] = {
@@ -54,23 +56,11 @@ static const struct key layer[] = {
     {.name = "df",
      .kind = KEY_VALUE,
      .dimension = DIMENSION_NUMBER,
-     .meaning = "loss tangent",
-     .not_yet = "lines are lossless in this version"},
+     .meaning = "loss tangent (with \"dielectric\"); standard: 0, lossless"},
     {.name = "material_frequency",
      .kind = KEY_VALUE,
      .dimension = DIMENSION_FREQUENCY,
-     .meaning = "frequency at which dk and df hold",
-     .not_yet = "dk does not change with frequency in this version"},
-    {.name = "mask",
-     .kind = KEY_VALUE,
-     .dimension = DIMENSION_LENGTH,
-     .meaning = "thickness of solder mask",
-     .not_yet = "traces are bare in this version, leave the mask out"},
-    {.name = "etch",
-     .kind = KEY_VALUE,
-     .dimension = DIMENSION_LENGTH,
-     .meaning = "what the top of a trace is narrower, per side",
-     .not_yet = "traces are rectangular in this version"},
+     .meaning = "frequency at which dk and df hold; standard: 1 GHz"},
 };
 TABLE(layer, "a layer", NULL);
 
@@ -90,6 +80,19 @@ static const struct key smallest[] = {
 };
 TABLE(smallest, "the fab's smallest values", NULL);
 
+static const struct key mask[] = {
+    {.name = "thickness",
+     .kind = KEY_VALUE,
+     .dimension = DIMENSION_LENGTH,
+     .required = true,
+     .meaning = "thickness on the copper, and on the board beside it"},
+    {.name = "dk",
+     .kind = KEY_VALUE,
+     .dimension = DIMENSION_NUMBER,
+     .meaning = "relative permittivity; standard: 3.5"},
+};
+TABLE(mask, "a solder mask", NULL);
+
 static const struct key stackup[] = {
     {.name = "name", .kind = KEY_TEXT, .meaning = "name in the document; standard: its identifier"},
     {.name = "fab", .kind = KEY_TEXT, .meaning = "sheet that the figures are from"},
@@ -106,12 +109,11 @@ static const struct key stackup[] = {
     {.name = "etch",
      .kind = KEY_VALUE,
      .dimension = DIMENSION_LENGTH,
-     .meaning = "what the top of a trace is narrower, per side",
-     .not_yet = "traces are rectangular in this version"},
+     .meaning = "what the top of a trace is narrower, per side; standard: 0"},
     {.name = "mask",
-     .kind = KEY_FREE,
-     .meaning = "solder mask",
-     .not_yet = "traces are bare in this version, leave the mask out"},
+     .kind = KEY_OBJECT,
+     .table = &keys_mask,
+     .meaning = "solder mask over the outer copper; standard: none"},
 };
 TABLE(stackup, "a stackup", NULL);
 
@@ -131,9 +133,10 @@ static const struct key victim[] = {
      .words = keys_receivers,
      .meaning = "end of the receiver, seen from the aggressor's driver; standard: either"},
     {.name = "settling",
-     .kind = KEY_FREE,
-     .meaning = "whether noise may settle before sampling",
-     .not_yet = "every peak counts in this version"},
+     .kind = KEY_VALUE,
+     .dimension = DIMENSION_TIME,
+     .meaning = "time from the start of the last edge to the instant of sampling; standard: 0, "
+                "every instant counts"},
 };
 TABLE(victim, "a victim", NULL);
 
@@ -172,9 +175,13 @@ static const struct key signal[] = {
      .dimension = DIMENSION_TIME,
      .meaning = "least time between two edges; standard: a single edge"},
     {.name = "aggressors",
-     .kind = KEY_FREE,
-     .meaning = "lines that switch together",
-     .not_yet = "one aggressor is computed in this version"},
+     .kind = KEY_WORD,
+     .words = keys_aggressors,
+     .meaning = "its lines beside a victim: on one side, on both, two on each; standard: 1"},
+    {.name = "switching",
+     .kind = KEY_WORD,
+     .words = keys_switching,
+     .meaning = "whether they switch together or each on its own; standard: together"},
 };
 TABLE(signal, "a signal", NULL);
 
@@ -186,14 +193,17 @@ static const struct key product[] = {
 TABLE(product, "a product", NULL);
 
 #define SOURCES                                                                                    \
-    {.name = "stackup", .kind = KEY_NAME, .meaning = "sets height, thickness and dk"},             \
+    {.name = "stackup",                                                                            \
+     .kind = KEY_NAME,                                                                             \
+     .meaning = "sets height, thickness, dk, df, mask and etch"},                                  \
         {.name = "aggressor",                                                                      \
          .kind = KEY_NAME,                                                                         \
-         .meaning = "sets swing, edge, source, load and load_capacitance"},                        \
+         .meaning = "sets swing, edge, source, load, load_capacitance, bit_time, aggressors and "  \
+                    "switching"},                                                                  \
     {                                                                                              \
         .name = "victim", .kind = KEY_NAME,                                                        \
-        .meaning = "sets victim_source, victim_load, victim_load_capacitance, receiver and the "   \
-                   "budget"                                                                        \
+        .meaning = "sets victim_source, victim_load, victim_load_capacitance, receiver, settling " \
+                   "and the budget"                                                                \
     }
 
 static const struct key given[] = {SOURCES};
@@ -383,8 +393,8 @@ static const struct key study[] = {
 TABLE(study, "the study", NULL);
 
 const struct key_table *const keys_all[] = {
-    &keys_study,   &keys_document, &keys_stackup, &keys_layer,     &keys_smallest,
-    &keys_signal,  &keys_victim,   &keys_product, &keys_chapter,   &keys_given,
-    &keys_compare, &keys_chart,    &keys_rule,    &keys_reference, &keys_rule_table,
+    &keys_study,  &keys_document, &keys_stackup,   &keys_layer,      &keys_mask,  &keys_smallest,
+    &keys_signal, &keys_victim,   &keys_product,   &keys_chapter,    &keys_given, &keys_compare,
+    &keys_chart,  &keys_rule,     &keys_reference, &keys_rule_table,
 };
 const size_t keys_all_count = COUNT(keys_all);

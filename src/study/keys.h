@@ -40,9 +40,9 @@ struct key_table {
     const char *others; /* what other keys are ("inputs of the model"); NULL: there are none */
 };
 
-extern const struct key_table keys_study, keys_document, keys_stackup, keys_layer, keys_smallest,
-    keys_signal, keys_victim, keys_product, keys_chapter, keys_given, keys_compare, keys_chart,
-    keys_rule, keys_reference, keys_rule_table, keys_cells;
+extern const struct key_table keys_study, keys_document, keys_stackup, keys_layer, keys_mask,
+    keys_smallest, keys_signal, keys_victim, keys_product, keys_chapter, keys_given, keys_compare,
+    keys_chart, keys_rule, keys_reference, keys_rule_table, keys_cells;
 
 /* Every table, for documentation. */
 extern const struct key_table *const keys_all[];
@@ -50,10 +50,12 @@ extern const size_t keys_all_count;
 
 extern const char *const keys_pages[],
     *const keys_lengths[], *const keys_roles[], *const keys_receivers[],
-                                                    *const keys_strengths[],
-                                                        *const keys_tolerances[],
-                                                            *const keys_kept[],
-                                                                *const keys_scales[];
+                                                    *const keys_aggressors[],
+                                                        *const keys_switching[],
+                                                            *const keys_strengths[],
+                                                                *const keys_tolerances[],
+                                                                    *const keys_kept[],
+                                                                        *const keys_scales[];
 
 /* Checks a node and all below it against a table; what is wrong is reported and marked bad. */
 void keys_check(const struct reader *reader, struct node *node, const struct key_table *table);

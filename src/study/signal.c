@@ -12,6 +12,7 @@ static const struct bounds source_bounds = {0.0, INFINITY};
 static const struct bounds load_bounds = {0.0, INFINITY};
 static const struct bounds capacitance_bounds = {0.0, 1e-6};
 static const struct bounds bit_bounds = {0.0, 1.0};
+static const struct bounds settling_bounds = {0.0, 1.0};
 static const struct bounds margin_bounds = {1e-6, 1e3};
 static const struct bounds share_bounds = {1e-3, 1.0};
 
@@ -38,6 +39,16 @@ static void read_value(const struct reader *reader, const struct node *node,
         reader_number(reader, node, dimension, bounds, value);
 }
 
+static void read_neighbours(const struct reader *reader, const struct node *node,
+                            struct study_signal *signal) {
+    const struct node *aggressors = tree_get(node, "aggressors");
+    const struct node *switching = tree_get(node, "switching");
+    if (aggressors != NULL)
+        signal->aggressors = reader_word(reader, aggressors, keys_aggressors);
+    if (switching != NULL)
+        signal->independent = reader_word(reader, switching, keys_switching) == 1;
+}
+
 static void read_victim(const struct reader *reader, const struct node *node,
                         struct study_signal *signal) {
     const struct node *receiver = tree_get(node, "receiver");
@@ -48,6 +59,8 @@ static void read_victim(const struct reader *reader, const struct node *node,
     read_value(reader, tree_get(node, "noise_margin"), DIMENSION_VOLTAGE, margin_bounds,
                &signal->noise_margin);
     read_value(reader, tree_get(node, "share"), DIMENSION_RATIO, share_bounds, &signal->share);
+    read_value(reader, tree_get(node, "settling"), DIMENSION_TIME, settling_bounds,
+               &signal->settling);
     if (receiver != NULL)
         signal->receiver = (enum study_receiver)reader_word(reader, receiver, keys_receivers);
 }
@@ -76,6 +89,7 @@ static void read_signal(const struct reader *reader, const struct node *node,
     read_value(reader, tree_get(node, "load_capacitance"), DIMENSION_CAPACITANCE,
                capacitance_bounds, &signal->load_capacitance);
     read_value(reader, tree_get(node, "bit_time"), DIMENSION_TIME, bit_bounds, &signal->bit_time);
+    read_neighbours(reader, node, signal);
     read_victim(reader, tree_get(node, "victim"), signal);
     if (keys_refused(node, "victim"))
         signal->is_victim = true;

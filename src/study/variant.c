@@ -50,15 +50,17 @@ static struct study_setting from_range(const struct target *target, const char *
 /* False: the model has none of these inputs. */
 static bool put_stackup(const struct target *target, const struct study_stackup *stackup,
                         const struct node *node) {
-    if (isnan(stackup->height.value)) { /* refused where it is defined */
-        struct study_setting none = from_quantity((struct quantity){.value = NAN});
-        bool height = put(target, "height", none, node);
-        bool thickness = put(target, "thickness", none, node);
-        return put(target, "dk", none, node) || height || thickness;
+    bool refused = isnan(stackup->height.value), any = false; /* where it is defined */
+    struct study_board_value values[STUDY_BOARD_VALUES];
+    study_board_values(stackup, values);
+    for (size_t i = 0; i < STUDY_BOARD_VALUES; i++) {
+        if (!values[i].stated)
+            continue;
+        if (refused)
+            values[i].value = (struct quantity){.value = NAN};
+        any = put(target, values[i].input, from_quantity(values[i].value), node) || any;
     }
-    bool height = put(target, "height", from_quantity(stackup->height), node);
-    bool thickness = put(target, "thickness", from_quantity(stackup->thickness), node);
-    return put(target, "dk", from_quantity(stackup->dk), node) || height || thickness;
+    return any;
 }
 
 static bool put_aggressor(const struct target *target, const struct study_signal *signal,
@@ -69,6 +71,10 @@ static bool put_aggressor(const struct target *target, const struct study_signal
     any = put(target, "load", from_value(signal->load), node) || any;
     if (signal->bit_time > 0.0)
         any = put(target, "bit_time", from_value(signal->bit_time), node) || any;
+    if (signal->aggressors > 0)
+        any = put(target, "aggressors", from_value((double)signal->aggressors), node) || any;
+    if (signal->independent)
+        any = put(target, "switching", from_value(1.0), node) || any;
     return put(target, "load_capacitance", from_value(signal->load_capacitance), node) || any;
 }
 
@@ -91,6 +97,8 @@ static bool put_victim(const struct target *target, const struct study_signal *s
         put(target, "victim_source", from_range(target, "victim_source", signal->source), node);
     any = put(target, "victim_load", from_value(signal->load), node) || any;
     any = put(target, "victim_load_capacitance", from_value(signal->load_capacitance), node) || any;
+    if (signal->settling > 0.0)
+        any = put(target, "settling", from_value(signal->settling), node) || any;
     return put_receiver(target, signal, node) || any;
 }
 

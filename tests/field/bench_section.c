@@ -65,10 +65,11 @@ static bool run(const char *name, const struct section_problem *problem) {
 }
 
 int main(void) {
-    struct section_problem far = {.height = 1.6e-3,
-                                  .dk = 4.3,
-                                  .count = 2,
-                                  .conductors = {{0, 0.3e-3, 35e-6}, {0.6e-3, 0.3e-3, 35e-6}}};
+    struct section_problem far = {
+        .height = 1.6e-3,
+        .dk = 4.3,
+        .count = 2,
+        .conductors = {{0, 0.3e-3, 35e-6, 0}, {0.6e-3, 0.3e-3, 35e-6, 0}}};
     struct section_problem near = far, wide = far, thin = far;
     near.height = 0.19e-3;
     wide.conductors[1].left = 5e-3;

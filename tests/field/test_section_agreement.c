@@ -20,7 +20,7 @@ static struct section_problem random_problem(void) {
     double thickness = draw() < 0.25 ? 0 : between(9e-6, 105e-6), x = 0;
     for (size_t i = 0; i < problem.count; i++) {
         double width = between(0.1e-3, 5e-3);
-        problem.conductors[i] = (struct section_conductor){x, width, thickness};
+        problem.conductors[i] = (struct section_conductor){x, width, thickness, 0};
         x += width + between(0.08e-3, 8e-3);
     }
     return problem;
@@ -69,7 +69,7 @@ static void test_a_section_beyond_the_fast_orders_is_not_claimed_to_be_right(voi
         .height = 1e-4,
         .dk = 4.3,
         .count = 3,
-        .conductors = {{0, 2e-4, 35e-6}, {2.1e-4, 5e-3, 35e-6}, {5.22e-3, 2e-4, 35e-6}}};
+        .conductors = {{0, 2e-4, 35e-6, 0}, {2.1e-4, 5e-3, 35e-6, 0}, {5.22e-3, 2e-4, 35e-6, 0}}};
     struct section_solution solved, plain;
     assert_ok(section_solve(&problem, &solved, &error));
     assert_ok(section_solve_plain(&problem, &plain, &error));

@@ -7,7 +7,7 @@ static const struct section_problem sound = {
     .height = 1e-3,
     .dk = 4.3,
     .count = 2,
-    .conductors = {{0, 0.3e-3, 35e-6}, {0.6e-3, 0.3e-3, 35e-6}}};
+    .conductors = {{0, 0.3e-3, 35e-6, 0}, {0.6e-3, 0.3e-3, 35e-6, 0}}};
 
 static void refused(const struct section_problem *problem, const char *expected) {
     struct error error = {0};

@@ -19,8 +19,9 @@ static bool run(double length, bool resistive, bool lossy, double *micro, double
                                    .inductance = {7.1e-7, 2.3e-7, 2.3e-7, 7.1e-7},
                                    .capacitance = {4.7e-11, -1.1e-11, -1.1e-11, 4.7e-11}};
     for (size_t i = 0; i < 2; i++) {
-        problem.near[i] = (struct line_end){25, 0};
-        problem.far[i] = resistive ? (struct line_end){100, 0} : (struct line_end){INFINITY, 5e-12};
+        problem.near[i] = (struct line_end){25, 0, i == 0};
+        problem.far[i] =
+            resistive ? (struct line_end){100, 0, 0} : (struct line_end){INFINITY, 5e-12, 0};
     }
     if (lossy) {
         problem.dc_resistance[0] = problem.dc_resistance[3] = 1.6;
@@ -36,7 +37,7 @@ static bool run(double length, bool resistive, bool lossy, double *micro, double
     for (int k = 0; k < rounds; k++) {
         struct arena *arena = arena_create(&error);
         struct line_response *response =
-            arena == NULL ? NULL : line_response_create(&problem, 0, 1e-9, arena, &error);
+            arena == NULL ? NULL : line_response_create(&problem, 1e-9, arena, &error);
         struct line_peak near, far;
         bool ok = response != NULL && line_response_peaks(response, 1, 1e-9, &near, &far, &error);
         arena_free(arena);

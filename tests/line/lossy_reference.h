@@ -1253,9 +1253,10 @@ static inline struct line_problem lossy_problem_of(const struct lossy_reference 
                                    .df = 0.02,
                                    .material_frequency = 1e9};
     for (size_t i = 0; i < 2; i++) {
-        problem.near[i] = (struct line_end){reference->logic ? 30 : 50, 0};
+        problem.near[i] = (struct line_end){.resistance = reference->logic ? 30 : 50,
+                                            .emf = i == 0 ? 1 : 0};
         problem.far[i] =
-            reference->logic ? (struct line_end){INFINITY, 5e-12} : (struct line_end){50, 0};
+            reference->logic ? (struct line_end){INFINITY, 5e-12, 0} : (struct line_end){50, 0, 0};
     }
     return problem;
 }

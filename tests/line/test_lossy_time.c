@@ -11,11 +11,11 @@ struct prepared {
     struct line_response *response;
 };
 
-static struct prepared prepare(const struct line_problem *problem, size_t driven, double edge) {
+static struct prepared prepare(const struct line_problem *problem, double edge) {
     struct error error = {0};
     struct prepared prepared = {.arena = arena_create(&error)};
     assert_ok(prepared.arena != NULL);
-    prepared.response = line_response_create(problem, driven, edge, prepared.arena, &error);
+    prepared.response = line_response_create(problem, edge, prepared.arena, &error);
     assert_ok(prepared.response != NULL);
     return prepared;
 }
@@ -28,7 +28,7 @@ static void test_eighty_pairs_agree_with_the_laplace_transform(void **state) {
     for (size_t k = 0; k < LOSSY_REFERENCES; k++) {
         const struct lossy_reference *reference = &lossy_references[k];
         struct line_problem problem = lossy_problem_of(reference);
-        struct prepared prepared = prepare(&problem, 0, reference->peak[0].edge);
+        struct prepared prepared = prepare(&problem, reference->peak[0].edge);
         for (size_t p = 0; p < reference->peaks; p++) {
             const struct lossy_peak *want = &reference->peak[p];
             struct error error = {0};
@@ -50,7 +50,7 @@ static void test_one_response_serves_every_edge(void **state) {
     for (size_t k = 0; k < LOSSY_REFERENCES; k += 3) {
         const struct lossy_reference *reference = &lossy_references[k];
         struct line_problem problem = lossy_problem_of(reference);
-        struct prepared fine = prepare(&problem, 0, reference->peak[0].edge / 4);
+        struct prepared fine = prepare(&problem, reference->peak[0].edge / 4);
         for (size_t p = 0; p < reference->peaks; p++) {
             const struct lossy_peak *want = &reference->peak[p];
             struct error error = {0};
@@ -81,9 +81,10 @@ static void test_an_open_cable_of_resistance_and_capacitance_diffuses(void **sta
                                    .inductance = {1e-12},
                                    .capacitance = {1e-10},
                                    .dc_resistance = {1e5}};
+    problem.near[0].emf = 1;
     problem.far[0].resistance = INFINITY;
     const double constant = 1e5 * 1e-10 * 0.01, edge = 0.2 * constant;
-    struct prepared prepared = prepare(&problem, 0, edge);
+    struct prepared prepared = prepare(&problem, edge);
     struct error error = {0};
     enum { SAMPLES = 60 };
     double near[SAMPLES], far[SAMPLES], step = 0.05 * constant;
@@ -112,9 +113,10 @@ static void test_skin_effect_rounds_a_step_to_the_error_function(void **state) {
                                    .capacitance = {delay / z},
                                    .skin_resistance = {skin}};
     problem.near[0].resistance = problem.far[0].resistance = z;
+    problem.near[0].emf = 1;
     const double edge = 0.1e-9, root = skin / sqrt(pi), k = root * length / (2 * z);
     const double gain = exp(delay * length * pow(root / (z * delay), 2) / 8);
-    struct prepared prepared = prepare(&problem, 0, edge);
+    struct prepared prepared = prepare(&problem, edge);
     struct error error = {0};
     enum { SAMPLES = 520 };
     static double near[SAMPLES], far[SAMPLES];
@@ -147,12 +149,12 @@ static struct line_problem three_lossy_conductors(void) {
                                    6e-11},
         .df = 0.018,
         .material_frequency = 1e9};
-    problem.near[0] = (struct line_end){25, 0};
-    problem.far[0] = (struct line_end){INFINITY, 4e-12};
-    problem.near[1] = (struct line_end){1000, 3e-12};
-    problem.far[1] = (struct line_end){40, 0};
-    problem.near[2] = (struct line_end){60, 0};
-    problem.far[2] = (struct line_end){2000, 2e-12};
+    problem.near[0] = (struct line_end){25, 0, 1};
+    problem.far[0] = (struct line_end){INFINITY, 4e-12, 0};
+    problem.near[1] = (struct line_end){1000, 3e-12, 0};
+    problem.far[1] = (struct line_end){40, 0, 0};
+    problem.near[2] = (struct line_end){60, 0, 0};
+    problem.far[2] = (struct line_end){2000, 2e-12, 0};
     return problem;
 }
 
@@ -166,7 +168,7 @@ static void test_three_conductors_agree_with_a_fourier_series(void **state) {
     for (size_t h = 1; h < HARMONICS; h += 2) {
         double w = 2 * pi * (double)h / period;
         double complex near[3], far[3];
-        assert_ok(line_frequency_response(&problem, 0, w / (2 * pi), near, far, &error));
+        assert_ok(line_frequency_response(&problem, w / (2 * pi), near, far, &error));
         /* Of a square wave between -1/2 and 1/2 with ramps that start at 0 and at half a period. */
         double complex emf = 2 / (I * w * period) * (1 - cexp(-I * w * edge)) / (I * w * edge);
         for (size_t i = 0; i < SAMPLES; i++) {
@@ -177,7 +179,7 @@ static void test_three_conductors_agree_with_a_fourier_series(void **state) {
             }
         }
     }
-    struct prepared prepared = prepare(&problem, 0, edge);
+    struct prepared prepared = prepare(&problem, edge);
     static double near[SAMPLES * STRIDE], far[SAMPLES * STRIDE];
     for (size_t c = 1; c < 3; c++) {
         struct line_peak peak[2];
@@ -206,7 +208,7 @@ static void test_vanishing_loss_is_no_loss(void **state) {
             lossless.dielectric_capacitance[i] = 0;
         }
         const double edge = 0.5e-9;
-        struct prepared one = prepare(&lossless, 0, edge), other = prepare(&lossy, 0, edge);
+        struct prepared one = prepare(&lossless, edge), other = prepare(&lossy, edge);
         static const double edges[] = {0.5e-9, 0.73e-9, 1e-9, 2.2e-9};
         for (size_t e = 0; e < 4; e++) {
             struct error error = {0};
@@ -219,7 +221,7 @@ static void test_vanishing_loss_is_no_loss(void **state) {
                     print_error("%s, edge %g, end %zu: claimed %g, %g\n", lossy_references[k].name,
                                 edges[e], end, got[end].error, want[end].error);
                 assert_close(got[end].highest, want[end].highest, got[end].error + want[end].error);
-                assert_true(got[end].error < 1e-2);
+                assert_true(got[end].error < 2e-2);
             }
         }
         arena_free(one.arena);
@@ -235,7 +237,7 @@ static void test_everything_comes_to_rest(void **state) {
     static double near[SAMPLES], far[SAMPLES];
     for (size_t k = 0; k < LOSSY_REFERENCES; k += 5) {
         struct line_problem problem = lossy_problem_of(&lossy_references[k]);
-        struct prepared prepared = prepare(&problem, 0, 0.5e-9);
+        struct prepared prepared = prepare(&problem, 0.5e-9);
         for (size_t victim = 0; victim < 2; victim++) {
             struct error error = {0};
             assert_ok(line_response_samples(prepared.response, victim, 0.5e-9, 0.1e-9, SAMPLES,
@@ -257,7 +259,7 @@ static void test_sequences_on_a_lossy_line(void **state) {
     (void)state;
     for (size_t k = 41; k < LOSSY_REFERENCES; k += 8) {
         struct line_problem problem = lossy_problem_of(&lossy_references[k]);
-        struct prepared prepared = prepare(&problem, 0, 0.5e-9);
+        struct prepared prepared = prepare(&problem, 0.5e-9);
         struct error error = {0};
         struct line_peak peak[2];
         struct line_sequence sequence[2];

@@ -4,8 +4,8 @@
 #include "stepping.h"
 
 static const struct line_end ends[] = {
-    {25, 0},     {100, 0},      {1000, 10e-12}, {INFINITY, 5e-12},
-    {50, 2e-12}, {1e5, 22e-12}, {INFINITY, 0},  {200, 100e-12},
+    {25, 0, 0},     {100, 0, 0},      {1000, 10e-12, 0}, {INFINITY, 5e-12, 0},
+    {50, 2e-12, 0}, {1e5, 22e-12, 0}, {INFINITY, 0, 0},  {200, 100e-12, 0},
 };
 enum { ENDS = sizeof ends / sizeof *ends };
 
@@ -43,11 +43,12 @@ static void test_peaks_agree_with_fine_stepping(void **state) {
             problem.near[i] = ends[cases[k].near[i]];
             problem.far[i] = ends[cases[k].far[i]];
         }
+        problem.near[0].emf = 1;
         struct error error = {0};
         struct arena *arena = arena_create(&error);
         assert_ok(arena != NULL);
         struct line_response *response =
-            line_response_create(&problem, 0, cases[k].edge, arena, &error);
+            line_response_create(&problem, cases[k].edge, arena, &error);
         assert_ok(response != NULL);
         struct line_peak near, far;
         assert_ok(line_response_peaks(response, 1, cases[k].edge, &near, &far, &error));
@@ -84,11 +85,12 @@ static void test_no_combination_of_ends_runs_away(void **state) {
         for (size_t i = 0; i < 2; i++)
             if (problem.near[i].resistance > 1e4)
                 problem.near[i].resistance = 40;
+        problem.near[0].emf = 1;
         struct error error = {0};
         struct arena *arena = arena_create(&error);
         assert_ok(arena != NULL);
         double edge = edges[combination % 2];
-        struct line_response *response = line_response_create(&problem, 0, edge, arena, &error);
+        struct line_response *response = line_response_create(&problem, edge, arena, &error);
         assert_ok(response != NULL);
         struct line_peak near, far;
         assert_ok(line_response_peaks(response, 1, edge, &near, &far, &error));

@@ -6,8 +6,8 @@
 
 static struct section_problem pair(double gap) {
     struct section_problem problem = {.height = 0.2e-3, .dk = 4.3, .count = 2};
-    problem.conductors[0] = (struct section_conductor){-0.3e-3, 0.3e-3, 35e-6};
-    problem.conductors[1] = (struct section_conductor){gap, 0.3e-3, 35e-6};
+    problem.conductors[0] = (struct section_conductor){-0.3e-3, 0.3e-3, 35e-6, 0};
+    problem.conductors[1] = (struct section_conductor){gap, 0.3e-3, 35e-6, 0};
     return problem;
 }
 

@@ -129,6 +129,7 @@ static inline void ask(struct question *question) {
                           .region = &region,
                           .at_most = question->rule.condition.at_most,
                           .limit = question->rule.condition.limit,
+                          .share = question->rule.condition.share,
                           .reference = question->rule.condition.against == STUDY_REFERENCE
                                            ? &question->rule.reference
                                            : NULL};

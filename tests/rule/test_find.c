@@ -408,6 +408,10 @@ static void test_a_reference_board_is_compared_in_the_same_situation(void **stat
     /* gap >= 0.3 mm * 0.77 / 0.19 = 1.2158 mm, the reference at its nominal value */
     assert_int_equal(q.finding.status, GUIDELINE_FOUND);
     assert_int_equal(q.finding.multiple, 13);
+    /* 0.8 of it: 1.5197 mm */
+    q.rule.condition.share = 0.8;
+    ask(&q);
+    assert_int_equal(q.finding.multiple, 16);
 }
 
 static void test_a_reference_on_the_same_board_stands_at_its_nominal_value(void **state) {
