@@ -6,8 +6,6 @@
 /* Inputs that several models share, declared once so that their names, ranges and meanings agree.
  */
 
-#define BOARD_LOSS_NOT_YET "losses are not computed by this version (lossless lines)"
-
 #define BOARD_HEIGHT                                                                               \
     {                                                                                              \
         "height", "foot of the trace to the top of the plane", DIMENSION_LENGTH, MODEL_SHAPE, NAN, \
@@ -35,13 +33,13 @@
     }
 #define BOARD_DF                                                                                   \
     {                                                                                              \
-        "df", "loss tangent of the board", DIMENSION_NUMBER, MODEL_DRIVE, 0, 0, 0.2, false, NULL,  \
-            NULL, 0, BOARD_LOSS_NOT_YET                                                            \
+        "df", "loss tangent of the board, its mask and what fills it; 0 = lossless",               \
+            DIMENSION_NUMBER, MODEL_SHAPE, 0, 0, 0.2, false, NULL, NULL, 0, NULL                   \
     }
 #define BOARD_MATERIAL_FREQUENCY                                                                   \
     {                                                                                              \
         "material_frequency", "frequency at which dk and df hold", DIMENSION_FREQUENCY,            \
-            MODEL_DRIVE, 1e9, 1e3, 100e9, false, NULL, NULL, 0, BOARD_LOSS_NOT_YET                 \
+            MODEL_DRIVE, 1e9, 1e3, 100e9, false, NULL, NULL, 0, NULL                               \
     }
 #define BOARD_MASK                                                                                 \
     {                                                                                              \
@@ -71,7 +69,7 @@
 #define BOARD_FREQUENCY                                                                            \
     {                                                                                              \
         "frequency", "frequency of resistance and attenuation", DIMENSION_FREQUENCY, MODEL_DRIVE,  \
-            1e9, 1e3, 100e9, false, NULL, NULL, 0, BOARD_LOSS_NOT_YET                              \
+            1e9, 1e3, 100e9, false, NULL, NULL, 0, NULL                                            \
     }
 
 enum board_flag {
@@ -94,7 +92,14 @@ extern const struct model_flag board_flags[BOARD_FLAG_COUNT];
 #define BOARD_SECTION_VALIDITY                                                                     \
     "Quasi-TEM: the section must be small against the wavelength. Planes are uncut, perfectly "    \
     "conducting and infinite but for the edge that is given; solder mask is as thick over the "    \
-    "copper as beside it; no loss."
+    "copper as beside it."
+
+#define BOARD_LOSS_METHOD                                                                          \
+    "Skin resistance of trace and plane follows from the growth of the inductance in air when "    \
+    "their walls recede (the incremental-inductance rule, Wheeler 1942); the dielectric is that "  \
+    "of Djordjevic et al. 2001, causal, with the given values at the material frequency."
+#define BOARD_LOSS_VALIDITY                                                                        \
+    "Loss: copper thicker than a few skin depths, smooth; one loss tangent for all dielectrics."
 
 /* The board that a section lies on, as a model's inputs give it; what is 0 is not there. */
 struct board {

@@ -40,9 +40,13 @@ static void transform(const struct combinations *combinations, size_t traces, co
 
 struct coupled_fold coupled_fold(const struct coupled_set *set) {
     struct combinations combinations = combinations_of(set);
-    struct coupled_fold fold = {.count = combinations.count};
+    struct coupled_fold fold = {
+        .count = combinations.count, .df = set->df, .material_frequency = set->material_frequency};
     transform(&combinations, set->count, set->inductance, fold.inductance);
     transform(&combinations, set->count, set->capacitance, fold.capacitance);
+    transform(&combinations, set->count, set->dc_resistance, fold.dc_resistance);
+    transform(&combinations, set->count, set->skin_resistance, fold.skin_resistance);
+    transform(&combinations, set->count, set->dielectric_capacitance, fold.dielectric_capacitance);
     for (size_t a = 0; a < fold.count; a++)
         for (size_t i = 0; i < set->count && a != COUPLED_VICTIM; i++)
             fold.emf[a] += combinations.share[i][a];
@@ -54,10 +58,14 @@ struct line_problem coupled_fold_line(const struct coupled_fold *fold, double le
     memset(&problem, 0, sizeof problem); /* the worker compares bytes */
     problem.count = fold->count;
     problem.length = length;
-    memcpy(problem.inductance, fold->inductance,
-           fold->count * fold->count * sizeof *problem.inductance);
-    memcpy(problem.capacitance, fold->capacitance,
-           fold->count * fold->count * sizeof *problem.capacitance);
+    size_t bytes = fold->count * fold->count * sizeof *problem.inductance;
+    memcpy(problem.inductance, fold->inductance, bytes);
+    memcpy(problem.capacitance, fold->capacitance, bytes);
+    memcpy(problem.dc_resistance, fold->dc_resistance, bytes);
+    memcpy(problem.skin_resistance, fold->skin_resistance, bytes);
+    memcpy(problem.dielectric_capacitance, fold->dielectric_capacitance, bytes);
+    problem.df = fold->df;
+    problem.material_frequency = fold->material_frequency;
     return problem;
 }
 

@@ -15,17 +15,26 @@ struct coupled_set {
     double inductance[COUPLED_MOST * COUPLED_MOST];  /* H/m */
     double capacitance[COUPLED_MOST * COUPLED_MOST]; /* F/m */
     double error;                                    /* relative, of the entries */
+    /* Loss as in line.h, all zero without. */
+    double dc_resistance[COUPLED_MOST * COUPLED_MOST];          /* ohm/m */
+    double skin_resistance[COUPLED_MOST * COUPLED_MOST];        /* ohm/m/sqrt(Hz) */
+    double dielectric_capacitance[COUPLED_MOST * COUPLED_MOST]; /* F/m */
+    double df, material_frequency;
 };
 
 /* What of it can reach the victim.  In a mirrored set only what is alike on both sides does: with
- * the orthonormal combinations (0 + 2)/sqrt 2 and (3 + 4)/sqrt 2 in place of the traces, L and C
- * fall apart into a set with the victim, of 2 or 3, and one without it, which is left out.  Ends
- * that are alike keep their values, EMFs of 1 V on both sides become sqrt 2.  The victim stays
+ * the orthonormal combinations (0 + 2)/sqrt 2 and (3 + 4)/sqrt 2 in place of the traces, L, C
+ * and loss fall apart into a set with the victim, of 2 or 3, and one without it, which is left out.
+ * Ends that are alike keep their values, EMFs of 1 V on both sides become sqrt 2.  The victim stays
  * conductor 1. */
 struct coupled_fold {
     size_t count;
     double inductance[COUPLED_MOST * COUPLED_MOST];
     double capacitance[COUPLED_MOST * COUPLED_MOST];
+    double dc_resistance[COUPLED_MOST * COUPLED_MOST];
+    double skin_resistance[COUPLED_MOST * COUPLED_MOST];
+    double dielectric_capacitance[COUPLED_MOST * COUPLED_MOST];
+    double df, material_frequency;
     double emf[COUPLED_MOST]; /* V per volt of swing, of an aggressor that switches */
 };
 struct coupled_fold coupled_fold(const struct coupled_set *set);

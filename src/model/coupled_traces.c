@@ -2,6 +2,7 @@
  * line. */
 
 #include "board_inputs.h"
+#include "board_loss.h"
 #include "coupled_response.h"
 #include "registry.h"
 
@@ -98,7 +99,7 @@ static const struct model_input inputs[INPUT_COUNT] = {
     [DF] = BOARD_DF,
     [MATERIAL_FREQUENCY] = BOARD_MATERIAL_FREQUENCY,
     [COPPER_RESISTIVITY] = COUPLED_RESISTIVITY,
-    [FREQUENCY] = BOARD_FREQUENCY,
+    [FREQUENCY] = COUPLED_FREQUENCY,
     [SWING] = COUPLED_SWING,
     [EDGE] = COUPLED_EDGE,
 };
@@ -107,7 +108,10 @@ enum {
     PREPARED_ERROR,
     PREPARED_INDUCTANCE,
     PREPARED_CAPACITANCE = PREPARED_INDUCTANCE + COUPLED_MOST * COUPLED_MOST,
-    PREPARED_COUNT = PREPARED_CAPACITANCE + COUPLED_MOST * COUPLED_MOST
+    PREPARED_DC = PREPARED_CAPACITANCE + COUPLED_MOST * COUPLED_MOST,
+    PREPARED_SKIN = PREPARED_DC + COUPLED_MOST * COUPLED_MOST,
+    PREPARED_DIELECTRIC = PREPARED_SKIN + COUPLED_MOST * COUPLED_MOST,
+    PREPARED_COUNT = PREPARED_DIELECTRIC + COUPLED_MOST * COUPLED_MOST
 };
 
 static bool has_strip(const double *values) {
@@ -161,7 +165,8 @@ static bool check(const double *values, struct error *error) {
         return false;
     if (has_strip(values))
         narrowest = fmin(narrowest, values[BETWEEN_WIDTH]);
-    return board_check(&board, narrowest, error);
+    return board_check(&board, narrowest, error) &&
+           board_loss_check(values[THICKNESS], values[COPPER_RESISTIVITY], error);
 }
 
 static enum sketch_role strip_role(double between) {
@@ -265,6 +270,14 @@ static const size_t *order_of(const double *values) {
     }
 }
 
+/* The traces in the order of a coupled_set. */
+static void keep(const double *values, size_t count, const double *matrix, double *prepared) {
+    const size_t *order = order_of(values);
+    for (size_t i = 0; i < count; i++)
+        for (size_t j = 0; j < count; j++)
+            prepared[i * count + j] = matrix[order[i] * count + order[j]];
+}
+
 static bool prepare(const double *values, double *prepared, struct model_memo *memo,
                     struct error *error) {
     struct board board = board_of(values);
@@ -275,20 +288,25 @@ static bool prepare(const double *values, double *prepared, struct model_memo *m
     if (!sketch(values, &drawing, error))
         return false;
     board_section(&drawing, &board, &problem, ties);
+    bool dielectric = values[DF] > 0.0, copper = values[COPPER_RESISTIVITY] > 0.0;
+    struct board_loss loss;
     if (!model_memo_section(memo, &problem, &full, error) ||
-        !section_reduce(&full, ties, &traces, error))
+        (dielectric && !section_dielectric_capacitance(&problem, &full, error)) ||
+        !section_reduce(&full, ties, &traces, error) ||
+        (copper && !board_loss(&problem, &full, ties, memo, &loss, error)))
         return error_in(error, "section");
-    const size_t *order = order_of(values);
     size_t count = traces.count;
     for (size_t i = 0; i < PREPARED_COUNT; i++)
         prepared[i] = 0.0;
     prepared[PREPARED_ERROR] = traces.error;
-    for (size_t i = 0; i < count; i++)
-        for (size_t j = 0; j < count; j++) {
-            size_t entry = order[i] * count + order[j];
-            prepared[PREPARED_INDUCTANCE + i * count + j] = traces.inductance[entry];
-            prepared[PREPARED_CAPACITANCE + i * count + j] = traces.capacitance[entry];
-        }
+    keep(values, count, traces.inductance, prepared + PREPARED_INDUCTANCE);
+    keep(values, count, traces.capacitance, prepared + PREPARED_CAPACITANCE);
+    if (dielectric)
+        keep(values, count, traces.dielectric_capacitance, prepared + PREPARED_DIELECTRIC);
+    if (copper) {
+        keep(values, count, loss.dc, prepared + PREPARED_DC);
+        keep(values, count, loss.skin, prepared + PREPARED_SKIN);
+    }
     return true;
 }
 
@@ -298,6 +316,16 @@ static struct coupled_set set_of(const double *values, const double *prepared) {
                               .error = prepared[PREPARED_ERROR]};
     memcpy(set.inductance, prepared + PREPARED_INDUCTANCE, sizeof set.inductance);
     memcpy(set.capacitance, prepared + PREPARED_CAPACITANCE, sizeof set.capacitance);
+    memcpy(set.dielectric_capacitance, prepared + PREPARED_DIELECTRIC,
+           sizeof set.dielectric_capacitance);
+    double resistivity = values[COPPER_RESISTIVITY];
+    double surface = section_surface_resistance(resistivity);
+    for (size_t k = 0; k < COUPLED_MOST * COUPLED_MOST; k++) {
+        set.dc_resistance[k] = resistivity * prepared[PREPARED_DC + k];
+        set.skin_resistance[k] = surface * prepared[PREPARED_SKIN + k];
+    }
+    set.df = values[DF];
+    set.material_frequency = values[MATERIAL_FREQUENCY];
     return set;
 }
 
@@ -336,8 +364,8 @@ const struct model model_coupled_traces = {
     .method = BOARD_SECTION_METHOD " " COUPLED_LINE_METHOD " " COUPLED_SEVERAL_METHOD,
     .validity = BOARD_SECTION_VALIDITY
     " Drivers and receivers are linear; a strip between the traces is tied "
-    "ideally, everywhere or at one point.",
-    .revision = 1,
+    "ideally, everywhere or at one point. " COUPLED_LOSS_VALIDITY,
+    .revision = 2,
     .inputs = inputs,
     .input_count = INPUT_COUNT,
     .outputs = coupled_outputs,
