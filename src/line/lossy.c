@@ -16,6 +16,8 @@ static const double SETTLED = 3e-3, LITTLE = 5e-3, FELT = 5e-4, CONVERGED = 1e-3
 /* Of the first two, for long runs. */
 static const double LONG = 0.3;
 static const double FIRST = 8, NARROWER = 4;
+/* Sigmas within a passage that show its ringing. */
+static const double RING_SIGMAS = 8;
 /* Windows from one late band to the next, and sigmas per window that it follows. */
 static const double LATER = 40, LATE_SIGMAS = 20;
 /* Twice, for both ends of a ramp, all bands that could follow. */
@@ -242,6 +244,49 @@ static bool next_band(struct builder *builder, double *felt) {
     return wanted;
 }
 
+/* Adds band k, `felt` seconds long, or longer while it has not died at its end; only the next
+ * broader one was known when that was chosen.  *done: no more can be afforded. */
+static bool add_narrower_band(struct builder *builder, size_t k, double wider, double felt,
+                              struct arena *arena, bool *done, struct error *error) {
+    double sigma = wider / NARROWER, lead = 2 * INVERSION_LEAD * wider;
+    for (;; felt *= 2) {
+        struct arena_mark mark = arena_mark(arena);
+        double period = (felt + lead) / USED, lasting;
+        *done = inversion_frequencies(sigma, period) > MOST_FREQUENCIES;
+        if (*done)
+            return true;
+        if (!add_bands(builder, wider, sigma, period, k, arena, error))
+            return false;
+        next_band(builder, &lasting);
+        if (lasting < 0.9 * felt || inversion_frequencies(sigma, 2 * period) > MOST_FREQUENCIES)
+            return true;
+        arena_rewind(arena, mark);
+    }
+}
+
+/* Ringing of a line that is short against the edge hides below a broad Gaussian. */
+struct ring {
+    double passage, time; /* s, about */
+};
+
+static bool add_narrower_bands(struct builder *builder, const struct ring *ring,
+                               struct arena *arena, struct error *error) {
+    double wider = builder->edge / FIRST;
+    for (size_t k = 1; k < SMOOTH_MOST_BANDS; k++, wider /= NARROWER) {
+        double felt;
+        bool done = false, wanted = next_band(builder, &felt);
+        if (wider > ring->passage / RING_SIGMAS)
+            felt = fmax(felt, ring->time);
+        else if (!wanted)
+            return true;
+        if (!add_narrower_band(builder, k, wider, felt + wider, arena, &done, error))
+            return false;
+        if (done)
+            return true;
+    }
+    return true;
+}
+
 bool lossy_build(const struct line_problem *problem, double shortest_edge, bool long_run,
                  struct arena *arena, struct lossy *lossy, struct error *error) {
     double passage = passage_of(problem), charging = charging_time(problem);
@@ -249,21 +294,12 @@ bool lossy_build(const struct line_problem *problem, double shortest_edge, bool 
                               .lossy = lossy,
                               .edge = shortest_edge,
                               .strict = long_run ? LONG : 1};
-    double window = passages_to_rest(problem) * passage + 6 * shortest_edge;
+    struct ring ring = {passage / sqrt((double)problem->count),
+                        passages_to_rest(problem) * passage};
+    double window = ring.time + 6 * shortest_edge;
     window += fmin(4 * charging, 10 * window); /* longer ones are for the late bands */
     if (!add_settled_bands(&builder, window, arena, error))
         return false;
     note_errors(&builder);
-    double wider = shortest_edge / FIRST;
-    for (size_t k = 1; k < SMOOTH_MOST_BANDS; k++, wider /= NARROWER) {
-        double felt, sigma = wider / NARROWER;
-        if (!next_band(&builder, &felt))
-            break;
-        felt = (felt + 2 * INVERSION_LEAD * wider) / USED;
-        if (inversion_frequencies(sigma, felt) > MOST_FREQUENCIES)
-            break;
-        if (!add_bands(&builder, wider, sigma, felt, k, arena, error))
-            return false;
-    }
-    return true;
+    return add_narrower_bands(&builder, &ring, arena, error);
 }
