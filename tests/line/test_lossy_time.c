@@ -278,6 +278,74 @@ static void test_sequences_on_a_lossy_line(void **state) {
     }
 }
 
+/* Pairs that nobody chose: the peaks of a response prepared for `edge` and of one for a quarter of
+ * it, whose bands, windows and contours all differ, agree within what both claim. */
+static double next_random(unsigned *seed) {
+    *seed = *seed * 1664525u + 1013904223u;
+    return (double)(*seed >> 8) / 16777216.0;
+}
+
+static double pick(unsigned *seed, const double *from, size_t count) {
+    return from[(size_t)(next_random(seed) * (double)count)];
+}
+
+static struct line_problem random_pair(unsigned *seed, double *edge) {
+    static const double resistances[] = {5, 15, 25, 50, 75, 120, 300, 1000, INFINITY};
+    static const double capacitances[] = {0, 0, 1e-12, 5e-12, 22e-12, 100e-12};
+    static const double lengths[] = {1e-3, 5e-3, 20e-3, 0.1, 0.3};
+    static const double edges[] = {0.1e-9, 0.5e-9, 2e-9, 20e-9};
+    double z = 30 + 120 * next_random(seed), speed = 1.5e8 + 1.3e8 * next_random(seed);
+    double inductive = 0.02 + 0.5 * next_random(seed);
+    double capacitive = inductive * (0.3 + 0.7 * next_random(seed));
+    double l = z / speed, c = 1 / (z * speed), uneven = 0.8 + 0.5 * next_random(seed);
+    double m = inductive * l * sqrt(uneven), n = -capacitive * c / sqrt(uneven);
+    double skin = 2e-3 * next_random(seed);
+    struct line_problem problem = {
+        .count = 2,
+        .length = pick(seed, lengths, 5),
+        .inductance = {l, m, m, l * uneven},
+        .capacitance = {c, n, n, c / uneven},
+        .dc_resistance = {5 * next_random(seed), 0, 0, 5 * next_random(seed)},
+        .skin_resistance = {skin, 0.1 * skin, 0.1 * skin, skin * uneven},
+        .dielectric_capacitance = {0.8 * c, 0.8 * n, 0.8 * n, 0.8 * c / uneven},
+        .df = 0.03 * next_random(seed),
+        .material_frequency = 1e9};
+    for (size_t i = 0; i < 2; i++) {
+        problem.near[i] =
+            (struct line_end){pick(seed, resistances, 8), pick(seed, capacitances, 6), 0};
+        problem.far[i] =
+            (struct line_end){pick(seed, resistances, 9), pick(seed, capacitances, 6), 0};
+    }
+    problem.near[0].emf = 1;
+    *edge = fmax(pick(seed, edges, 4), problem.length / speed / 50);
+    return problem;
+}
+
+static void test_random_pairs_agree_with_finer_ones(void **state) {
+    (void)state;
+    unsigned seed = 5;
+    for (size_t k = 0; k < 60; k++) {
+        double edge;
+        struct line_problem problem = random_pair(&seed, &edge);
+        struct prepared one = prepare(&problem, edge), finer = prepare(&problem, edge / 4);
+        static const double factors[] = {1, 3.3, 40};
+        for (size_t e = 0; e < 3; e++) {
+            struct error error = {0};
+            struct line_peak got[2], want[2];
+            assert_ok(
+                line_response_peaks(one.response, 1, factors[e] * edge, &got[0], &got[1], &error));
+            assert_ok(line_response_peaks(finer.response, 1, factors[e] * edge, &want[0], &want[1],
+                                          &error));
+            for (size_t end = 0; end < 2; end++)
+                assert_near(got[end].highest, want[end].highest,
+                            got[end].error * got[end].highest +
+                                want[end].error * want[end].highest + 1e-8);
+        }
+        arena_free(one.arena);
+        arena_free(finer.arena);
+    }
+}
+
 int main(void) {
     const struct CMUnitTest tests[] = {
         cmocka_unit_test(test_eighty_pairs_agree_with_the_laplace_transform),
@@ -288,6 +356,7 @@ int main(void) {
         cmocka_unit_test(test_vanishing_loss_is_no_loss),
         cmocka_unit_test(test_everything_comes_to_rest),
         cmocka_unit_test(test_sequences_on_a_lossy_line),
+        cmocka_unit_test(test_random_pairs_agree_with_finer_ones),
     };
     return cmocka_run_group_tests(tests, NULL, NULL);
 }
