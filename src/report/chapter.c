@@ -204,6 +204,14 @@ static size_t board_index(const struct study *study, const struct study_stackup 
     return b;
 }
 
+/* Flags that only say what was solved leave the curve alone. */
+static bool casts_doubt(const struct model *model, unsigned flags) {
+    for (size_t i = 0; i < model->flag_count; i++)
+        if ((flags >> i & 1u) != 0 && !model->flags[i].informs)
+            return true;
+    return false;
+}
+
 static void add_series(struct flow *flow, const struct guideline_chapter *chapter,
                        const struct study_chart *asked, struct plot *plot) {
     const struct study_vary *vary = &chapter->chapter->vary;
@@ -227,7 +235,7 @@ static void add_series(struct flow *flow, const struct guideline_chapter *chapte
             bool band = has_band(curve, vary->point_count);
             bool *doubtful = arena_new(flow->arena, vary->point_count, bool, flow->error);
             for (size_t i = 0; doubtful != NULL && i < vary->point_count; i++)
-                doubtful[i] = curve->flags[i] != 0;
+                doubtful[i] = casts_doubt(chapter->chapter->model, curve->flags[i]);
             plot->series[plot->chart.series_count] = (struct chart_series){
                 .label = label,
                 .x = vary->points,
