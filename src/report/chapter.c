@@ -74,8 +74,10 @@ static size_t choose(const struct study_chapter *chapter, struct sketch *sketche
 }
 
 static const char *symbol(const char *input) {
-    static const char *const names[][2] = {
-        {"between_width", "strip"}, {"victim_width", "victim"}, {"edge_distance", "to the edge"}};
+    static const char *const names[][2] = {{"between_width", "strip"},
+                                           {"victim_width", "victim"},
+                                           {"edge_distance", "to the edge"},
+                                           {"mask", "solder mask"}};
     for (size_t i = 0; i < sizeof names / sizeof *names; i++)
         if (strcmp(input, names[i][0]) == 0)
             return names[i][1];
