@@ -78,8 +78,7 @@ void board_sketch(struct sketch *sketch, const struct board *board, double edge_
                                                        .left = -INFINITY,
                                                        .right = INFINITY,
                                                        .bottom = height,
-                                                       .top = height + board->mask,
-                                                       .label = "solder mask"});
+                                                       .top = height + board->mask});
 }
 
 void board_sketch_copper(struct sketch *sketch, const struct board *board, enum sketch_role role,
