@@ -17,6 +17,10 @@ static const double graded_smallest = 1e-8, graded_ratio = 0.15;
  * sees of it is a peak, not a tail. */
 static const double beside_share = 0.55;
 
+/* A slab with two faces guides the field out to dk times its height: its faces are cut finer and
+ * farther out. */
+static const double guiding_share = 0.5, guiding_tail = 4, tail = 0.6;
+
 /* The half-plane's end is a branch point of every kernel, sharper than a corner is to a charge. */
 static const double end_share = 0.3;
 
@@ -126,9 +130,15 @@ static double clearance(const struct cutter *cutter, double from, double to, boo
     return least;
 }
 
+static bool is_guiding(const struct cutter *cutter) {
+    enum plane_kind kind = cutter->outline->map.kind;
+    return (kind == PLANE_HALF || kind == PLANE_NONE) && cutter->face->conductor == OUTLINE_NOBODY;
+}
+
 /* Powers are those of the face where the stretch ends at its corners, otherwise 1. */
 static void cut(struct cutter *cutter, double from, double to, double power_from, double power_to) {
-    double length = to - from, reach = cutter->effort->reach;
+    double length = to - from;
+    double reach = cutter->effort->reach * (is_guiding(cutter) ? guiding_share : 1);
     bool corner_from = power_from > 1, corner_to = power_to > 1;
     double middle = 0.5 * (from + to);
     if (cutter->failed)
@@ -163,11 +173,11 @@ static void cut(struct cutter *cutter, double from, double to, double power_from
 
 /* From where on the section is compact as seen along an endless face. */
 static double tail_start(const struct cutter *cutter) {
-    double start = 0;
+    double start = 0, share = is_guiding(cutter) ? guiding_tail : tail;
     for (size_t i = 0; i < cutter->outline->corners; i++) {
         double complex at = (cutter->outline->corner[i] - cutter->face->from) * conj(cutter->along);
         double offset = fabs(cimag(at)), x = creal(at);
-        start = fmax(start, 0.6 * cabs(at));
+        start = fmax(start, share * cabs(at));
         if (x > 0)
             start = fmax(start, 1.3 * x + 0.6 * offset);
     }
