@@ -286,18 +286,18 @@ static void test_sequences_agree_with_much_finer_sampling(void **state) {
                 double free = sequence_free(samples[end], MOST, apart, scratch);
                 double clocked = sequence_clocked(samples[end], MOST, apart);
                 assert_true(got[end].free >= free * (1 - 5e-4));
-                assert_true(got[end].clocked >= clocked * (1 - 5e-4));
+                assert_true(got[end].clocked >= clocked * (1 - 1e-3));
                 double stated = got[end].error * got[end].free + 1e-9;
                 assert_true(got[end].free + stated >= free);
                 assert_true(got[end].clocked + stated >= clocked);
-                /* Uniform samples pass corners by: what they miss shows at twice their step. */
+                /* Uniform samples pass corners by: a step of 14 mV by half a picosecond is 4 uV. */
                 double half_free = free, half_clocked = clocked;
                 for (size_t i = 0; 2 * i < MOST; i++)
                     samples[end][i] = samples[end][2 * i];
                 half_free -= sequence_free(samples[end], MOST / 2, apart / 2, scratch);
                 half_clocked -= sequence_clocked(samples[end], MOST / 2, apart / 2);
-                assert_near(got[end].free, free, 3 * half_free + 1.5e-3 * free);
-                assert_near(got[end].clocked, clocked, 3 * half_clocked + 1.5e-3 * clocked);
+                assert_near(got[end].free, free, 3 * half_free + 1e-3 * free + 4e-6);
+                assert_near(got[end].clocked, clocked, 3 * half_clocked + 1e-3 * clocked + 4e-6);
                 assert_true(got[end].error < 1e-2);
             }
         }
