@@ -109,10 +109,11 @@ bool line_response_peaks(const struct line_response *response, size_t victim, do
  *   free     edges of alternating sign, any two at least `bit_time` apart
  *   clocked  edges on whole multiples of `bit_time`, worst over the phase of the observation
  * `free` never grows with bit_time; `clocked` may.  Exact for the sampled response (32 samples an
- * edge, more where it rings faster), and no less than a single edge; `error` is the relative change
- * on twice the sample step, of the larger, and what the response may still hold after its end.
- * Fails: ERROR_INPUT when bit_time is not above 0 or so short against the ringing that more than a
- * million samples would be needed; ERROR_MEMORY. */
+ * edge, more where it rings faster, its extrema and corners among them), within 1e-3 of much finer
+ * sampling (test_sequence.c), and no less than a single edge; `error` is relative, of the larger:
+ * of the response, of leaving every other sample out, and of what the response may still hold after
+ * its end.  Fails: ERROR_INPUT when bit_time is not above 0 or so short against the ringing that
+ * more than a million samples would be needed; ERROR_MEMORY. */
 struct line_sequence {
     double free, clocked;
     double error;

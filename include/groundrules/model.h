@@ -47,6 +47,7 @@ struct model_output {
 struct model_flag {
     const char *name;    /* "electrically-wide" */
     const char *meaning; /* one sentence for the document */
+    bool informs;        /* says what was solved; the number is as good as any */
 };
 
 struct model_memo;   /* solved sections and loops, shared by all threads */

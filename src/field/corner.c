@@ -55,3 +55,11 @@ double corner_exponent(const struct corner_sector *sectors, size_t count, bool m
     }
     return 1;
 }
+
+double corner_power(const struct corner_sector *sectors, size_t count, bool metal) {
+    double nu = corner_exponent(sectors, count, metal);
+    if (nu > 1 - 1e-6)
+        return 1;
+    bool single = metal && !(count > 1 && mismatch(sectors, count, metal, 1.99 * nu) > 0);
+    return single ? 1 / nu : 2 / nu;
+}

@@ -17,4 +17,10 @@ struct corner_sector {
  * false position to 1e-13.  count >= 1. */
 double corner_exponent(const struct corner_sector *sectors, size_t count, bool metal);
 
+/* The power a of the mapping x = s^a after which charge at the corner is smooth in s: 1 without a
+ * corner, else 1/nu, whose powers of s are 0 and next/nu - 1; where the next exponent is below
+ * twice the first (always without metal, where exponents come in pairs nu and about 2 - nu) that is
+ * too rough, and 2/nu is taken. */
+double corner_power(const struct corner_sector *sectors, size_t count, bool metal);
+
 #endif

@@ -72,9 +72,7 @@ static size_t spokes_at(const struct outline *outline, double complex at, struct
     return count;
 }
 
-/* Reciprocal of the smallest exponent over all fans of dielectric between metal.  Where dielectrics
- * meet without metal exponents come in pairs nu and about 2 - nu, and charge of the second is no
- * power of the mapped variable; twice the reciprocal makes both smooth enough. */
+/* The largest over all fans of dielectric between metal. */
 static double power_at(const struct outline *outline, double complex at) {
     struct spoke spokes[MOST_SPOKES];
     struct corner_sector sectors[MOST_SPOKES];
@@ -84,7 +82,7 @@ static double power_at(const struct outline *outline, double complex at) {
     bool metal = first < count;
     if (!metal && count < 2)
         return 1;
-    double least = 1;
+    double power = 1;
     for (size_t k = 0; k < count; k++) {
         size_t now = ((metal ? first : 0) + k) % count, next = (now + 1) % count;
         double angle = spokes[next].angle - spokes[now].angle;
@@ -93,13 +91,11 @@ static double power_at(const struct outline *outline, double complex at) {
         sectors[fan++] =
             (struct corner_sector){angle <= 0 ? angle + 2 * pi : angle, spokes[now].dk_beyond};
         if (metal && spokes[next].metal) {
-            least = fmin(least, corner_exponent(sectors, fan, true));
+            power = fmax(power, corner_power(sectors, fan, true));
             fan = 0;
         }
     }
-    if (!metal)
-        least = corner_exponent(sectors, fan, false);
-    return least > 1 - 1e-6 ? 1 : metal ? 1 / least : 2 / least;
+    return metal ? power : corner_power(sectors, fan, false);
 }
 
 static void add_corner(struct outline *outline, double complex at) {
@@ -160,17 +156,21 @@ void outline_find_corners(struct outline *outline) {
         add_corner(outline, outline->map.end);
 }
 
-void outline_in_air(const struct outline *outline, struct outline *air) {
-    *air = *outline;
-    air->count = 0;
+void outline_of_free_charge(const struct outline *outline, struct outline *conductors) {
+    *conductors = *outline;
+    conductors->count = 0;
     for (size_t i = 0; i < outline->count; i++) {
         struct outline_face face = outline->face[i];
         if (face.conductor == OUTLINE_NOBODY)
             continue;
         face.left = face.left == OUTLINE_METAL ? OUTLINE_METAL : 1;
         face.right = face.right == OUTLINE_METAL ? OUTLINE_METAL : 1;
-        air->face[air->count++] = face;
+        conductors->face[conductors->count++] = face;
     }
+}
+
+void outline_in_air(const struct outline *outline, struct outline *air) {
+    outline_of_free_charge(outline, air);
     outline_find_corners(air);
 }
 

@@ -24,7 +24,7 @@ struct outline_face {
     bool endless;
     double left, right; /* relative permittivities beside it, seen from `from`, or OUTLINE_METAL */
     size_t conductor;   /* or OUTLINE_NOBODY */
-    double power[2];    /* at from, to: reciprocal of the corner's exponent, 1 = no corner */
+    double power[2];    /* at from, to: corner_power, 1 = no corner */
 };
 
 struct outline {
@@ -48,6 +48,10 @@ void outline_find_corners(struct outline *outline);
 
 /* The same conductors in air. */
 void outline_in_air(const struct outline *outline, struct outline *air);
+
+/* The same conductors with the powers that their corners have here, for a kernel that knows the
+ * dielectrics: only free charge on conductors. */
+void outline_of_free_charge(const struct outline *outline, struct outline *conductors);
 
 /* The part with x <= 0 of an outline that is its own mirror image in x = 0; corners as before. */
 void outline_left_half(const struct outline *outline, struct outline *half);

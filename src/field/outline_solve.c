@@ -24,6 +24,7 @@ enum parity { EVEN, ODD, PARITIES }; /* without symmetry all is in EVEN */
 struct system {
     const struct piece_rules *rules;
     struct plane_map map;
+    const struct slab_kernel *slab; /* or NULL */
     struct piece *pieces;
     size_t count, terms, unknowns, order, heads, conductors;
     bool mirrored, share;
@@ -81,6 +82,14 @@ static void split_parities(double *even, double *odd, const double *mirrored, si
     }
 }
 
+static void integrate(const struct system *s, const struct piece *piece,
+                      const struct piece_target *target, double *potential, double *field) {
+    if (s->slab != NULL)
+        piece_integrate_slab(piece, s->rules, s->slab, target, potential);
+    else
+        piece_integrate(piece, s->rules, &s->map, target, potential, field);
+}
+
 static void look(const struct system *s, const struct piece *piece, size_t node,
                  const struct view *view) {
     double complex z = piece_position(piece, s->rules->test.s[node]), there = -conj(z);
@@ -93,12 +102,11 @@ static void look(const struct system *s, const struct piece *piece, size_t node,
     double *field = view->wants_field ? room + PIECE_MOST_TERMS : NULL;
     for (size_t j = 0; j < s->count; j++) {
         size_t at = node * s->order + j * s->terms;
-        piece_integrate(&s->pieces[j], s->rules, &s->map, &here,
-                        potential != NULL ? view->potential[EVEN] + at : NULL,
-                        field != NULL ? view->field[EVEN] + at : NULL);
+        integrate(s, &s->pieces[j], &here, potential != NULL ? view->potential[EVEN] + at : NULL,
+                  field != NULL ? view->field[EVEN] + at : NULL);
         if (!s->mirrored)
             continue;
-        piece_integrate(&s->pieces[j], s->rules, &s->map, &mirror, potential, field);
+        integrate(s, &s->pieces[j], &mirror, potential, field);
         if (potential != NULL)
             split_parities(view->potential[EVEN] + at, view->potential[ODD] + at, potential,
                            s->terms);
@@ -310,8 +318,8 @@ static bool solve(struct system *s, struct arena *arena, struct outline_solution
 }
 
 bool outline_solve(const struct outline *outline, bool mirrored, bool share,
-                   const struct piece_effort *effort, struct outline_solution *solution,
-                   struct error *error) {
+                   const struct slab_kernel *slab, const struct piece_effort *effort,
+                   struct outline_solution *solution, struct error *error) {
     struct arena *arena = arena_create(error);
     struct piece_rules *rules =
         arena == NULL ? NULL : arena_new(arena, 1, struct piece_rules, error);
@@ -323,6 +331,7 @@ bool outline_solve(const struct outline *outline, bool mirrored, bool share,
                            .map = outline->map,
                            .conductors = outline->conductors,
                            .mirrored = mirrored,
+                           .slab = slab,
                            .share = share};
         piece_rules_make(effort, rules);
         if (mirrored)

@@ -10,12 +10,19 @@
 
 enum { MOST_PIECES = 1000 };
 
-/* Graded boundary elements without mapping: smallest end piece, ratio of neighbours. */
-static const double graded_smallest = 1e-8, graded_ratio = 0.15;
+/* Of neighbours on graded meshes. */
+static const double graded_ratio = 0.12;
 
 /* A plain expansion is that much shorter where the corner lies aside, not on its own face: what it
  * sees of it is a peak, not a tail. */
 static const double beside_share = 0.55;
+
+/* A mapping with a power above two leaves little resolution for the far end. */
+static const double strong_share = 0.6;
+
+/* A slab with two faces guides the field out to dk times its height: its faces are cut finer and
+ * farther out. */
+static const double guiding_share = 0.5, guiding_tail = 4, tail = 0.6;
 
 /* The half-plane's end is a branch point of every kernel, sharper than a corner is to a charge. */
 static const double end_share = 0.3;
@@ -126,9 +133,34 @@ static double clearance(const struct cutter *cutter, double from, double to, boo
     return least;
 }
 
+static double face_distance(const struct outline_face *face, double complex at) {
+    double complex along = face->endless ? face->to : face->to - face->from;
+    double length = cabs(along);
+    double complex z = (at - face->from) * conj(along) / length;
+    double beyond = face->endless ? fmax(0, -creal(z)) : fmax(-creal(z), creal(z) - length);
+    return hypot(fmax(0, beyond), cimag(z));
+}
+
+/* A corner sees its own image in a face beside it. */
+static double image_clearance(const struct cutter *cutter, double complex corner) {
+    double least = INFINITY;
+    for (size_t i = 0; i < cutter->outline->count; i++) {
+        double distance = face_distance(&cutter->outline->face[i], corner);
+        if (distance > 1e-9)
+            least = fmin(least, distance);
+    }
+    return 2 * least;
+}
+
+static bool is_guiding(const struct cutter *cutter) {
+    enum plane_kind kind = cutter->outline->map.kind;
+    return (kind == PLANE_HALF || kind == PLANE_NONE) && cutter->face->conductor == OUTLINE_NOBODY;
+}
+
 /* Powers are those of the face where the stretch ends at its corners, otherwise 1. */
 static void cut(struct cutter *cutter, double from, double to, double power_from, double power_to) {
-    double length = to - from, reach = cutter->effort->reach;
+    double length = to - from;
+    double reach = cutter->effort->reach * (is_guiding(cutter) ? guiding_share : 1);
     bool corner_from = power_from > 1, corner_to = power_to > 1;
     double middle = 0.5 * (from + to);
     if (cutter->failed)
@@ -138,19 +170,25 @@ static void cut(struct cutter *cutter, double from, double to, double power_from
         cut(cutter, middle, to, 1, power_to);
         return;
     }
-    bool done = length <= reach * clearance(cutter, from, to, corner_from, corner_to);
+    double clear = clearance(cutter, from, to, corner_from, corner_to);
+    if (corner_from || corner_to)
+        clear = fmin(clear, image_clearance(cutter, cutter->face->from +
+                                                        cutter->along * (corner_to ? to : from)));
+    if (fmax(power_from, power_to) > 2)
+        clear *= strong_share;
+    bool done = length <= reach * clear;
     double share = 1 / (1 + reach);
-    if (cutter->effort->graded && (corner_from || corner_to)) {
-        done = length < graded_smallest;
+    if (cutter->effort->smallest > 0 && (corner_from || corner_to)) {
+        done = length < cutter->effort->smallest;
         share = graded_ratio;
     }
     if (done) {
         double complex start = cutter->face->from + cutter->along * (corner_to ? to : from);
         add_piece(cutter, (struct piece){.origin = start,
                                          .step = cutter->along * (corner_to ? -length : length),
-                                         .power = cutter->effort->graded ? 1
-                                                  : corner_to            ? power_to
-                                                                         : power_from});
+                                         .power = cutter->effort->smallest > 0 ? 1
+                                                  : corner_to                  ? power_to
+                                                                               : power_from});
         return;
     }
     if (corner_from)
@@ -163,11 +201,11 @@ static void cut(struct cutter *cutter, double from, double to, double power_from
 
 /* From where on the section is compact as seen along an endless face. */
 static double tail_start(const struct cutter *cutter) {
-    double start = 0;
+    double start = 0, share = is_guiding(cutter) ? guiding_tail : tail;
     for (size_t i = 0; i < cutter->outline->corners; i++) {
         double complex at = (cutter->outline->corner[i] - cutter->face->from) * conj(cutter->along);
         double offset = fabs(cimag(at)), x = creal(at);
-        start = fmax(start, 0.6 * cabs(at));
+        start = fmax(start, share * cabs(at));
         if (x > 0)
             start = fmax(start, 1.3 * x + 0.6 * offset);
     }

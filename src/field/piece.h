@@ -3,6 +3,7 @@
 
 #include "outline.h"
 #include "plane_map.h"
+#include "slab_kernel.h"
 
 #include <complex.h>
 
@@ -21,8 +22,9 @@ struct piece_effort {
     size_t terms;      /* per piece */
     size_t more_tests; /* nodes of the Galerkin integral beyond the terms */
     size_t far_nodes, near_nodes;
-    double reach; /* a piece is no longer than that many times its distance to the next corner */
-    bool graded;  /* no mapping at corners: pieces shrink geometrically instead */
+    double reach;    /* a piece is no longer than that many times its distance to the next corner */
+    bool images;     /* rectangles and trapezoids on a slab: by its Green's function */
+    double smallest; /* 0: corners are mapped; else pieces shrink geometrically to this length */
 };
 
 struct piece {
@@ -71,5 +73,15 @@ struct piece_target {
 void piece_integrate(const struct piece *piece, const struct piece_rules *rules,
                      const struct plane_map *map, const struct piece_target *target,
                      double *potential, double *field);
+
+/* The same potential with the Green's function of the grounded slab below y = 1 (slab_kernel.h) in
+ * place of the plane's, for free charge on and above it. */
+void piece_integrate_slab(const struct piece *piece, const struct piece_rules *rules,
+                          const struct slab_kernel *kernel, const struct piece_target *target,
+                          double *potential);
+
+/* total[k] += sum over nodes of moment k times value */
+void piece_add_moments(const struct piece_rule *rule, size_t terms, const double *value,
+                       double *total);
 
 #endif

@@ -9,20 +9,28 @@
 #include <math.h>
 #include <string.h>
 
+/* Of the reweighted images, over all wave numbers. */
+static const double image_error = 1e-6;
+
+static bool is_on_slab(const struct section_problem *problem) {
+    return problem->plane == SECTION_PLANE && !(problem->mask > 0) && !(problem->cover > 0);
+}
+
 bool section_is_bare(const struct section_problem *problem) {
     for (size_t i = 0; i < problem->count; i++)
         if (problem->conductors[i].etch > 0)
             return false;
-    return problem->plane == SECTION_PLANE && !(problem->mask > 0) && !(problem->cover > 0);
+    return is_on_slab(problem);
 }
 
 void section_general_effort(int effort, struct piece_effort *chosen) {
     size_t more = (size_t)effort;
     *chosen = (struct piece_effort){.terms = 3 + more,
                                     .more_tests = 1,
-                                    .far_nodes = 6 + 2 * more,
+                                    .far_nodes = 7 + 2 * more,
                                     .near_nodes = 10 + 2 * more,
-                                    .reach = 4};
+                                    .reach = 4,
+                                    .images = true};
 }
 
 void section_general_graded(int effort, struct piece_effort *chosen) {
@@ -31,7 +39,7 @@ void section_general_graded(int effort, struct piece_effort *chosen) {
                                     .far_nodes = 12,
                                     .near_nodes = 20,
                                     .reach = effort > 0 ? 3 : 4,
-                                    .graded = true};
+                                    .smallest = effort > 0 ? 1e-8 : 1e-6};
 }
 
 /* Without a plane the first conductor is the reference. */
@@ -51,31 +59,82 @@ static void keep_share(const struct section_problem *problem, const struct outli
         result->dielectric_capacitance[i] = result->capacitance[i] - share[i];
 }
 
-static bool solve(const struct section_problem *problem, const struct piece_effort *effort,
-                  bool share, struct outline *outline, struct outline *air,
-                  struct section_solution *result, struct error *error) {
+struct outlines {
+    struct outline all, free;
+};
+
+/* With free charge alone the system is symmetric and C stationary in the charge: one term a piece
+ * less gives more digits than total charge has. */
+static struct piece_effort lighter(const struct piece_effort *effort) {
+    struct piece_effort less = *effort;
+    if (effort->smallest > 0)
+        return less;
+    less.terms -= 1;
+    less.far_nodes -= 2;
+    less.near_nodes -= 2;
+    return less;
+}
+
+/* Only free charge on conductors, the dielectrics in the kernel. */
+static bool solve_free(const struct section_problem *problem, const struct piece_effort *effort,
+                       bool air, struct outlines *outlines, double *capacitance, size_t *unknowns,
+                       struct error *error) {
     struct outline_solution solved;
-    bool mirrored = section_outline_mirrored(problem);
-    if (!section_outline(problem, outline, error))
+    struct slab_kernel slab;
+    struct piece_effort less = lighter(effort);
+    double reflection = section_reflection(problem->dk);
+    if (air)
+        outline_in_air(&outlines->all, &outlines->free);
+    else
+        outline_of_free_charge(&outlines->all, &outlines->free);
+    slab_kernel_set(&slab, reflection, section_image_count(reflection, image_error));
+    if (!outline_solve(&outlines->free, section_outline_mirrored(problem), false,
+                       air ? NULL : &slab, &less, &solved, error))
         return false;
-    outline_in_air(outline, air);
-    if (!outline_solve(air, mirrored, false, effort, &solved, error))
+    keep_matrix(problem, solved.capacitance, capacitance);
+    *unknowns = solved.unknowns;
+    return true;
+}
+
+static bool solve_total(const struct section_problem *problem, const struct piece_effort *effort,
+                        bool share, const struct outline *outline, struct section_solution *result,
+                        struct error *error) {
+    struct outline_solution solved;
+    if (!outline_solve(outline, section_outline_mirrored(problem), share, NULL, effort, &solved,
+                       error))
         return false;
-    keep_matrix(problem, solved.capacitance, result->vacuum_capacitance);
-    result->unknowns = solved.unknowns;
-    if (section_outline_homogeneous(problem)) {
-        for (size_t i = 0; i < result->count * result->count; i++) {
-            result->capacitance[i] = problem->dk * result->vacuum_capacitance[i];
-            result->dielectric_capacitance[i] = problem->dk > 1 ? result->capacitance[i] : 0;
-        }
-    } else {
-        if (!outline_solve(outline, mirrored, share, effort, &solved, error))
-            return false;
-        keep_matrix(problem, solved.capacitance, result->capacitance);
+    keep_matrix(problem, solved.capacitance, result->capacitance);
+    if (share)
         keep_share(problem, &solved, result);
-        result->unknowns = solved.unknowns;
+    result->unknowns = solved.unknowns;
+    return true;
+}
+
+static void solve_homogeneous(const struct section_problem *problem,
+                              struct section_solution *result) {
+    for (size_t i = 0; i < result->count * result->count; i++) {
+        result->capacitance[i] = problem->dk * result->vacuum_capacitance[i];
+        result->dielectric_capacitance[i] = problem->dk > 1 ? result->capacitance[i] : 0;
     }
-    return section_inductance(result->count, result->vacuum_capacitance, result->inductance, error);
+}
+
+static bool solve(const struct section_problem *problem, const struct piece_effort *effort,
+                  bool share, struct outlines *outlines, struct section_solution *result,
+                  struct error *error) {
+    if (!section_outline(problem, &outlines->all, error) ||
+        !solve_free(problem, effort, true, outlines, result->vacuum_capacitance, &result->unknowns,
+                    error))
+        return false;
+    bool ok = true;
+    if (section_outline_homogeneous(problem))
+        solve_homogeneous(problem, result);
+    else if (is_on_slab(problem) && effort->images && !share)
+        ok = solve_free(problem, effort, false, outlines, result->capacitance, &result->unknowns,
+                        error);
+    else
+        ok = solve_total(problem, effort, share, &outlines->all, result, error);
+    return ok &&
+           section_inductance(result->count, result->vacuum_capacitance, result->inductance, error);
 }
 
 bool section_general(const struct section_problem *problem, const struct piece_effort *effort,
@@ -83,9 +142,8 @@ bool section_general(const struct section_problem *problem, const struct piece_e
     struct section_solution result = {.error = NAN};
     result.count = problem->count - (problem->plane == SECTION_NO_PLANE ? 1 : 0);
     struct arena *arena = arena_create(error);
-    struct outline *outlines = arena == NULL ? NULL : arena_new(arena, 2, struct outline, error);
-    bool ok =
-        outlines != NULL && solve(problem, effort, share, outlines, outlines + 1, &result, error);
+    struct outlines *outlines = arena == NULL ? NULL : arena_new(arena, 1, struct outlines, error);
+    bool ok = outlines != NULL && solve(problem, effort, share, outlines, &result, error);
     arena_free(arena);
     if (ok)
         *solution = result;

@@ -223,6 +223,27 @@ double response_at(const struct line_response *response, size_t end, size_t vict
                            : curve_response(&response->curve[end][victim], edge, time);
 }
 
+double response_step(const struct line_response *response) {
+    return response->exact ? INFINITY : response->curve[0][0].step;
+}
+
+size_t response_corners(const struct line_response *response, size_t end, size_t victim) {
+    return response->exact ? response->staircase[end].steps : response->curve[end][victim].fronts;
+}
+
+double response_corner(const struct line_response *response, size_t end, size_t victim,
+                       size_t index, double *jump) {
+    if (!response->exact) {
+        const struct curve_front *front = &response->curve[end][victim].front[index];
+        *jump = front->jump[0];
+        return front->time;
+    }
+    const struct staircase *staircase = &response->staircase[end];
+    const double *value = staircase->value + victim * staircase->steps + index;
+    *jump = index > 0 ? value[0] - value[-1] : value[0];
+    return staircase->time[index];
+}
+
 struct line_peak response_peak(const struct line_response *response, size_t end, size_t victim,
                                double edge, double from) {
     if (response->lossy != NULL)

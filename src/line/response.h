@@ -20,6 +20,13 @@ struct line_response {
     double range[2][LINE_MOST_CONDUCTORS], late[2][LINE_MOST_CONDUCTORS];
 };
 
+/* s: step of the grid that resolves it; INFINITY for staircases. */
+double response_step(const struct line_response *response);
+/* Jumps of the step response at one end that are known: times in s, jumps in V. */
+size_t response_corners(const struct line_response *response, size_t end, size_t victim);
+double response_corner(const struct line_response *response, size_t end, size_t victim,
+                       size_t index, double *jump);
+
 /* Largest magnitude at one end from `from` seconds on; without its error. */
 struct line_peak response_peak(const struct line_response *response, size_t end, size_t victim,
                                double edge, double from);

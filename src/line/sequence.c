@@ -1,5 +1,6 @@
 #include "sequence.h"
 
+#include "comb.h"
 #include "response.h"
 
 #include <math.h>
@@ -47,75 +48,35 @@ static double resting_time(const struct line_response *response, size_t end, siz
     return (staircase->steps > 0 ? staircase->time[staircase->steps - 1] : 0) + edge;
 }
 
-/* Samples from `from` on; `apart` is even, so that every other sample makes a sequence too. */
-struct plan {
-    double from, step;
-    size_t count, apart;
-    double *samples; /* [count] */
-    double *scratch; /* [2 (count + apart + 1)] */
-};
-
-/* 32 samples an edge; as many as the ringing needs, which the march resolves, while that is not
- * too dear. */
-static double sample_step(const struct line_response *response, double edge, double longest) {
-    const double per_edge = 32, march_steps = 2, dear = 1e4;
-    double step = edge / per_edge;
-    if (response->exact)
-        return step;
-    double resolved = response->lossy != NULL ? response->lossy->end[0][0].band[0].step
-                                              : march_steps * response->curve[0][0].step;
-    return fmin(step, fmax(resolved, longest / dear));
-}
-
-static bool plan_create(const struct line_response *response, size_t victim, double edge,
-                        double bit_time, double from, struct plan *plan, struct error *error) {
-    const double most = 1e6;
-    double rest =
-        fmax(resting_time(response, 0, victim, edge), resting_time(response, 1, victim, edge));
-    double longest = fmax(rest - from, edge);
-    double apart = fmin(bit_time, longest); /* further apart edges do not meet */
-    double half = fmax(ceil(apart / sample_step(response, edge, longest) / 2), 2);
-    double step = apart / (2 * half), needed = ceil(longest / step) + 2;
-    if (!(needed + 2 * half <= most))
-        return error_set(error, ERROR_INPUT,
-                         "a bit time of %g s against ringing of %g s needs %.0f samples, at most "
-                         "%.0f are taken",
-                         bit_time, longest, needed + 2 * half, most);
-    *plan = (struct plan){
-        .from = from, .step = step, .count = (size_t)needed, .apart = (size_t)(2 * half)};
-    plan->samples = malloc(plan->count * sizeof *plan->samples);
-    plan->scratch = malloc(2 * (plan->count + plan->apart + 1) * sizeof *plan->scratch);
-    if (plan->samples != NULL && plan->scratch != NULL)
-        return true;
-    free(plan->samples);
-    free(plan->scratch);
-    return error_set(error, ERROR_MEMORY, "out of memory");
-}
-
-static void plan_free(struct plan *plan) {
-    free(plan->samples);
-    free(plan->scratch);
-}
-
 struct found {
     double free, clocked;
-    double change; /* of free on every other sample, V */
+    double change; /* without every other uniform phase, V */
 };
 
-static struct found search(const struct line_response *response, size_t end, size_t victim,
-                           double edge, struct plan *plan) {
-    double *samples = plan->samples;
-    for (size_t i = 0; i < plan->count; i++)
-        samples[i] = response_at(response, end, victim, edge, plan->from + (double)i * plan->step);
-    struct found found = {
-        .free = sequence_free(samples, plan->count, plan->apart, plan->scratch),
-        .clocked = sequence_clocked(samples, plan->count, plan->apart),
-    };
-    for (size_t i = 0; 2 * i < plan->count; i++)
-        samples[i] = samples[2 * i];
-    found.change =
-        found.free - sequence_free(samples, (plan->count + 1) / 2, plan->apart / 2, plan->scratch);
-    return found;
+static bool search(const struct line_response *response, size_t end, size_t victim, double edge,
+                   double bit_time, double from, struct found *found, struct error *error) {
+    struct comb comb;
+    double rest = resting_time(response, end, victim, edge);
+    if (!comb_create(response, end, victim, edge, bit_time, from, fmax(rest - from, edge), &comb,
+                     error))
+        return false;
+    size_t count = comb.teeth * comb.phases;
+    double *scratch = malloc(2 * (count + comb.phases + 1) * sizeof *scratch);
+    if (scratch == NULL) {
+        comb_free(&comb);
+        return error_set(error, ERROR_MEMORY, "out of memory");
+    }
+    struct found all = {.free = sequence_free(comb.samples, count, comb.phases, scratch),
+                        .clocked = sequence_clocked(comb.samples, count, comb.phases)};
+    comb_thin(&comb);
+    count = comb.teeth * comb.phases;
+    double thin_free = sequence_free(comb.samples, count, comb.phases, scratch);
+    double thin_clocked = sequence_clocked(comb.samples, count, comb.phases);
+    all.change = fmax(all.free - thin_free, all.clocked - thin_clocked);
+    *found = all;
+    free(scratch);
+    comb_free(&comb);
+    return true;
 }
 
 /* V: what edges `bit_time` apart can add up to after the end of the march, each at most its last
@@ -130,28 +91,36 @@ static double tail(const struct line_response *response, size_t end, size_t vict
     return late / edge / -expm1(-fallen);
 }
 
+/* The response itself is as good as its peak. */
+static double relative_error(const struct line_response *response, size_t end, size_t victim,
+                             double edge, double single) {
+    double error = response->rest_error[end][victim];
+    if (single > 0)
+        error += response_peak_error(response, end, victim, edge, 0) / single;
+    return error;
+}
+
 bool line_response_sequences(const struct line_response *response, size_t victim, double edge,
                              double bit_time, struct line_sequence *near, struct line_sequence *far,
                              struct error *error) {
-    struct plan plan;
+    struct line_sequence worst[2];
     if (!response_check(response, victim, edge, error))
         return false;
     if (!(bit_time > 0 && isfinite(bit_time)))
         return error_set(error, ERROR_INPUT, "bit time is %g s, must be above 0", bit_time);
-    if (!plan_create(response, victim, edge, bit_time, 0, &plan, error))
-        return false;
     for (size_t end = 0; end < 2; end++) {
+        struct found found;
+        if (!search(response, end, victim, edge, bit_time, 0, &found, error))
+            return false;
         double single = response_peak(response, end, victim, edge, 0).highest;
-        struct found found = search(response, end, victim, edge, &plan);
-        struct line_sequence worst = {fmax(found.free, single), fmax(found.clocked, single),
-                                      response->rest_error[end][victim]};
-        if (worst.free > 0)
-            worst.error += (fmax(found.free + found.change - worst.free, 0) +
-                            tail(response, end, victim, edge, bit_time)) /
-                           worst.free;
-        *(end == 0 ? near : far) = worst;
+        worst[end] = (struct line_sequence){fmax(found.free, single), fmax(found.clocked, single),
+                                            relative_error(response, end, victim, edge, single)};
+        if (worst[end].free > 0)
+            worst[end].error +=
+                (found.change + tail(response, end, victim, edge, bit_time)) / worst[end].free;
     }
-    plan_free(&plan);
+    *near = worst[0];
+    *far = worst[1];
     return true;
 }
 
@@ -183,22 +152,25 @@ static bool check_instants(double bit_time, double settling, struct error *error
 bool line_response_settled(const struct line_response *response, size_t victim, double edge,
                            double bit_time, double settling, struct line_settled *near,
                            struct line_settled *far, struct error *error) {
-    struct plan plan = {0};
+    struct line_settled worst[2];
     if (!response_check(response, victim, edge, error) ||
         !check_instants(bit_time, settling, error))
         return false;
-    if (bit_time > 0 && !plan_create(response, victim, edge, bit_time, settling, &plan, error))
-        return false;
     for (size_t end = 0; end < 2; end++) {
-        struct line_settled worst = settled_single(response, end, victim, edge, settling);
-        if (bit_time > 0) {
-            struct found found = search(response, end, victim, edge, &plan);
-            worst.free = fmax(worst.single, found.free);
-            worst.error += fmax(found.free + found.change - worst.free, 0) +
-                           tail(response, end, victim, edge, bit_time);
-        }
-        *(end == 0 ? near : far) = worst;
+        struct found found;
+        worst[end] = settled_single(response, end, victim, edge, settling);
+        if (!(bit_time > 0))
+            continue;
+        if (!search(response, end, victim, edge, bit_time, settling, &found, error))
+            return false;
+        double more = fmax(found.free - worst[end].single, 0);
+        worst[end].free = worst[end].single + more;
+        /* Each further edge adds with what it is off itself. */
+        if (worst[end].single > 0)
+            worst[end].error *= worst[end].free / worst[end].single;
+        worst[end].error += found.change + tail(response, end, victim, edge, bit_time);
     }
-    plan_free(&plan);
+    *near = worst[0];
+    *far = worst[1];
     return true;
 }

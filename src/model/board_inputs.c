@@ -4,19 +4,23 @@
 
 const struct model_flag board_flags[BOARD_FLAG_COUNT] = {
     [BOARD_FLAG_THIN] = {"thin-sheet",
-                         "Copper taken as an infinitely thin sheet: impedance a few percent high."},
+                         "Copper taken as an infinitely thin sheet: impedance a few percent high.",
+                         false},
     [BOARD_FLAG_WIDE_SECTION] =
         {"wide-section",
          "The section is larger than a tenth of the wavelength at the edge's highest "
-         "frequency: the quasi-TEM solution is beyond its validity."},
+         "frequency: the quasi-TEM solution is beyond its validity.",
+         false},
     [BOARD_FLAG_SLOW] =
         {"slow-edge",
          "The edge is so slow that the return current spreads through the plane by its "
-         "resistance: the plane's image is beyond its validity."},
+         "resistance: the plane's image is beyond its validity.",
+         false},
     [BOARD_FLAG_NEAR_EDGE] =
         {"near-plane-edge",
-         "The plane ends within ten heights of a trace: solved with that edge, and only for "
-         "nothing beyond it."},
+         "The plane ends within ten heights of a trace. It is solved with that edge, the laminate "
+         "going on beyond it; what radiates from the edge is not counted.",
+         true},
 };
 
 static const char *length_text(char *text, size_t size, double length) {
@@ -74,8 +78,7 @@ void board_sketch(struct sketch *sketch, const struct board *board, double edge_
                                                        .left = -INFINITY,
                                                        .right = INFINITY,
                                                        .bottom = height,
-                                                       .top = height + board->mask,
-                                                       .label = "solder mask"});
+                                                       .top = height + board->mask});
 }
 
 void board_sketch_copper(struct sketch *sketch, const struct board *board, enum sketch_role role,

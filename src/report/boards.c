@@ -149,7 +149,7 @@ void pages_signals(struct flow *flow) {
         rows[i] = (struct table_row){.cells = cells};
     }
     const struct table_column columns[SIGNAL_COLUMNS] = {
-        [0] = {.most = 120.0}, [7] = {.least = 38.0}, [8] = {.least = 40.0}};
+        [0] = {.most = 80.0}, [7] = {.least = 38.0}, [8] = {.least = 40.0}};
     const struct table_head heads[SIGNAL_COLUMNS] = {
         {"Class", 1},         {"Swing", 1},  {"Edge, as stated", 1},
         {"Edge, 0–100 %", 1}, {"Driver", 1}, {"Receiver load", 1},

@@ -74,8 +74,10 @@ static size_t choose(const struct study_chapter *chapter, struct sketch *sketche
 }
 
 static const char *symbol(const char *input) {
-    static const char *const names[][2] = {
-        {"between_width", "strip"}, {"victim_width", "victim"}, {"edge_distance", "to the edge"}};
+    static const char *const names[][2] = {{"between_width", "strip"},
+                                           {"victim_width", "victim"},
+                                           {"edge_distance", "to the edge"},
+                                           {"mask", "solder mask"}};
     for (size_t i = 0; i < sizeof names / sizeof *names; i++)
         if (strcmp(input, names[i][0]) == 0)
             return names[i][1];
@@ -207,6 +209,14 @@ static size_t board_index(const struct study *study, const struct study_stackup 
     return b;
 }
 
+/* Flags that only say what was solved leave the curve alone. */
+static bool casts_doubt(const struct model *model, unsigned flags) {
+    for (size_t i = 0; i < model->flag_count; i++)
+        if ((flags >> i & 1u) != 0 && !model->flags[i].informs)
+            return true;
+    return false;
+}
+
 static void add_series(struct flow *flow, const struct guideline_chapter *chapter,
                        const struct study_chart *asked, struct plot *plot) {
     const struct study_vary *vary = &chapter->chapter->vary;
@@ -230,7 +240,7 @@ static void add_series(struct flow *flow, const struct guideline_chapter *chapte
             bool band = has_band(curve, vary->point_count);
             bool *doubtful = arena_new(flow->arena, vary->point_count, bool, flow->error);
             for (size_t i = 0; doubtful != NULL && i < vary->point_count; i++)
-                doubtful[i] = curve->flags[i] != 0;
+                doubtful[i] = casts_doubt(chapter->chapter->model, curve->flags[i]);
             plot->series[plot->chart.series_count] = (struct chart_series){
                 .label = label,
                 .x = vary->points,
@@ -444,7 +454,8 @@ static void method(struct flow *flow, const struct guideline_chapter *chapter) {
                           text, words_digits(flow, error, DIMENSION_RATIO, -1));
     for (size_t i = 0; i < model->flag_count; i++)
         if ((flags >> i & 1u) != 0)
-            text = flow_print(flow, "%s Flagged here: %s", text,
+            text = flow_print(flow, "%s %s: %s", text,
+                              model->flags[i].informs ? "Note" : "Flagged here",
                               flow_escape(flow, model->flags[i].meaning));
     double width = flow->page.right - flow->page.left;
     flow_gap(flow, 10.0);

@@ -212,7 +212,7 @@ static void boards_table(struct flow *flow, const struct guideline_chapter *chap
     struct table_head *heads = arena_new(flow->arena, variants + 1, struct table_head, flow->error);
     if (rows == NULL || columns == NULL || heads == NULL)
         return;
-    heads[0].text = words_name(flow, stated->rows.name);
+    heads[0].text = words_capital(flow, stated->rows.name);
     for (size_t v = 0; v < variants; v++) {
         columns[1 + v].align = TABLE_CENTRE;
         heads[1 + v].text = flow_escape(flow, stated->variants[v].label);
@@ -228,7 +228,12 @@ static void boards_table(struct flow *flow, const struct guideline_chapter *chap
         rows[r].cells = cells;
     }
     const struct table_head_row head = {heads, variants + 1};
+    const struct study_chapter *asked = chapter->chapter;
     struct table table = {.name = flow_print(flow, "%s-table", stated->id),
+                          .caption =
+                              flow_print(flow, "%s: %s against %s", flow_escape(flow, stated->id),
+                                         words_name(flow, asked->model->inputs[stated->find].name),
+                                         words_name(flow, stated->rows.name)),
                           .columns = columns,
                           .column_count = variants + 1,
                           .heads = &head,
@@ -240,12 +245,6 @@ static void boards_table(struct flow *flow, const struct guideline_chapter *chap
                           .leading = 1,
                           .stretch = variants > 3};
     flow_gap(flow, 8.0);
-    flow_need(flow, 40.0 + 14.0 * (double)row_count);
-    flow_text(flow, THEME_STRONG,
-              flow_print(flow, "%s: %s against %s", flow_escape(flow, stated->id),
-                         words_name(flow, chapter->chapter->model->inputs[stated->find].name),
-                         words_name(flow, stated->rows.name)));
-    flow_gap(flow, 2.0);
     flow_table(flow, &table);
 }
 

@@ -91,6 +91,7 @@ struct extent {
     double left, right;     /* m, of the finite copper */
     double top, bottom;     /* m, of everything */
     double height;          /* m, of the dielectric */
+    double foot;            /* m, of the copper */
     double thinnest, plane; /* m */
     double end;             /* m, x where a plane ends; INFINITY */
 };
@@ -101,7 +102,7 @@ static bool is_copper(const struct sketch_solid *solid) {
 }
 
 static bool extent_of(const struct sketch *sketch, struct extent *extent, struct error *error) {
-    *extent = (struct extent){INFINITY, -INFINITY, 0, 0, 0, INFINITY, INFINITY, INFINITY};
+    *extent = (struct extent){INFINITY, -INFINITY, 0, 0, 0, INFINITY, INFINITY, INFINITY, INFINITY};
     for (size_t i = 0; i < sketch->solid_count; i++) {
         const struct sketch_solid *solid = &sketch->solids[i];
         extent->top = fmax(extent->top, solid->top);
@@ -114,6 +115,7 @@ static bool extent_of(const struct sketch *sketch, struct extent *extent, struct
             extent->end = solid->right;
         if (!is_copper(solid))
             continue;
+        extent->foot = fmin(extent->foot, solid->bottom);
         extent->thinnest = fmin(extent->thinnest, solid->top - solid->bottom);
         if (isfinite(solid->left))
             extent->left = fmin(extent->left, solid->left);
@@ -143,7 +145,7 @@ static bool labels_fit(const struct drawing_frame *frame, const struct sketch *s
     for (size_t i = 0; i < sketch->solid_count; i++)
         if (is_copper(&sketch->solids[i]) && sketch->solids[i].label != NULL)
             wide += drawing_width(frame, sketch->solids[i].label) + 8;
-    return extent->height * frame->scale >= LABEL_ROOM && wide <= frame->right - frame->left;
+    return extent->foot * frame->scale >= LABEL_ROOM && wide <= frame->right - frame->left;
 }
 
 /* pt that a coating is drawn with, 0 without one. */
@@ -187,7 +189,7 @@ static void set_scale(struct drawing_frame *frame, const struct sketch *sketch,
     double surface = extent->top * frame->scale;
     if (frame->report.copper_enlarged)
         surface =
-            fmax(surface, extent->height * frame->scale + LEAST_COPPER + mask_room(frame, sketch));
+            fmax(surface, extent->foot * frame->scale + LEAST_COPPER + mask_room(frame, sketch));
     if (covered(sketch))
         surface = fmax(surface, extent->height * frame->scale + LEAST_PLANE);
     frame->top = HEADROOM + rows * DRAWING_DIMENSION_ROW + (rows > 0 ? 4 : 0);
@@ -293,24 +295,64 @@ static bool named_before(const struct sketch *sketch, size_t index) {
     return false;
 }
 
-/* Rows of swatches; the baseline of the last one. */
-static double draw_legend(struct drawing_frame *frame, const struct sketch *sketch, double y) {
-    double x = frame->left;
+/* Where the next entry of the legend goes. */
+struct legend {
+    double x, y;
+    bool any;
+};
+
+/* look NULL: text alone. */
+static void add_entry(struct drawing_frame *frame, struct legend *legend,
+                      const struct theme_solid *look, const char *text) {
+    double swatch = look == NULL ? 0 : 16, wide = swatch + drawing_width(frame, text);
+    if (legend->any && legend->x + wide > frame->options->width) {
+        legend->x = frame->left;
+        legend->y += LEGEND_ROW;
+    }
+    if (look != NULL)
+        drawing_solid(frame, look, legend->x + 0.5, legend->y - 5.5, 12, 5.5);
+    drawing_label(frame, text, legend->x + swatch, legend->y, SCENE_LEFT);
+    legend->x += wide + 14;
+    legend->any = true;
+}
+
+static void add_solids(struct drawing_frame *frame, const struct sketch *sketch, bool copper,
+                       struct legend *legend) {
     for (size_t i = 0; i < sketch->solid_count; i++) {
         const struct sketch_solid *solid = &sketch->solids[i];
-        if (solid->label == NULL || named_elsewhere(frame, solid) || named_before(sketch, i))
+        if (solid->label == NULL || named_elsewhere(frame, solid) || named_before(sketch, i) ||
+            (is_copper(solid) && !copper))
             continue;
-        double wide = 16 + drawing_width(frame, solid->label);
-        if (x > frame->left && x + wide > frame->options->width) {
-            x = frame->left;
-            y += LEGEND_ROW;
-        }
         struct theme_solid look = theme_solid(solid->role);
-        drawing_solid(frame, &look, x + 0.5, y - 5.5, 12, 5.5);
-        drawing_label(frame, solid->label, x + 16, y, SCENE_LEFT);
-        x += wide + 14;
+        add_entry(frame, legend, &look, solid->label);
     }
-    return y;
+}
+
+/* Dimensions that found no room beside the picture. */
+static void add_notes(struct drawing_frame *frame, const struct sketch *sketch,
+                      struct legend *legend) {
+    struct theme_solid mask = theme_solid(SKETCH_MASK);
+    for (size_t i = 0; i < sketch->dimension_count; i++) {
+        const struct sketch_dimension *dimension = &sketch->dimensions[i];
+        if (!dimension->vertical || !drawing_dimension_noted(frame, sketch, i))
+            continue;
+        bool of_mask = false;
+        for (size_t k = 0; k < sketch->solid_count; k++)
+            of_mask = of_mask || (sketch->solids[k].role == SKETCH_MASK &&
+                                  sketch->solids[k].bottom == dimension->from &&
+                                  sketch->solids[k].top == dimension->to);
+        add_entry(frame, legend, of_mask ? &mask : NULL, drawing_dimension_text(frame, dimension));
+    }
+}
+
+/* Rows of swatches, copper among them where it is not named in the picture; the baseline of the
+ * last one, or of the row above when there is nothing to say. */
+static double draw_legend(struct drawing_frame *frame, const struct sketch *sketch, bool copper,
+                          double y) {
+    struct legend legend = {.x = frame->left, .y = y + LEGEND_ROW};
+    add_solids(frame, sketch, copper, &legend);
+    add_notes(frame, sketch, &legend);
+    return legend.any ? legend.y : y;
 }
 
 /* The dielectric's and the plane's own names. */
@@ -334,9 +376,7 @@ static double draw_below(struct drawing_frame *frame, const struct sketch *sketc
     bool narrow = frame->right - frame->left < 150;
     drawing_scale_bar(frame, narrow ? frame->options->width : frame->right, y - 2.8,
                       0.3 * (frame->right - frame->left));
-    if (legend) {
-        y = draw_legend(frame, sketch, y + LEGEND_ROW);
-    }
+    y = draw_legend(frame, sketch, legend, y);
     if (frame->report.copper_enlarged || frame->report.plane_enlarged) {
         y += LEGEND_ROW;
         scene_text(frame->scene,

@@ -49,6 +49,9 @@ const char *drawing_dimension_text(struct drawing_frame *frame,
  * vertical ones. */
 size_t drawing_dimension_rows(struct drawing_frame *frame, const struct sketch *sketch);
 double drawing_dimension_room(struct drawing_frame *frame, const struct sketch *sketch);
+/* Whether a vertical dimension is told under the picture instead of drawn beside it. */
+bool drawing_dimension_noted(struct drawing_frame *frame, const struct sketch *sketch,
+                             size_t index);
 /* `surface`: y in pt of what lies highest; rows stand above it. */
 void drawing_dimensions(struct drawing_frame *frame, const struct sketch *sketch, double surface);
 

@@ -158,7 +158,7 @@ static const char *remedy_words(struct flow *flow, const struct study_chapter *c
     if (remedy->kind == GUIDELINE_OTHER_BOARD)
         return flow_print(flow, "on the board “%s” %s", flow_escape(flow, remedy->stackup->name),
                           bound);
-    return flow_print(flow, "%s at a %s of %s", bound, words_name(flow, found->name),
+    return flow_print(flow, "%s at %s of %s", bound, words_article(flow, found->name),
                       words_value(flow, rule->find_smallest ? rule->within.to : rule->within.from,
                                   found->dimension));
 }

@@ -65,6 +65,11 @@ const char *words_name(struct flow *flow, const char *name) {
     return text != NULL ? text : "";
 }
 
+const char *words_article(struct flow *flow, const char *name) {
+    return flow_print(flow, "%s %s", strchr("aeio", name[0]) != NULL ? "an" : "a",
+                      words_name(flow, name));
+}
+
 const char *words_capital(struct flow *flow, const char *name) {
     const char *text = words_name(flow, name);
     if (*text < 'a' || *text > 'z')

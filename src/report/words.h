@@ -20,6 +20,8 @@ const char *words_input(struct flow *flow, const struct model_input *input, doub
 /* "between_width" -> "between width". */
 const char *words_name(struct flow *flow, const char *name);
 /* The same with a capital first letter, for heads. */
+/* "a gap", "an edge distance" */
+const char *words_article(struct flow *flow, const char *name);
 const char *words_capital(struct flow *flow, const char *name);
 const char *words_strength(enum study_strength strength); /* "MUST" */
 

@@ -32,11 +32,27 @@ static void model_entries(const struct model *model) {
 }
 
 int main(void) {
-    static const char *const syntax[] = {
-        "..",           "up to ",    "at least ", " in ",     " points", " points log", " ± ",
-        "+/-",          "10-90",     "open",      "smallest", "largest", "<=",          ">=",
-        "budget",       "reference", "//",        "/*",       "*/",      "\\u0000",     "\\ud83d",
-        "\xEF\xBB\xBF", "1e999",     "-0",        "null",     NULL};
+    static const char *const syntax[] = {"..",        "up to ",
+                                         "at least ", " in ",
+                                         " points",   " points log",
+                                         " ± ",       "+/-",
+                                         "10-90",     "open",
+                                         "smallest",  "largest",
+                                         "<=",        ">=",
+                                         "budget",    "reference",
+                                         "//",        "/*",
+                                         "*/",        "\\u0000",
+                                         "\\ud83d",   "\xEF\xBB\xBF",
+                                         "1e999",     "-0",
+                                         "null",      "groundrules-rules 1",
+                                         "format",    "files",
+                                         "revision",  "cases",
+                                         "case",      "bound",
+                                         "at least",  "inputs",
+                                         "input",     "from",
+                                         "to",        "minus",
+                                         "plus",      "value",
+                                         NULL};
     words(syntax);
     for (size_t i = 0; i < keys_all_count; i++)
         for (size_t k = 0; k < keys_all[i]->count; k++) {
