@@ -10,7 +10,7 @@
 #include <string.h>
 
 /* Of the reweighted images, over all wave numbers. */
-static const double image_error = 1e-6;
+static const double image_error = 5e-6;
 
 static bool is_on_slab(const struct section_problem *problem) {
     return problem->plane == SECTION_PLANE && !(problem->mask > 0) && !(problem->cover > 0);
@@ -27,7 +27,7 @@ void section_general_effort(int effort, struct piece_effort *chosen) {
     size_t more = (size_t)effort;
     *chosen = (struct piece_effort){.terms = 3 + more,
                                     .more_tests = 1,
-                                    .far_nodes = 7 + 2 * more,
+                                    .far_nodes = 6 + 2 * more,
                                     .near_nodes = 10 + 2 * more,
                                     .reach = 4,
                                     .images = true};
@@ -63,25 +63,12 @@ struct outlines {
     struct outline all, free;
 };
 
-/* With free charge alone the system is symmetric and C stationary in the charge: one term a piece
- * less gives more digits than total charge has. */
-static struct piece_effort lighter(const struct piece_effort *effort) {
-    struct piece_effort less = *effort;
-    if (effort->smallest > 0)
-        return less;
-    less.terms -= 1;
-    less.far_nodes -= 2;
-    less.near_nodes -= 2;
-    return less;
-}
-
 /* Only free charge on conductors, the dielectrics in the kernel. */
 static bool solve_free(const struct section_problem *problem, const struct piece_effort *effort,
                        bool air, struct outlines *outlines, double *capacitance, size_t *unknowns,
                        struct error *error) {
     struct outline_solution solved;
     struct slab_kernel slab;
-    struct piece_effort less = lighter(effort);
     double reflection = section_reflection(problem->dk);
     if (air)
         outline_in_air(&outlines->all, &outlines->free);
@@ -89,7 +76,7 @@ static bool solve_free(const struct section_problem *problem, const struct piece
         outline_of_free_charge(&outlines->all, &outlines->free);
     slab_kernel_set(&slab, reflection, section_image_count(reflection, image_error));
     if (!outline_solve(&outlines->free, section_outline_mirrored(problem), false,
-                       air ? NULL : &slab, &less, &solved, error))
+                       air ? NULL : &slab, effort, &solved, error))
         return false;
     keep_matrix(problem, solved.capacitance, capacitance);
     *unknowns = solved.unknowns;
