@@ -50,6 +50,9 @@ static void test_a_bare_board_s_part_is_the_change_with_dk(void **state) {
     for (size_t k = 0; k < 4; k++) {
         struct section_problem problem = reference_problem(reference_named(names[k]));
         check_quotients(&problem, 3e-4);
+        for (size_t i = 0; i < problem.count; i++)
+            problem.conductors[i].etch = 12e-6;
+        check_quotients(&problem, 3e-4);
     }
 }
 
