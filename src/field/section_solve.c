@@ -16,6 +16,10 @@ static const double common_error = 5e-6;
  */
 static const double slow_share = 2;
 
+/* Hard sections are refined further. */
+static const double good_enough = 4e-4;
+enum { MOST_EFFORT = 3 };
+
 /* Of two graded meshes: the smallest end pieces, whose charge is no polynomial. */
 static const double plain_common_error = 3e-6;
 
@@ -51,10 +55,16 @@ bool section_solve_once(const struct section_problem *problem, struct section_so
 static bool refine_general(const struct section_problem *problem, struct section_solution *finer,
                            struct error *error) {
     struct section_solution rough;
-    if (!general_with(problem, 0, false, &rough, error) ||
-        !general_with(problem, 1, false, finer, error))
+    if (!general_with(problem, 0, false, finer, error))
         return false;
-    finer->error = slow_share * section_difference(&rough, finer) + common_error;
+    for (int effort = 1; effort <= MOST_EFFORT; effort++) {
+        rough = *finer;
+        if (!general_with(problem, effort, false, finer, error))
+            return false;
+        finer->error = slow_share * section_difference(&rough, finer) + common_error;
+        if (finer->error < good_enough)
+            break;
+    }
     return true;
 }
 
