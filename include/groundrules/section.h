@@ -74,14 +74,16 @@ bool section_solve_plain(const struct section_problem *problem, struct section_s
  * Everything else: total charge, free and bound, on the copper and on the borders of dielectrics
  * (Wei, Harrington, Mautz, Sarkar 1984), mapped expansions with corner exponents on pieces of every
  * face, exact kernels of a plane, two planes, a half-plane and free space.
- * `section_solve` refines once, in every order, and reports the change plus 5e-6 as the error
- * estimate.  `section_solve_once` is the single solve that the benchmark times (error = NAN). */
+ * `section_solve` refines once, in every order (with additions up to three times, until below
+ * 4e-4), and reports the change (with additions twice the change) plus 5e-6 as the error estimate.
+ * `section_solve_once` is the single solve that the benchmark times (error = NAN). */
 bool section_solve(const struct section_problem *problem, struct section_solution *solution,
                    struct error *error);
 bool section_solve_once(const struct section_problem *problem, struct section_solution *solution,
                         struct error *error);
 
-/* Fills in solution->dielectric_capacitance of a problem's solution, within about 1e-4: from the
+/* Fills in solution->dielectric_capacitance of a problem's solution, within about 1e-4
+ * (small mutual entries 1e-3): from the
  * change of C with dk, or as the part of the energy that is not in air (permittivity 1 has no loss,
  * wherever it is).  Apart, because it takes about as long as a solve. */
 bool section_dielectric_capacitance(const struct section_problem *problem,

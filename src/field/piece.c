@@ -17,6 +17,9 @@ static const double graded_ratio = 0.12;
  * sees of it is a peak, not a tail. */
 static const double beside_share = 0.55;
 
+/* From a piece's middle, in its lengths; beyond, Gauss' rule needs no help. */
+static const double close_by = 1.5;
+
 /* A mapping with a power above two leaves little resolution for the far end. */
 static const double strong_share = 0.6;
 
@@ -102,6 +105,11 @@ static void add_piece(struct cutter *cutter, struct piece piece) {
     cutter->failed = cutter->failed || !make_room(cutter);
     if (cutter->failed)
         return;
+    double complex middle = piece.origin + 0.5 * piece.step;
+    double length = cabs(piece.step);
+    piece.middle_x = creal(middle);
+    piece.middle_y = cimag(middle);
+    piece.close2 = piece.tail ? INFINITY : close_by * close_by * length * length;
     piece.normal = I * cutter->along;
     piece.left = cutter->face->left;
     piece.right = cutter->face->right;

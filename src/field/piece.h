@@ -34,6 +34,8 @@ struct piece {
     double complex normal; /* unit, to the left of its face */
     double left, right;    /* as outline_face */
     size_t conductor;
+    double middle_x, middle_y,
+        close2; /* within the root of close2 its kernel may be near singular */
     double *far_x, *far_y, *near_x, *near_y; /* W at the nodes */
 };
 

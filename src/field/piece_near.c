@@ -45,16 +45,6 @@ void piece_add_roots(const struct piece *piece, double complex z, double complex
     }
 }
 
-bool piece_is_close(const struct piece *piece, double complex z) {
-    if (piece->tail)
-        return true;
-    double complex away = z - piece->origin - 0.5 * piece->step;
-    double distance = creal(away) * creal(away) + cimag(away) * cimag(away);
-    double length =
-        creal(piece->step) * creal(piece->step) + cimag(piece->step) * cimag(piece->step);
-    return distance < 2.25 * length;
-}
-
 /* logarithm[k] = integral of P_k(2s - 1) ln|s* - s| ds, q = integrals of P_k / (s* - s). */
 static void closed_form(double re, double im, size_t terms, double *restrict logarithms,
                         double *restrict q_re, double *restrict q_im) {

@@ -20,7 +20,10 @@ struct piece_roots {
 };
 
 /* Whether the roots of a point may matter. */
-bool piece_is_close(const struct piece *piece, double complex z);
+static inline bool piece_is_close(const struct piece *piece, double complex z) {
+    double dx = creal(z) - piece->middle_x, dy = cimag(z) - piece->middle_y;
+    return dx * dx + dy * dy < piece->close2;
+}
 
 /* Adds the roots of point z that are near enough, with `sign` as the weight of their logarithm and
  * factor / (dz/ds) of their pole. */

@@ -10,7 +10,7 @@
 #include <string.h>
 
 /* Of the reweighted images, over all wave numbers. */
-static const double image_error = 1e-6;
+static const double image_error = 5e-6;
 
 static bool is_on_slab(const struct section_problem *problem) {
     return problem->plane == SECTION_PLANE && !(problem->mask > 0) && !(problem->cover > 0);
@@ -27,7 +27,7 @@ void section_general_effort(int effort, struct piece_effort *chosen) {
     size_t more = (size_t)effort;
     *chosen = (struct piece_effort){.terms = 3 + more,
                                     .more_tests = 1,
-                                    .far_nodes = 7 + 2 * more,
+                                    .far_nodes = 6 + 2 * more,
                                     .near_nodes = 10 + 2 * more,
                                     .reach = 4,
                                     .images = true};
@@ -63,36 +63,41 @@ struct outlines {
     struct outline all, free;
 };
 
-/* With free charge alone the system is symmetric and C stationary in the charge: one term a piece
- * less gives more digits than total charge has. */
-static struct piece_effort lighter(const struct piece_effort *effort) {
-    struct piece_effort less = *effort;
-    if (effort->smallest > 0)
-        return less;
-    less.terms -= 1;
-    less.far_nodes -= 2;
-    less.near_nodes -= 2;
-    return less;
-}
-
-/* Only free charge on conductors, the dielectrics in the kernel. */
-static bool solve_free(const struct section_problem *problem, const struct piece_effort *effort,
-                       bool air, struct outlines *outlines, double *capacitance, size_t *unknowns,
-                       struct error *error) {
+/* Only free charge on conductors, a slab of `dk` in the kernel (1: air). */
+static bool solve_free(const struct section_problem *problem, double dk,
+                       const struct piece_effort *effort, const struct outline *conductors,
+                       double *capacitance, size_t *unknowns, struct error *error) {
     struct outline_solution solved;
     struct slab_kernel slab;
-    struct piece_effort less = lighter(effort);
-    double reflection = section_reflection(problem->dk);
-    if (air)
-        outline_in_air(&outlines->all, &outlines->free);
-    else
-        outline_of_free_charge(&outlines->all, &outlines->free);
+    double reflection = section_reflection(dk);
     slab_kernel_set(&slab, reflection, section_image_count(reflection, image_error));
-    if (!outline_solve(&outlines->free, section_outline_mirrored(problem), false,
-                       air ? NULL : &slab, &less, &solved, error))
+    if (!outline_solve(conductors, section_outline_mirrored(problem), false, dk == 1 ? NULL : &slab,
+                       effort, &solved, error))
         return false;
     keep_matrix(problem, solved.capacitance, capacitance);
     *unknowns = solved.unknowns;
+    return true;
+}
+
+/* C by the slab's images and, if `share`, its change with dk over the same functions. */
+static bool solve_on_slab(const struct section_problem *problem, const struct piece_effort *effort,
+                          bool share, struct outlines *outlines, struct section_solution *result,
+                          struct error *error) {
+    double low[SECTION_MOST_CONDUCTORS * SECTION_MOST_CONDUCTORS];
+    double high[SECTION_MOST_CONDUCTORS * SECTION_MOST_CONDUCTORS];
+    outline_of_free_charge(&outlines->all, &outlines->free);
+    if (!solve_free(problem, problem->dk, effort, &outlines->free, result->capacitance,
+                    &result->unknowns, error))
+        return false;
+    if (!share)
+        return true;
+    if (!solve_free(problem, problem->dk * (1 - SECTION_DK_STEP), effort, &outlines->free, low,
+                    &result->unknowns, error) ||
+        !solve_free(problem, problem->dk * (1 + SECTION_DK_STEP), effort, &outlines->free, high,
+                    &result->unknowns, error))
+        return false;
+    for (size_t i = 0; i < result->count * result->count; i++)
+        result->dielectric_capacitance[i] = (high[i] - low[i]) / (2 * SECTION_DK_STEP);
     return true;
 }
 
@@ -121,16 +126,17 @@ static void solve_homogeneous(const struct section_problem *problem,
 static bool solve(const struct section_problem *problem, const struct piece_effort *effort,
                   bool share, struct outlines *outlines, struct section_solution *result,
                   struct error *error) {
-    if (!section_outline(problem, &outlines->all, error) ||
-        !solve_free(problem, effort, true, outlines, result->vacuum_capacitance, &result->unknowns,
-                    error))
+    if (!section_outline(problem, &outlines->all, error))
+        return false;
+    outline_in_air(&outlines->all, &outlines->free);
+    if (!solve_free(problem, 1, effort, &outlines->free, result->vacuum_capacitance,
+                    &result->unknowns, error))
         return false;
     bool ok = true;
     if (section_outline_homogeneous(problem))
         solve_homogeneous(problem, result);
-    else if (is_on_slab(problem) && effort->images && !share)
-        ok = solve_free(problem, effort, false, outlines, result->capacitance, &result->unknowns,
-                        error);
+    else if (is_on_slab(problem) && effort->images)
+        ok = solve_on_slab(problem, effort, share, outlines, result, error);
     else
         ok = solve_total(problem, effort, share, &outlines->all, result, error);
     return ok &&

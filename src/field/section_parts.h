@@ -5,6 +5,9 @@
 
 /* What the two section solvers share.  Inside, lengths are counted in heights of the foot. */
 
+/* Step in dk of difference quotients, a share of dk: the third derivative is felt below 1e-5. */
+#define SECTION_DK_STEP 0.02
+
 /* Refuses what cannot be solved, saying what, how much and what is allowed. */
 bool section_check(const struct section_problem *problem, struct error *error);
 

@@ -12,11 +12,16 @@
  * tables. */
 static const double common_error = 5e-6;
 
+/* Total charge converges in small steps: the finer of two solves can be as far off as the change.
+ */
+static const double slow_share = 2;
+
+/* Hard sections are refined further. */
+static const double good_enough = 4e-4;
+enum { MOST_EFFORT = 3 };
+
 /* Of two graded meshes: the smallest end pieces, whose charge is no polynomial. */
 static const double plain_common_error = 3e-6;
-
-/* Step in dk of the difference quotient, a share of dk: the third derivative is felt below 1e-5. */
-static const double dk_step = 0.02;
 
 static bool general_with(const struct section_problem *problem, int effort, bool share,
                          struct section_solution *solution, struct error *error) {
@@ -50,10 +55,16 @@ bool section_solve_once(const struct section_problem *problem, struct section_so
 static bool refine_general(const struct section_problem *problem, struct section_solution *finer,
                            struct error *error) {
     struct section_solution rough;
-    if (!general_with(problem, 0, false, &rough, error) ||
-        !general_with(problem, 1, false, finer, error))
+    if (!general_with(problem, 0, false, finer, error))
         return false;
-    finer->error = section_difference(&rough, finer) + common_error;
+    for (int effort = 1; effort <= MOST_EFFORT; effort++) {
+        rough = *finer;
+        if (!general_with(problem, effort, false, finer, error))
+            return false;
+        finer->error = slow_share * section_difference(&rough, finer) + common_error;
+        if (finer->error < good_enough)
+            break;
+    }
     return true;
 }
 
@@ -115,12 +126,12 @@ static bool fast_dielectric(const struct section_problem *problem,
                             struct error *error) {
     struct section_problem less = *problem, more = *problem;
     struct section_solution low, high;
-    less.dk *= 1 - dk_step;
-    more.dk *= 1 + dk_step;
+    less.dk *= 1 - SECTION_DK_STEP;
+    more.dk *= 1 + SECTION_DK_STEP;
     if (!section_fast(&less, orders, &low, error) || !section_fast(&more, orders, &high, error))
         return false;
     for (size_t i = 0; i < problem->count * problem->count; i++)
-        dielectric[i] = (high.capacitance[i] - low.capacitance[i]) / (2 * dk_step);
+        dielectric[i] = (high.capacitance[i] - low.capacitance[i]) / (2 * SECTION_DK_STEP);
     return true;
 }
 

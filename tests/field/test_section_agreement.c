@@ -88,7 +88,7 @@ static void add_something(struct section_problem *problem, size_t kind) {
 static void test_random_sections_with_additions_agree(void **state) {
     (void)state;
     struct error error = {0};
-    for (size_t k = 0; k < 20; k++) {
+    for (size_t k = 0; k < 10; k++) {
         size_t wanted = k % 5 == 3 ? 2 : 1;
         struct section_problem problem = random_problem();
         while (problem.count < wanted)

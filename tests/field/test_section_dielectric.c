@@ -46,11 +46,14 @@ static void check_quotients(const struct section_problem *problem, double relati
 
 static void test_a_bare_board_s_part_is_the_change_with_dk(void **state) {
     (void)state;
-    static const char *const names[] = {"P1", "P4", "P5", "P13"};
-    for (size_t k = 0; k < 4; k++) {
+    static const char *const names[] = {"P1", "P5", "P13"};
+    for (size_t k = 0; k < 3; k++) {
         struct section_problem problem = reference_problem(reference_named(names[k]));
         check_quotients(&problem, 3e-4);
     }
+    struct section_problem etched = reference_problem(reference_named("P1"));
+    etched.conductors[0].etch = 12e-6;
+    check_quotients(&etched, 3e-4);
 }
 
 static void test_with_coating_or_cover_it_is_the_sum_over_all(void **state) {

@@ -127,6 +127,25 @@ static void test_a_coating_that_buries_thin_copper_between_thick_is_refused(void
     assert_int_equal(solution.count, 7);
 }
 
+static void test_every_failing_allocation_is_reported(void **state) {
+    (void)state;
+    struct section_problem p = sound;
+    p.mask = 25e-6;
+    p.mask_dk = 3.5;
+    bool solved = false;
+    size_t calls = 0;
+    while (!solved && calls < 1000) {
+        struct error error = {0};
+        struct section_solution solution = {.count = 7};
+        arena_fail_after(++calls);
+        solved = section_solve(&p, &solution, &error);
+        arena_fail_after(0);
+        assert_int_equal(error.kind, solved ? ERROR_NONE : ERROR_MEMORY);
+        assert_int_equal(solution.count, solved ? 2 : 7);
+    }
+    assert_true(solved && calls > 10);
+}
+
 static void test_a_section_without_signals_cannot_be_reduced(void **state) {
     (void)state;
     struct error error = {0};
@@ -143,6 +162,7 @@ int main(void) {
         cmocka_unit_test(test_what_is_no_section_is_refused_by_name),
         cmocka_unit_test(test_what_cannot_be_added_is_refused_by_name),
         cmocka_unit_test(test_a_coating_that_buries_thin_copper_between_thick_is_refused),
+        cmocka_unit_test(test_every_failing_allocation_is_reported),
         cmocka_unit_test(test_a_section_without_signals_cannot_be_reduced),
     };
     return cmocka_run_group_tests(tests, NULL, NULL);

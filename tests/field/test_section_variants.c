@@ -63,7 +63,7 @@ static void test_signs_symmetry_and_row_sums(void **state) {
             }
             assert_true(sum > 0);
         }
-        assert_true(s.error < 2e-3);
+        assert_true(s.error < 1e-3);
     }
 }
 
