@@ -86,8 +86,9 @@ extern const struct model_flag board_flags[BOARD_FLAG_COUNT];
     "the copper's faces, "                                                                         \
     "with the images of the grounded slab as kernel, once with the laminate and once in air; the " \
     "external "                                                                                    \
-    "inductance follows from the air solution. Every section is solved twice with different "      \
-    "orders and the "                                                                              \
+    "inductance follows from the air solution. With solder mask, a plane above, a plane that "     \
+    "ends or etched copper the charge on the borders of the dielectrics is solved too, with the "  \
+    "exact kernel of the planes. Every section is solved twice with different orders and the "     \
     "difference is carried as its error estimate."
 #define BOARD_SECTION_VALIDITY                                                                     \
     "Quasi-TEM: the section must be small against the wavelength. Planes are uncut, perfectly "    \

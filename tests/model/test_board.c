@@ -34,19 +34,21 @@ static struct posed pose(const char *name, const struct named_value *values, siz
 
 static void test_a_trace_takes_mask_cover_etch_and_the_planes_end(void **state) {
     (void)state;
-    struct named_value values[] = {{"height", 0.5e-3},     {"width", 0.3e-3}, {"thickness", 35e-6},
-                                   {"etch", 15e-6},        {"mask", 25e-6},   {"cover", 0.4e-3},
-                                   {"edge_distance", 1e-3}};
-    struct section_problem problem = pose("trace", values, 7).problem;
+    struct named_value values[] = {{"height", 0.5e-3}, {"width", 0.3e-3}, {"thickness", 35e-6},
+                                   {"etch", 15e-6},    {"mask", 25e-6},   {"edge_distance", 1e-3}};
+    struct section_problem problem = pose("trace", values, 6).problem;
     assert_int_equal(problem.count, 1);
     assert_close(problem.height, 0.5e-3, 1e-12);
     assert_close(problem.conductors[0].etch, 15e-6, 1e-12);
     assert_close(problem.mask, 25e-6, 1e-9);
     assert_false(problem.mask_flat);
-    assert_close(problem.cover, 0.4e-3, 1e-9);
     assert_int_equal(problem.plane, SECTION_PLANE_ENDS);
     double centre = problem.conductors[0].left + problem.conductors[0].width / 2;
     assert_close(problem.plane_end - centre, 1e-3, 1e-9);
+    values[5] = (struct named_value){"cover", 0.4e-3};
+    problem = pose("trace", values, 6).problem;
+    assert_close(problem.cover, 0.4e-3, 1e-9);
+    assert_int_equal(problem.plane, SECTION_PLANE);
     problem = pose("trace", values, 3).problem;
     assert_true(problem.mask == 0 && problem.cover == 0 && problem.conductors[0].etch == 0);
     assert_int_equal(problem.plane, SECTION_PLANE);
@@ -175,7 +177,19 @@ static void test_what_cannot_be_is_refused(void **state) {
     /* The strip is copper too. */
     struct named_value strip[] = {{"height", 0.5e-3}, {"width", 0.3e-3},        {"gap", 0.5e-3},
                                   {"between", 3},     {"between_width", 40e-6}, {"etch", 20e-6}};
-    refused("coupled-traces", strip, 6, "no top");
+    refused("coupled-traces", strip, 6, "tenth");
+}
+
+static void test_a_plane_above_one_that_ends_is_not_yet(void **state) {
+    (void)state;
+    const struct model *model = model_find("trace");
+    struct named_value values[] = {
+        {"height", 0.5e-3}, {"width", 0.3e-3}, {"cover", 0.5e-3}, {"edge_distance", 1e-3}};
+    double inputs[MODEL_MOST_INPUTS];
+    struct error error = {0};
+    fill(model, values, 4, inputs);
+    assert_false(model_check(model, inputs, &error));
+    assert_int_equal(error.kind, ERROR_NOT_YET);
 }
 
 static void test_the_flag_of_a_near_edge_informs(void **state) {
@@ -197,6 +211,7 @@ int main(void) {
         cmocka_unit_test(test_aggressors_lie_as_they_are_declared),
         cmocka_unit_test(test_every_input_of_the_board_makes_a_section_of_its_own),
         cmocka_unit_test(test_what_cannot_be_is_refused),
+        cmocka_unit_test(test_a_plane_above_one_that_ends_is_not_yet),
         cmocka_unit_test(test_the_flag_of_a_near_edge_informs),
     };
     return cmocka_run_group_tests(tests, NULL, NULL);
