@@ -18,8 +18,8 @@ const struct model_flag board_flags[BOARD_FLAG_COUNT] = {
          false},
     [BOARD_FLAG_NEAR_EDGE] =
         {"near-plane-edge",
-         "The plane ends within ten heights of a trace: solved with that edge, and only for "
-         "nothing beyond it.",
+         "The plane ends within ten heights of a trace. It is solved with that edge, the laminate "
+         "going on beyond it; what radiates from the edge is not counted.",
          true},
 };
 
