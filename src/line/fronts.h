@@ -32,6 +32,7 @@ struct fronts {
 
 struct fronts_limit {
     double smallest;  /* fronts below this share of the first one are dropped */
+    double weakest;   /* passages whose strongest front is below this share are not followed */
     size_t most;      /* no more fronts than this */
     double latest;    /* s */
     double scale;     /* s, the time over which derivatives are compared with jumps */

@@ -4,19 +4,27 @@
 
 #include <math.h>
 #include <stdint.h>
+#include <string.h>
 
 /* Shares of the EMF below which a front no longer matters: as exact bounces every front is kept
  * that could still add up to a visible crosstalk; on the grid a front only sharpens what the
  * samples already contain. */
 static const double EXACT_FRONT = 1e-10, GRID_FRONT = 3e-6;
 enum { MOST_EXACT_FRONTS = 20000, MOST_GRID_FRONTS = 4000, MOST_STEPS = 200000 };
-/* Grid steps per fastest time constant of the ends, and per passage of the fastest mode. */
-static const double STEPS_PER_CONSTANT = 16;
-enum { STEPS_PER_PASSAGE = 12, STEPS_PER_SHORT_PASSAGE = 6 };
-/* A passage is short when the shortest edge takes so many of them: hardly more than a lump. */
-static const double SHORT_PASSAGE = 30;
-/* Steps per shortest edge where fronts that no longer are followed blur over a step. */
-static const double STEPS_PER_EDGE = 16;
+/* A passage is followed while its strongest front is above this share of the EMF: all its fronts or
+ * none, since crosstalk is the small difference of modes. */
+static const double GRID_PASSAGE = 1e-2;
+/* Grid steps of the coarsest grid per fastest time constant of the ends, per shortest edge and per
+ * passage of the fastest mode. */
+/* One conductor alone has no crosstalk to tell how good its waves are. */
+static const double STEPS_PER_CONSTANT_ALONE = 8;
+static const double STEPS_PER_CONSTANT = 2, STEPS_PER_EDGE = 6, STEPS_PER_PASSAGE = 3;
+/* The grid is halved, at most so many times, until two agree within a share of the peak and a share
+ * of the EMF. */
+enum { MOST_RUNGS = 5 };
+/* Of the peak and of the EMF: what fronts too weak to be followed may leave on both grids alike. */
+static const double ALIKE = 1e-4, ALIKE_OF_EMF = 1e-7;
+static const double ENOUGH = 2e-4, ENOUGH_OF_EMF = 1e-6;
 /* A capacitance this much faster than the shortest edge is left out. */
 static const double NEGLIGIBLE = 1e-4;
 
@@ -56,68 +64,115 @@ static double final_voltage(const struct line_problem *problem, size_t driven, s
     return isinf(far) ? 1 : near + far > 0 ? far / (near + far) : NAN;
 }
 
-static bool grid_at(const struct line_setup *setup, const struct fronts *fronts, size_t passage,
-                    double window, double edge, size_t exact_steps, struct arena *arena,
-                    struct march *march, struct error *error) {
-    const struct line_modes *modes = &setup->modes;
-    double step = modes->slowness[0] * setup->problem->length / (double)passage;
-    double steps = fmin(ceil(window / step), MOST_STEPS / 2);
-    struct march_setup march_setup = {.modes = modes,
-                                      .length = setup->problem->length,
-                                      .end = {&setup->near, &setup->far},
-                                      .fronts = fronts,
-                                      .step = step,
-                                      .window = (size_t)steps,
-                                      .edge = edge,
-                                      .most_steps = MOST_STEPS,
-                                      .exact_steps = exact_steps};
-    for (size_t end = 0; end < 2; end++)
-        for (size_t k = 0; k < modes->count; k++)
-            march_setup.final[end][k] = final_voltage(setup->problem, setup->driven, k);
-    return march_run(&march_setup, arena, march, error);
-}
+/* One grid and the curves on it. */
+struct rung {
+    size_t steps; /* per passage of the fastest mode */
+    struct march march;
+    struct curve curve[2][LINE_MOST_CONDUCTORS];
+};
 
-static bool build_curves(const struct line_setup *setup, struct arena *arena,
-                         struct line_response *response, struct error *error) {
-    const struct line_problem *problem = setup->problem;
-    double passage = setup->modes.slowness[0] * problem->length;
-    double slowest = setup->modes.slowness[problem->count - 1] * problem->length;
-    double fastest = fmin(setup->near.fastest, setup->far.fastest);
-    size_t steps = passage * SHORT_PASSAGE < response->shortest_edge ? STEPS_PER_SHORT_PASSAGE
-                                                                     : STEPS_PER_PASSAGE;
-    double per_passage = ceil(passage * STEPS_PER_CONSTANT / fastest);
-    double scale = fmin(fastest / STEPS_PER_CONSTANT, passage / (double)steps);
+static bool follow_fronts(const struct line_setup *setup, size_t steps, double edge,
+                          struct arena *arena, struct fronts *fronts, struct error *error) {
+    double passage = setup->modes.slowness[0] * setup->problem->length;
+    double scale = passage / (double)steps;
     /* A front that is dropped is late or early by part of a step; one that is kept with a series
      * that does not converge is wrong by its last term: the lesser evil of the two. */
-    double converged = fmin(fmax(scale / response->shortest_edge, 0.05), 0.2);
+    double converged = fmin(fmax(scale / edge, 0.05), 0.2);
     struct fronts_limit limit = {.smallest = GRID_FRONT,
+                                 .weakest = GRID_PASSAGE,
                                  .most = MOST_GRID_FRONTS,
                                  .latest = INFINITY,
                                  .scale = scale,
                                  .converged = converged};
-    struct fronts fronts;
-    if (!fronts_follow(&setup->modes, problem->length, &setup->near, &setup->far, &limit, arena,
-                       &fronts, error))
-        return false;
-    if (isfinite(fronts.complete_until))
-        per_passage = fmax(per_passage, ceil(passage * STEPS_PER_EDGE / response->shortest_edge));
-    if (per_passage > (double)steps)
-        steps = (size_t)fmin(per_passage, 1e5);
-    steps += steps % 2;
+    return fronts_follow(&setup->modes, setup->problem->length, &setup->near, &setup->far, &limit,
+                         arena, fronts, error);
+}
+
+/* `coarser`: a rung that has told when to end and where all comes to rest; NULL for the first. */
+static bool climb_to(const struct line_setup *setup, size_t steps, double edge,
+                     const struct rung *coarser, struct arena *arena, struct rung *rung,
+                     struct error *error) {
+    const struct line_problem *problem = setup->problem;
+    const struct line_modes *modes = &setup->modes;
+    double slowest = modes->slowness[problem->count - 1] * problem->length;
     double window = fmax(4 * slowest, 2 * settling_time(problem));
-    struct march fine, coarse;
-    if (!grid_at(setup, &fronts, steps, window, response->shortest_edge, 0, arena, &fine, error) ||
-        !grid_at(setup, &fronts, steps / 2, window, response->shortest_edge, fine.samples / 2,
-                 arena, &coarse, error))
+    double step = modes->slowness[0] * problem->length / (double)steps;
+    struct fronts fronts;
+    if (!follow_fronts(setup, steps, edge, arena, &fronts, error))
+        return false;
+    struct march_setup march_setup = {.modes = modes,
+                                      .length = problem->length,
+                                      .end = {&setup->near, &setup->far},
+                                      .fronts = &fronts,
+                                      .step = step,
+                                      .window = (size_t)fmin(ceil(window / step), MOST_STEPS / 2),
+                                      .edge = edge,
+                                      .most_steps = MOST_STEPS};
+    if (coarser != NULL)
+        march_setup.exact_steps = coarser->march.samples * steps / coarser->steps;
+    for (size_t end = 0; end < 2; end++)
+        for (size_t k = 0; k < modes->count; k++)
+            march_setup.final[end][k] = final_voltage(problem, setup->driven, k);
+    rung->steps = steps;
+    if (!march_run(&march_setup, arena, &rung->march, error))
         return false;
     for (size_t end = 0; end < 2; end++) {
-        if (!curves_build(&fine, fine.rest[end], &fronts, end == 0, arena, response->curve[end],
-                          error) ||
-            !curves_build(&coarse, fine.rest[end], &fronts, end == 0, arena, response->coarse[end],
-                          error))
+        if (coarser != NULL)
+            memcpy(rung->march.rest[end], coarser->march.rest[end], sizeof rung->march.rest[end]);
+        if (!curves_build(&rung->march, rung->march.rest[end], &fronts, end == 0, arena,
+                          rung->curve[end], error))
             return false;
-        for (size_t k = 0; k < problem->count; k++)
-            response->rest_error[end][k] = fine.rest[end][k].error;
+    }
+    return true;
+}
+
+/* Whether both grids agree on the peaks of the shortest edge. */
+static bool agree(const struct line_setup *setup, const struct rung *fine,
+                  const struct rung *coarse, double edge) {
+    for (size_t end = 0; end < 2; end++)
+        for (size_t k = 0; k < setup->problem->count; k++) {
+            if (k == setup->driven && setup->problem->count > 1)
+                continue;
+            double peak = curve_peak(&fine->curve[end][k], edge).highest;
+            double other = curve_peak(&coarse->curve[end][k], edge).highest;
+            if (!(fabs(peak - other) <= ENOUGH * peak + ENOUGH_OF_EMF))
+                return false;
+        }
+    return true;
+}
+
+/* The coarsest grid: a passage needs three steps (stepper.c). */
+static size_t first_steps(const struct line_setup *setup, double edge) {
+    double passage = setup->modes.slowness[0] * setup->problem->length;
+    double fastest = fmin(setup->near.fastest, setup->far.fastest);
+    double per_constant =
+        setup->problem->count == 1 ? STEPS_PER_CONSTANT_ALONE : STEPS_PER_CONSTANT;
+    double steps = fmax(passage * per_constant / fastest, passage * STEPS_PER_EDGE / edge);
+    return (size_t)fmin(fmax(ceil(steps), STEPS_PER_PASSAGE), 1e5);
+}
+
+/* Grids, each of half the step of the one before, until two agree. */
+static bool build_curves(const struct line_setup *setup, struct arena *arena,
+                         struct line_response *response, struct error *error) {
+    struct rung rungs[2];
+    double edge = response->shortest_edge;
+    size_t steps = first_steps(setup, edge), fine = 1;
+    if (!climb_to(setup, steps, edge, NULL, arena, &rungs[0], error))
+        return false;
+    for (size_t rung = 1;; rung++) {
+        steps *= 2;
+        fine = rung % 2;
+        if (!climb_to(setup, steps, edge, &rungs[1 - fine], arena, &rungs[fine], error))
+            return false;
+        if (rung == MOST_RUNGS || 2 * rungs[fine].march.samples > MOST_STEPS ||
+            agree(setup, &rungs[fine], &rungs[1 - fine], edge))
+            break;
+    }
+    for (size_t end = 0; end < 2; end++) {
+        memcpy(response->curve[end], rungs[fine].curve[end], sizeof response->curve[end]);
+        memcpy(response->coarse[end], rungs[1 - fine].curve[end], sizeof response->coarse[end]);
+        for (size_t k = 0; k < setup->problem->count; k++)
+            response->rest_error[end][k] = rungs[fine].march.rest[end][k].error;
     }
     return true;
 }
@@ -194,9 +249,9 @@ static struct line_peak peak_at(const struct line_response *response, size_t end
     struct line_peak peak = curve_peak(&response->curve[end][victim], edge);
     struct line_peak coarse = curve_peak(&response->coarse[end][victim], edge);
     /* Fourth order would leave a fifteenth of the difference, fronts that blur all of it. */
-    peak.error = response->rest_error[end][victim];
+    peak.error = response->rest_error[end][victim] + ALIKE;
     if (peak.highest > 0)
-        peak.error += fabs(peak.highest - coarse.highest) / peak.highest;
+        peak.error += (fabs(peak.highest - coarse.highest) + ALIKE_OF_EMF) / peak.highest;
     return peak;
 }
 

@@ -73,8 +73,7 @@ static void sequences_of(const struct line_problem *problem, double edge, double
     struct line_peak near, far;
     struct line_sequence at_near, at_far;
     assert_ok(line_response_peaks(response, 1, edge, &near, &far, &error));
-    assert_ok(
-        line_response_sequences(response, 1, edge, bit_time, &at_near, &at_far, &error));
+    assert_ok(line_response_sequences(response, 1, edge, bit_time, &at_near, &at_far, &error));
     *peak = far;
     *sequence = at_far;
     assert_true(at_near.free >= near.highest * (1 - 1e-3));
@@ -111,7 +110,9 @@ static void test_a_single_edge_understates_what_rings(void **state) {
     }
     assert_true(at[2].free > 2 * single.highest);
     assert_true(at[1].clocked < at[2].clocked);
-    assert_true(at[0].free >= at[1].free && at[1].free >= at[2].free);
+    /* Bit times are sampled with different steps: equal to within that. */
+    assert_true(at[0].free >= at[1].free * (1 - at[1].error));
+    assert_true(at[1].free >= at[2].free * (1 - at[2].error));
 }
 
 /* Edges so far apart that nothing is left of the one before: the single peak. */
