@@ -19,7 +19,7 @@
 enum { MOST_SAMPLES = 64, MOST_WITNESSES = 16 };
 /* Badness above which a hump is climbed, a sample beyond the bound proven, a case kept as witness.
  */
-static const double NEAR_HUMP = -0.25, NEAR_PROOF = -0.15, NEAR_WITNESS = -0.5;
+static const double NEAR_HUMP = -0.25, NEAR_PROOF = -0.15, NEAR_WITNESS = -0.5, VERY_FAR = -0.8;
 /* What lies on the limit holds; rounding must not decide. */
 static const double ROUNDING = 1e-9;
 
@@ -32,6 +32,7 @@ struct finder {
     long samples[MOST_SAMPLES]; /* from first to last */
     struct worst worst[MOST_SAMPLES];
     bool proven[MOST_SAMPLES];
+    bool wavy;            /* the found input makes resonances */
     size_t count, judged; /* judged: samples up to the first that fails */
     struct worst witnesses[MOST_WITNESSES];
     size_t witness_count, oldest;
@@ -139,6 +140,7 @@ static bool probe_at(struct finder *finder, long multiple, struct worst *worst,
 static void place_samples(struct finder *finder) {
     const char *name = finder->judge->solver->model->inputs[finder->rule->find].name;
     bool wavy = strcmp(name, "length") == 0 || strcmp(name, "edge") == 0;
+    finder->wavy = wavy;
     double from = (double)finder->first, to = (double)finder->last;
     double spread = fabs(log(fmax(from, to) / fmax(1.0, fmin(from, to))));
     size_t wanted = spread > 1.0 ? 5 + (size_t)((wavy ? 10.0 : 4.0) * spread) : wavy ? 15 : 8;
@@ -200,6 +202,17 @@ static bool hump_fails(struct finder *finder, size_t i, long *bad, struct error 
     return true;
 }
 
+/* Far from the limit, where what is found makes no resonances, every second sample is left out. */
+static void thin_out(struct finder *finder, size_t i) {
+    if (finder->wavy || i == 0 || i + 2 >= finder->count ||
+        !(finder->worst[i].verdict.badness < VERY_FAR) ||
+        !(finder->worst[i].verdict.badness >= finder->worst[i - 1].verdict.badness))
+        return;
+    memmove(&finder->samples[i + 1], &finder->samples[i + 2],
+            (finder->count - i - 2) * sizeof finder->samples[0]);
+    finder->count--;
+}
+
 /* *bad: the first multiple seen to fail; unchanged when none does. */
 static bool first_failure(struct finder *finder, long *bad, struct error *error) {
     const long none = *bad;
@@ -207,6 +220,7 @@ static bool first_failure(struct finder *finder, long *bad, struct error *error)
         if (!probe_at(finder, finder->samples[i], &finder->worst[i], error))
             return false;
         finder->judged = i + 1;
+        thin_out(finder, i);
         if (i > 0 && !hump_fails(finder, i - 1, bad, error))
             return false;
         if (*bad == none && i + 1 == finder->count && !hump_fails(finder, i, bad, error))

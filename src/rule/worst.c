@@ -20,6 +20,9 @@ static const double BEHIND = 0.15;
 /* A probe that is this far from the limit is not climbed: what may hide between its samples is a
  * matter of percents. */
 static const double FAR = -0.5;
+/* A probe over a bad case's own ends and corners that is so far from the limit is taken as it is:
+ * they do not make a quarter of the limit the whole of it. */
+static const double VERY_FAR = -0.75;
 /* A round that gains less is the last: for most starts, and for the worst in the end. */
 static const double COARSE_GAIN = 2e-3, FINE_GAIN = 5e-4;
 
@@ -157,6 +160,10 @@ bool worst_of(const struct judge *judge, const struct region *region, enum worst
     if (!scan_region(&scan, from, error))
         return false;
     double best = -INFINITY;
+    if (!scan.full && !judge->curve && hint != NULL && scan.best < VERY_FAR) {
+        *found = (struct worst_cases){.cases = {scan.starts[0].worst}, .count = 1};
+        return true;
+    }
     for (size_t i = 0; i < scan.start_count; i++) {
         if (!ends(&scan, &scan.starts[i].worst, error))
             return false;
