@@ -241,19 +241,35 @@ static bool next_block(const struct curve *curve, double edge, struct block *blo
     return true;
 }
 
+/* The largest magnitude and the largest step; lane by lane, so that none waits for the other. */
+static void largest_of(const double *values, size_t count, double *highest, double *steepest) {
+    enum { LANES = 8 };
+    double high[LANES] = {0}, steep[LANES] = {0};
+    size_t k = 0;
+    for (; k + LANES < count; k += LANES)
+        for (size_t lane = 0; lane < LANES; lane++) {
+            double size = fabs(values[k + lane]);
+            double step = fabs(values[k + lane + 1] - values[k + lane]);
+            high[lane] = size > high[lane] ? size : high[lane];
+            steep[lane] = step > steep[lane] ? step : steep[lane];
+        }
+    for (; k < count; k++) {
+        double size = fabs(values[k]), step = k + 1 < count ? fabs(values[k + 1] - values[k]) : 0;
+        high[0] = size > high[0] ? size : high[0];
+        steep[0] = step > steep[0] ? step : steep[0];
+    }
+    for (size_t lane = 0; lane < LANES; lane++) {
+        *highest = high[lane] > *highest ? high[lane] : *highest;
+        *steepest = steep[lane] > *steepest ? steep[lane] : *steepest;
+    }
+}
+
 /* The most that a cell of the block could hold: its largest value and 5/4 of its largest step. */
 static double look_at_block(const struct curve *curve, double edge, const struct block *block,
                             struct line_peak *peak) {
     double values[BLOCK], highest = 0, steepest = 0;
     grid_values(curve, edge, block->falling, block->start, block->count, values);
-    for (size_t k = 0; k < block->count; k++) {
-        double size = fabs(values[k]);
-        highest = size > highest ? size : highest;
-    }
-    for (size_t k = 0; k + 1 < block->count; k++) {
-        double size = fabs(values[k + 1] - values[k]);
-        steepest = size > steepest ? size : steepest;
-    }
+    largest_of(values, block->count, &highest, &steepest);
     if (highest > peak->highest) {
         size_t best = 0;
         while (fabs(values[best]) < highest)

@@ -11,11 +11,13 @@ static bool grid_reserve(struct grid *grid, size_t room, struct arena *arena, st
     if (room <= old)
         return true;
     for (size_t end = 0; end < 2; end++) {
-        double *leaving = arena_new(arena, grid->count * (pad + room), double, error);
-        double *value = arena_new(arena, grid->count * room, double, error);
-        double *sum = watched ? arena_new(arena, grid->count * room, double, error) : NULL;
+        double *leaving = arena_new_unset(arena, grid->count * (pad + room), double, error);
+        double *value = arena_new_unset(arena, grid->count * room, double, error);
+        double *sum = watched ? arena_new_unset(arena, grid->count * room, double, error) : NULL;
         if (leaving == NULL || value == NULL || (watched && sum == NULL))
             return false;
+        for (size_t m = 0; m < grid->count && old == 0; m++)
+            memset(leaving + m * (pad + room), 0, pad * sizeof(double));
         for (size_t m = 0; m < grid->count && old > 0; m++) {
             memcpy(leaving + m * (pad + room), grid->leaving[end] + m * (pad + old),
                    (pad + old) * sizeof(double));
@@ -37,6 +39,8 @@ static void add_up(struct grid *grid, size_t samples) {
         for (size_t k = 0; k < grid->count; k++) {
             const double *value = grid->value[end] + k * grid->room;
             double *sum = grid->sum[end] + k * grid->room;
+            if (grid->summed == 0)
+                sum[0] = 0;
             for (size_t i = grid->summed > 0 ? grid->summed : 1; i < samples; i++)
                 sum[i] = sum[i - 1] + 0.5 * (value[i] + value[i - 1]);
         }
@@ -60,7 +64,7 @@ static bool all_at_rest(struct grid *grid, size_t samples, struct march *march) 
 }
 
 /* Most lines have come to rest within so many windows. */
-enum { FIRST_WINDOWS = 8 };
+enum { FIRST_WINDOWS = 6 };
 
 static bool step_on(struct grid *grid, struct arena *arena, struct march *march,
                     struct error *error) {

@@ -126,28 +126,143 @@ FOR_COUNT void take_block(struct grid *grid, size_t end, size_t from, size_t to,
     local_save(grid, end, count, states, &local);
 }
 
+/* ---- two conductors: both modes, and both conductors, in one register ---- */
+
+typedef double pair __attribute__((vector_size(16)));
+
+struct pair_local {
+    pair gain[2][STENCIL]; /* of a state, modes side by side */
+    double decay[2][2], drive[2];
+    pair voltage_of_emf, leaving_of_emf; /* conductors side by side */
+    pair voltage_of_state[2], leaving_of_state[2];
+    pair voltage_of_wave[2], leaving_of_wave[2];
+};
+
+static struct pair_local pair_load(const struct grid *grid, size_t end, size_t states) {
+    const struct stepper *stepper = &grid->stepper[end];
+    const struct end_system *e = grid->setup->end[end];
+    struct pair_local made = {
+        .voltage_of_emf = {e->voltage_of_emf[0], e->voltage_of_emf[1]},
+        .leaving_of_emf = {e->leaving_of_emf[0], e->leaving_of_emf[1]},
+    };
+    for (size_t j = 0; j < 2; j++) {
+        made.voltage_of_wave[j] = (pair){e->voltage_of_wave[j], e->voltage_of_wave[2 + j]};
+        made.leaving_of_wave[j] = (pair){e->leaving_of_wave[j], e->leaving_of_wave[2 + j]};
+    }
+    for (size_t k = 0; k < states; k++) {
+        made.voltage_of_state[k] = (pair){e->voltage_of_state[k], e->voltage_of_state[states + k]};
+        made.leaving_of_state[k] = (pair){e->leaving_of_state[k], e->leaving_of_state[states + k]};
+        made.drive[k] = stepper->drive[k];
+        for (size_t j = 0; j < states; j++)
+            made.decay[k][j] = stepper->decay[k * states + j];
+        for (size_t s = 0; s < STENCIL; s++)
+            made.gain[k][s] = (pair){stepper->gain[s][k * 2], stepper->gain[s][k * 2 + 1]};
+    }
+    return made;
+}
+
+FOR_COUNT double read_mode(const struct delay *delay, const double *wave) {
+    double sum = delay->weight[1] * wave[0];
+    if (delay->fraction > 0)
+        sum +=
+            delay->weight[0] * wave[-1] + delay->weight[2] * wave[1] + delay->weight[3] * wave[2];
+    return sum;
+}
+
+FOR_COUNT void take_pair_block(struct grid *grid, size_t end, size_t from, size_t to, size_t states,
+                               bool corrected) {
+    const struct pair_local local = pair_load(grid, end, states);
+    const struct delay delay[2] = {grid->delay[0], grid->delay[1]};
+    const size_t stride = grid->pad + grid->room;
+    const double *wave[2];
+    pair history[STENCIL];
+    double x[2] = {grid->state[end][0], grid->state[end][1]};
+    double *value = grid->value[end], *leaving = grid->leaving[end] + grid->pad;
+    for (size_t m = 0; m < 2; m++)
+        wave[m] = grid->leaving[1 - end] + m * stride + grid->pad - delay[m].samples;
+    for (size_t s = 0; s < STENCIL; s++)
+        history[s] = (pair){grid->arriving[end][s][0], grid->arriving[end][s][1]};
+    for (size_t i = from; i < to; i++) {
+        pair newest = {read_mode(&delay[0], wave[0] + i + 1),
+                       read_mode(&delay[1], wave[1] + i + 1)};
+        if (corrected && i + 1 < grid->corrected) {
+            const double *correction = grid->wave_correction[end] + (i + 1) * 2;
+            newest += (pair){correction[0], correction[1]};
+        }
+        history[3] = history[2];
+        history[2] = history[1];
+        history[1] = history[0];
+        history[0] = newest;
+        if (states > 0 && i > 0) {
+            double next[2] = {0};
+            for (size_t k = 0; k < states; k++) {
+                pair forced = local.gain[k][0] * history[0] + local.gain[k][1] * history[1] +
+                              local.gain[k][2] * history[2] + local.gain[k][3] * history[3];
+                next[k] = local.drive[k] + (forced[0] + forced[1]);
+                if (corrected)
+                    next[k] += grid->state_correction[end][i * states + k];
+                for (size_t j = 0; j < states; j++)
+                    next[k] += local.decay[k][j] * x[j];
+            }
+            x[0] = next[0];
+            x[1] = next[1];
+        }
+        pair first = {history[1][0], history[1][0]}, second = {history[1][1], history[1][1]};
+        pair voltage = local.voltage_of_emf + local.voltage_of_wave[0] * first +
+                       local.voltage_of_wave[1] * second;
+        pair leaves = local.leaving_of_emf + local.leaving_of_wave[0] * first +
+                      local.leaving_of_wave[1] * second;
+        for (size_t j = 0; j < states; j++) {
+            voltage += local.voltage_of_state[j] * (pair){x[j], x[j]};
+            leaves += local.leaving_of_state[j] * (pair){x[j], x[j]};
+        }
+        if (corrected) {
+            const double *correction = grid->leaving_correction[end] + i * 2;
+            leaves += (pair){correction[0], correction[1]};
+        }
+        value[i] = voltage[0];
+        value[grid->room + i] = voltage[1];
+        leaving[i] = leaves[0];
+        leaving[stride + i] = leaves[1];
+    }
+    for (size_t k = 0; k < 2; k++)
+        grid->state[end][k] = x[k];
+    for (size_t s = 0; s < STENCIL; s++)
+        for (size_t m = 0; m < 2; m++)
+            grid->arriving[end][s][m] = history[s][m];
+}
+
+FOR_COUNT void pair_block_for_states(struct grid *grid, size_t end, size_t from, size_t to,
+                                     bool corrected) {
+    size_t states = grid->stepper[end].states;
+    if (states == 0)
+        take_pair_block(grid, end, from, to, 0, corrected);
+    else if (states == 1)
+        take_pair_block(grid, end, from, to, 1, corrected);
+    else
+        take_pair_block(grid, end, from, to, 2, corrected);
+}
+
+static void block_of_two(struct grid *grid, size_t end, size_t from, size_t to, bool corrected) {
+    if (corrected)
+        pair_block_for_states(grid, end, from, to, true);
+    else
+        pair_block_for_states(grid, end, from, to, false);
+}
+
+/* ---- other counts ---- */
+
 FOR_COUNT void block_for_states(struct grid *grid, size_t end, size_t from, size_t to, size_t count,
                                 bool corrected) {
     size_t states = grid->stepper[end].states;
-    if (states == 0)
-        take_block(grid, end, from, to, count, 0, corrected);
-    else if (states == 1)
+    if (states == 1)
         take_block(grid, end, from, to, count, 1, corrected);
-    else if (states == 2)
-        take_block(grid, end, from, to, count, 2, corrected);
     else
         take_block(grid, end, from, to, count, states, corrected);
 }
 
 static void block_of_one(struct grid *grid, size_t end, size_t from, size_t to, bool corrected) {
     block_for_states(grid, end, from, to, 1, corrected);
-}
-
-static void block_of_two(struct grid *grid, size_t end, size_t from, size_t to, bool corrected) {
-    if (corrected)
-        block_for_states(grid, end, from, to, 2, true);
-    else
-        block_for_states(grid, end, from, to, 2, false);
 }
 
 static void block_of_three(struct grid *grid, size_t end, size_t from, size_t to, bool corrected) {
