@@ -19,7 +19,8 @@
 enum { MOST_SAMPLES = 64, MOST_WITNESSES = 16 };
 /* Badness above which a hump is climbed, a sample beyond the bound proven, a case kept as witness.
  */
-static const double NEAR_HUMP = -0.25, NEAR_PROOF = -0.15, NEAR_WITNESS = -0.5, VERY_FAR = -0.8;
+static const double NEAR_HUMP = -0.25, NEAR_PROOF = -0.15, NEAR_WITNESS = -0.5, QUITE_FAR = -0.8,
+                    VERY_FAR = -0.96;
 /* What lies on the limit holds; rounding must not decide. */
 static const double ROUNDING = 1e-9;
 
@@ -202,15 +203,18 @@ static bool hump_fails(struct finder *finder, size_t i, long *bad, struct error 
     return true;
 }
 
-/* Far from the limit, where what is found makes no resonances, every second sample is left out. */
+/* Far from the limit, where what is found makes no resonances, every second sample is left out, and
+ * very far three of four. */
 static void thin_out(struct finder *finder, size_t i) {
-    if (finder->wavy || i == 0 || i + 2 >= finder->count ||
-        !(finder->worst[i].verdict.badness < VERY_FAR) ||
-        !(finder->worst[i].verdict.badness >= finder->worst[i - 1].verdict.badness))
+    double badness = finder->worst[i].verdict.badness;
+    size_t out = badness < VERY_FAR ? 3 : badness < QUITE_FAR ? 1 : 0;
+    if (finder->wavy || i == 0 || !(badness >= finder->worst[i - 1].verdict.badness))
         return;
-    memmove(&finder->samples[i + 1], &finder->samples[i + 2],
-            (finder->count - i - 2) * sizeof finder->samples[0]);
-    finder->count--;
+    while (out > 0 && i + 1 + out >= finder->count)
+        out--;
+    memmove(&finder->samples[i + 1], &finder->samples[i + 1 + out],
+            (finder->count - i - 1 - out) * sizeof finder->samples[0]);
+    finder->count -= out;
 }
 
 /* *bad: the first multiple seen to fail; unchanged when none does. */
@@ -328,12 +332,15 @@ static bool prove_nearby(struct finder *finder, long candidate, long next, struc
 static bool prove(struct finder *finder, long candidate, struct proof *proof, struct error *error) {
     *proof = (struct proof){.held = true, .worst = {.verdict = {.badness = -INFINITY}}};
     struct worst worst;
-    if (!search_at(finder, candidate, WORST_FULL, &worst, error))
-        return false;
-    note(proof, candidate, &worst);
     size_t beyond = 0;
     while (beyond < finder->judged && is_beyond(finder, finder->samples[beyond], candidate))
         beyond++;
+    bool probed = beyond < finder->judged && finder->samples[beyond] == candidate;
+    bool far = probed && finder->judge->reference == NULL &&
+               finder->worst[beyond].verdict.badness < WORST_IS_FAR;
+    if (!search_at(finder, candidate, far ? WORST_FAR : WORST_FULL, &worst, error))
+        return false;
+    note(proof, candidate, &worst);
     if (proof->held && beyond > 0 &&
         !prove_nearby(finder, candidate, finder->samples[beyond - 1], proof, error))
         return false;

@@ -34,13 +34,29 @@ double scan_scale(const struct judge *judge, double badness) {
 
 /* ---- the plan ---- */
 
+/* Runs up to this one are short against the fastest edge and couple steadily more the longer they
+ * are. Against a reference it is the ratio that counts, and no run is short. */
+static double short_run(const struct scan *scan) {
+    const struct region *region = scan->region;
+    double inputs[MODEL_MOST_INPUTS];
+    struct error ignored = {0}; /* what does not resolve is refused where it is solved */
+    if (scan->judge->reference != NULL || region->model->steady_length == NULL)
+        return 0.0;
+    memcpy(inputs, region->base, sizeof inputs);
+    for (size_t i = 0; i < region->range_count; i++)
+        inputs[region->axes[i].input] = region->axes[i].low;
+    return model_resolve(region->model, inputs, &ignored) ? region->model->steady_length(inputs)
+                                                          : 0.0;
+}
+
 /* A run a twelfth as long couples at most about a twelfth as much while it is short against the
  * edge, and costs the most to solve (its bounces are the finest): a probe leaves such runs to the
- * proof. */
+ * proof, and a proof leaves out those that are short. */
 static double sample_from(const struct scan *scan, const struct region_axis *axis) {
-    if (scan->full || !is_named(scan->region, axis, "length"))
+    double twelfth = axis->high / 12.0;
+    if (!is_named(scan->region, axis, "length"))
         return axis->low;
-    return fmax(axis->low, axis->high / 12.0);
+    return fmax(axis->low, scan->full ? fmin(twelfth, short_run(scan)) : twelfth);
 }
 
 static size_t samples_for(const struct scan *scan, const struct region_axis *axis, double low) {
@@ -100,24 +116,14 @@ static double value_at(const struct scan *scan, size_t i, size_t at) {
     return region_sample(&axis, at, (scan->samples[i] - 1) * SCAN_FINE + 1);
 }
 
-/* A run through which the fastest edge passes in less than a tenth of its time is quasi-static:
- * crosstalk grows steadily with its length and has no resonance of its own, and below a quarter of
- * the longest run it does not reach what that has.  There every fourth sample is enough; the slope
- * between them still calls for more.  Twice the time of light in vacuum stands for the slowest
- * wave. */
-static bool is_short(const struct scan *scan, size_t position) {
-    static const double light = 299792458.0, part = 0.1, slowest = 2.0, share = 0.25;
-    const struct region *region = scan->region;
-    size_t edge = model_input_index(region->model, "edge");
-    if (!scan->full || scan->judge->reference != NULL || edge >= region->model->input_count ||
-        !is_named(region, &region->axes[scan->line], "length"))
-        return false;
-    double fastest = region->base[edge], length = value_at(scan, scan->line, position);
-    for (size_t i = 0; i < region->range_count; i++)
-        if (region->axes[i].input == edge)
-            fastest = region->axes[i].low;
-    return length * slowest / light < part * fastest &&
-           length < share * region->axes[scan->line].high;
+/* Of short runs as short as a twelfth to a quarter of the longest a few samples are enough: there
+ * is no resonance between them, and the slope still calls for more. */
+static bool is_thin(const struct scan *scan, size_t position) {
+    static const double share = 0.25;
+    const struct region_axis *axis = &scan->region->axes[scan->line];
+    double length = value_at(scan, scan->line, position);
+    return scan->full && is_named(scan->region, axis, "length") &&
+           length < fmin(short_run(scan), share * axis->high);
 }
 
 /* ---- the worst so far ---- */
@@ -219,7 +225,7 @@ static bool solve_samples(struct scan *scan, struct line *line, struct error *er
     memset(line->known, 0, sizeof line->known);
     for (size_t left = (line->positions - 1) / SCAN_FINE + 1; left > 0; left--) {
         size_t position = (left - 1) * SCAN_FINE;
-        if ((left - 1) % SCAN_SHORT != 0 && scan->line != SIZE_MAX && is_short(scan, position))
+        if ((left - 1) % SCAN_SHORT != 0 && scan->line != SIZE_MAX && is_thin(scan, position))
             continue;
         if (!solve_position(scan, line, position, error))
             return false;
