@@ -19,6 +19,7 @@ struct kept_response {
 struct model_worker {
     struct kept_response kept[KEPT];
     size_t calls;
+    double expected; /* s, the shortest edge that is to be asked for; 0 = not said */
 };
 
 struct model_worker *model_worker_create(struct error *error) {
@@ -53,6 +54,18 @@ static double shortest_edge_of_class(double edge) {
     return shortest <= edge ? shortest : shortest / 4.0;
 }
 
+void model_worker_expect(struct model_worker *worker, double shortest_edge) {
+    worker->expected = shortest_edge;
+}
+
+/* Where the edges to come are known they share a response within a factor of sixteen. */
+static double shortest_edge_for(const struct model_worker *worker, double edge) {
+    if (!(worker->expected > 0.0 && edge >= worker->expected))
+        return shortest_edge_of_class(edge);
+    double shortest = worker->expected * exp2(4.0 * floor(log2(edge / worker->expected) / 4.0));
+    return shortest <= edge ? shortest : edge;
+}
+
 /* The one that answers this problem, else the one that was not used for longest. */
 static struct kept_response *kept_for(struct model_worker *worker,
                                       const struct line_problem *problem, double shortest) {
@@ -72,7 +85,7 @@ static struct kept_response *kept_for(struct model_worker *worker,
 const struct line_response *worker_response(struct model_worker *worker,
                                             const struct line_problem *problem, double edge,
                                             struct error *error) {
-    double shortest = shortest_edge_of_class(edge);
+    double shortest = shortest_edge_for(worker, edge);
     struct kept_response *kept = kept_for(worker, problem, shortest);
     kept->used = ++worker->calls;
     if (kept->response != NULL)

@@ -441,6 +441,17 @@ static bool answer(struct finder *finder, struct guideline_finding *finding, str
     return true;
 }
 
+static double shortest_edge(const struct study_rule *rule, const struct region *region) {
+    size_t edge = model_input_index(region->model, "edge");
+    if (edge >= region->model->input_count)
+        return 0.0;
+    double shortest = rule->find == edge ? rule->within.from : region->base[edge];
+    for (size_t i = 0; i < region->axis_count; i++)
+        if (region->axes[i].input == edge)
+            shortest = region->axes[i].low;
+    return shortest;
+}
+
 bool find_bound(const struct study_rule *rule, const struct study_variant *variant,
                 struct judge *judge, const struct region *region, struct guideline_finding *finding,
                 struct error *error) {
@@ -450,6 +461,7 @@ bool find_bound(const struct study_rule *rule, const struct study_variant *varia
     if (finder == NULL)
         return error_set(error, ERROR_MEMORY, "out of memory");
     *finder = (struct finder){.rule = rule, .judge = judge, .region = region};
+    solver_expect(judge->solver, shortest_edge(rule, region));
     made.fab_smallest = find_fab_smallest(judge->solver->model, rule->find, variant->stackup);
     double from = rule->within.from, to = rule->within.to;
     if (made.fab_smallest > from)
