@@ -9,7 +9,7 @@
 /* Shares of the EMF below which a front no longer matters: as exact bounces every front is kept
  * that could still add up to a visible crosstalk; on the grid a front only sharpens what the
  * samples already contain. */
-static const double EXACT_FRONT = 1e-10, GRID_FRONT = 3e-6;
+static const double EXACT_FRONT = 1e-10, GRID_FRONT = 1e-5;
 enum { MOST_EXACT_FRONTS = 20000, MOST_GRID_FRONTS = 4000, MOST_STEPS = 200000 };
 /* A passage is followed while its strongest front is above this share of the EMF: all its fronts or
  * none, since crosstalk is the small difference of modes. */

@@ -169,15 +169,15 @@ FOR_COUNT double read_mode(const struct delay *delay, const double *wave) {
     return sum;
 }
 
-FOR_COUNT void take_pair_block(struct grid *grid, size_t end, size_t from, size_t to, size_t states,
-                               bool corrected) {
-    const struct pair_local local = pair_load(grid, end, states);
+FOR_COUNT void take_pair_block(struct grid *grid, const struct pair_local *restrict local,
+                               size_t end, size_t from, size_t to, size_t states, bool corrected) {
     const struct delay delay[2] = {grid->delay[0], grid->delay[1]};
     const size_t stride = grid->pad + grid->room;
     const double *wave[2];
     pair history[STENCIL];
     double x[2] = {grid->state[end][0], grid->state[end][1]};
-    double *value = grid->value[end], *leaving = grid->leaving[end] + grid->pad;
+    double *restrict value = grid->value[end];
+    double *restrict leaving = grid->leaving[end] + grid->pad;
     for (size_t m = 0; m < 2; m++)
         wave[m] = grid->leaving[1 - end] + m * stride + grid->pad - delay[m].samples;
     for (size_t s = 0; s < STENCIL; s++)
@@ -196,25 +196,25 @@ FOR_COUNT void take_pair_block(struct grid *grid, size_t end, size_t from, size_
         if (states > 0 && i > 0) {
             double next[2] = {0};
             for (size_t k = 0; k < states; k++) {
-                pair forced = local.gain[k][0] * history[0] + local.gain[k][1] * history[1] +
-                              local.gain[k][2] * history[2] + local.gain[k][3] * history[3];
-                next[k] = local.drive[k] + (forced[0] + forced[1]);
+                pair forced = local->gain[k][0] * history[0] + local->gain[k][1] * history[1] +
+                              local->gain[k][2] * history[2] + local->gain[k][3] * history[3];
+                next[k] = local->drive[k] + (forced[0] + forced[1]);
                 if (corrected)
                     next[k] += grid->state_correction[end][i * states + k];
                 for (size_t j = 0; j < states; j++)
-                    next[k] += local.decay[k][j] * x[j];
+                    next[k] += local->decay[k][j] * x[j];
             }
             x[0] = next[0];
             x[1] = next[1];
         }
         pair first = {history[1][0], history[1][0]}, second = {history[1][1], history[1][1]};
-        pair voltage = local.voltage_of_emf + local.voltage_of_wave[0] * first +
-                       local.voltage_of_wave[1] * second;
-        pair leaves = local.leaving_of_emf + local.leaving_of_wave[0] * first +
-                      local.leaving_of_wave[1] * second;
+        pair voltage = local->voltage_of_emf + local->voltage_of_wave[0] * first +
+                       local->voltage_of_wave[1] * second;
+        pair leaves = local->leaving_of_emf + local->leaving_of_wave[0] * first +
+                      local->leaving_of_wave[1] * second;
         for (size_t j = 0; j < states; j++) {
-            voltage += local.voltage_of_state[j] * (pair){x[j], x[j]};
-            leaves += local.leaving_of_state[j] * (pair){x[j], x[j]};
+            voltage += local->voltage_of_state[j] * (pair){x[j], x[j]};
+            leaves += local->leaving_of_state[j] * (pair){x[j], x[j]};
         }
         if (corrected) {
             const double *correction = grid->leaving_correction[end] + i * 2;
@@ -232,22 +232,23 @@ FOR_COUNT void take_pair_block(struct grid *grid, size_t end, size_t from, size_
             grid->arriving[end][s][m] = history[s][m];
 }
 
-FOR_COUNT void pair_block_for_states(struct grid *grid, size_t end, size_t from, size_t to,
-                                     bool corrected) {
+FOR_COUNT void pair_block_for_states(struct grid *grid, const struct pair_local *local, size_t end,
+                                     size_t from, size_t to, bool corrected) {
     size_t states = grid->stepper[end].states;
     if (states == 0)
-        take_pair_block(grid, end, from, to, 0, corrected);
+        take_pair_block(grid, local, end, from, to, 0, corrected);
     else if (states == 1)
-        take_pair_block(grid, end, from, to, 1, corrected);
+        take_pair_block(grid, local, end, from, to, 1, corrected);
     else
-        take_pair_block(grid, end, from, to, 2, corrected);
+        take_pair_block(grid, local, end, from, to, 2, corrected);
 }
 
-static void block_of_two(struct grid *grid, size_t end, size_t from, size_t to, bool corrected) {
+static void block_of_two(struct grid *grid, const struct pair_local *local, size_t end, size_t from,
+                         size_t to, bool corrected) {
     if (corrected)
-        pair_block_for_states(grid, end, from, to, true);
+        pair_block_for_states(grid, local, end, from, to, true);
     else
-        pair_block_for_states(grid, end, from, to, false);
+        pair_block_for_states(grid, local, end, from, to, false);
 }
 
 /* ---- other counts ---- */
@@ -286,6 +287,9 @@ static size_t longest_block(const struct grid *grid) {
 
 void steps_take(struct grid *grid, size_t from, size_t to) {
     size_t longest = longest_block(grid);
+    struct pair_local local[2] = {0};
+    for (size_t end = 0; end < 2 && grid->count == 2; end++)
+        local[end] = pair_load(grid, end, grid->stepper[end].states);
     for (size_t next; from < to; from = next) {
         bool corrected = from < grid->corrected;
         next = from + longest < to ? from + longest : to;
@@ -293,7 +297,7 @@ void steps_take(struct grid *grid, size_t from, size_t to) {
             next = grid->corrected;
         for (size_t end = 0; end < 2; end++)
             if (grid->count == 2)
-                block_of_two(grid, end, from, next, corrected);
+                block_of_two(grid, &local[end], end, from, next, corrected);
             else if (grid->count == 1)
                 block_of_one(grid, end, from, next, corrected);
             else if (grid->count == 3)
