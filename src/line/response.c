@@ -126,19 +126,21 @@ static bool climb_to(const struct line_setup *setup, size_t steps, double edge,
     return true;
 }
 
-/* Whether both grids agree on the peaks of the shortest edge. */
+/* Whether both grids agree on the peaks of the shortest edge; keeps by how much they do not. */
 static bool agree(const struct line_setup *setup, const struct rung *fine,
-                  const struct rung *coarse, double edge) {
+                  const struct rung *coarse, struct line_response *response) {
+    bool agreed = true;
     for (size_t end = 0; end < 2; end++)
         for (size_t k = 0; k < setup->problem->count; k++) {
             if (k == setup->driven && setup->problem->count > 1)
                 continue;
+            double edge = response->shortest_edge;
             double peak = curve_peak(&fine->curve[end][k], edge).highest;
-            double other = curve_peak(&coarse->curve[end][k], edge).highest;
-            if (!(fabs(peak - other) <= ENOUGH * peak + ENOUGH_OF_EMF))
-                return false;
+            double difference = fabs(peak - curve_peak(&coarse->curve[end][k], edge).highest);
+            response->difference[end][k] = difference;
+            agreed = agreed && difference <= ENOUGH * peak + ENOUGH_OF_EMF;
         }
-    return true;
+    return agreed;
 }
 
 /* The coarsest grid: a passage needs three steps (stepper.c). */
@@ -164,8 +166,8 @@ static bool build_curves(const struct line_setup *setup, struct arena *arena,
         fine = rung % 2;
         if (!climb_to(setup, steps, edge, &rungs[1 - fine], arena, &rungs[fine], error))
             return false;
-        if (rung == MOST_RUNGS || 2 * rungs[fine].march.samples > MOST_STEPS ||
-            agree(setup, &rungs[fine], &rungs[1 - fine], edge))
+        bool agreed = agree(setup, &rungs[fine], &rungs[1 - fine], response);
+        if (agreed || rung == MOST_RUNGS || 2 * rungs[fine].march.samples > MOST_STEPS)
             break;
     }
     for (size_t end = 0; end < 2; end++) {
@@ -239,28 +241,48 @@ double response_at(const struct line_response *response, size_t end, size_t vict
                            : curve_response(&response->curve[end][victim], edge, time);
 }
 
-static struct line_peak peak_at(const struct line_response *response, size_t end, size_t victim,
-                                double edge) {
-    if (response->exact) {
-        struct line_peak peak = staircase_peak(&response->staircase[end], victim, edge);
-        peak.error = response->rest_error[end][victim];
-        return peak;
+/* Peaks of both ends on the finer grid; differences[2]: by how much the coarser one's are others.
+ */
+static void peaks_at(const struct line_response *response, size_t victim, double edge,
+                     struct line_peak peaks[2], double differences[2]) {
+    for (size_t end = 0; end < 2; end++) {
+        peaks[end] = curve_peak(&response->curve[end][victim], edge);
+        differences[end] =
+            fabs(peaks[end].highest - curve_peak(&response->coarse[end][victim], edge).highest);
     }
-    struct line_peak peak = curve_peak(&response->curve[end][victim], edge);
-    struct line_peak coarse = curve_peak(&response->coarse[end][victim], edge);
-    /* Fourth order would leave a fifteenth of the difference, fronts that blur all of it. */
-    peak.error = response->rest_error[end][victim] + ALIKE;
-    if (peak.highest > 0)
-        peak.error += (fabs(peak.highest - coarse.highest) + ALIKE_OF_EMF) / peak.highest;
-    return peak;
+}
+
+/* Fourth order would leave a fifteenth of the difference, fronts that blur all of it.  Two peaks
+ * may agree by chance; both ends, and the shortest edge, whose error falls with the edge, hardly
+ * do. */
+static void add_errors(const struct line_response *response, size_t victim, double edge,
+                       const double differences[2], struct line_peak peaks[2]) {
+    for (size_t end = 0; end < 2; end++) {
+        double shortest = response->difference[end][victim] * response->shortest_edge / edge;
+        double own = fmax(differences[end], fmax(0.5 * differences[1 - end], shortest));
+        peaks[end].error = response->rest_error[end][victim] + ALIKE;
+        if (peaks[end].highest > 0)
+            peaks[end].error += (own + ALIKE_OF_EMF) / peaks[end].highest;
+    }
 }
 
 bool line_response_peaks(const struct line_response *response, size_t victim, double edge,
                          struct line_peak *near, struct line_peak *far, struct error *error) {
+    struct line_peak peaks[2];
+    double differences[2];
     if (!response_check(response, victim, edge, error))
         return false;
-    *near = peak_at(response, 0, victim, edge);
-    *far = peak_at(response, 1, victim, edge);
+    if (response->exact) {
+        for (size_t end = 0; end < 2; end++) {
+            peaks[end] = staircase_peak(&response->staircase[end], victim, edge);
+            peaks[end].error = response->rest_error[end][victim];
+        }
+    } else {
+        peaks_at(response, victim, edge, peaks, differences);
+        add_errors(response, victim, edge, differences, peaks);
+    }
+    *near = peaks[0];
+    *far = peaks[1];
     return true;
 }
 

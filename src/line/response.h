@@ -12,6 +12,7 @@ struct line_response {
     struct staircase staircase[2];
     struct curve curve[2][LINE_MOST_CONDUCTORS];
     struct curve coarse[2][LINE_MOST_CONDUCTORS]; /* the same on twice the step */
+    double difference[2][LINE_MOST_CONDUCTORS];   /* V, of both grids' peaks of the shortest edge */
     double rest_error[2][LINE_MOST_CONDUCTORS];   /* relative: what may follow the window */
 };
 
