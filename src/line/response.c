@@ -69,6 +69,7 @@ struct rung {
     size_t steps; /* per passage of the fastest mode */
     struct march march;
     struct curve curve[2][LINE_MOST_CONDUCTORS];
+    struct line_peak peak[2][LINE_MOST_CONDUCTORS]; /* of the shortest edge; 0 for what is driven */
 };
 
 static bool follow_fronts(const struct line_setup *setup, size_t steps, double edge,
@@ -126,21 +127,23 @@ static bool climb_to(const struct line_setup *setup, size_t steps, double edge,
     return true;
 }
 
-/* Whether both grids agree on the peaks of the shortest edge; keeps by how much they do not. */
+static void find_peaks(const struct line_setup *setup, double edge, struct rung *rung) {
+    for (size_t end = 0; end < 2; end++)
+        for (size_t k = 0; k < setup->problem->count; k++)
+            if (k != setup->driven || setup->problem->count == 1)
+                rung->peak[end][k] = curve_peak(&rung->curve[end][k], edge);
+}
+
+/* Whether both grids agree on the peaks of the shortest edge. */
 static bool agree(const struct line_setup *setup, const struct rung *fine,
-                  const struct rung *coarse, struct line_response *response) {
-    bool agreed = true;
+                  const struct rung *coarse) {
     for (size_t end = 0; end < 2; end++)
         for (size_t k = 0; k < setup->problem->count; k++) {
-            if (k == setup->driven && setup->problem->count > 1)
-                continue;
-            double edge = response->shortest_edge;
-            double peak = curve_peak(&fine->curve[end][k], edge).highest;
-            double difference = fabs(peak - curve_peak(&coarse->curve[end][k], edge).highest);
-            response->difference[end][k] = difference;
-            agreed = agreed && difference <= ENOUGH * peak + ENOUGH_OF_EMF;
+            double peak = fine->peak[end][k].highest, other = coarse->peak[end][k].highest;
+            if (!(fabs(peak - other) <= ENOUGH * peak + ENOUGH_OF_EMF))
+                return false;
         }
-    return agreed;
+    return true;
 }
 
 /* The coarsest grid: a passage needs three steps (stepper.c). */
@@ -156,7 +159,7 @@ static size_t first_steps(const struct line_setup *setup, double edge) {
 /* Grids, each of half the step of the one before, until two agree. */
 static bool build_curves(const struct line_setup *setup, struct arena *arena,
                          struct line_response *response, struct error *error) {
-    struct rung rungs[2];
+    struct rung rungs[2] = {0};
     double edge = response->shortest_edge;
     size_t steps = first_steps(setup, edge), fine = 1;
     if (!climb_to(setup, steps, edge, NULL, arena, &rungs[0], error))
@@ -164,17 +167,24 @@ static bool build_curves(const struct line_setup *setup, struct arena *arena,
     for (size_t rung = 1;; rung++) {
         steps *= 2;
         fine = rung % 2;
+        if (rung == 1)
+            find_peaks(setup, edge, &rungs[0]);
         if (!climb_to(setup, steps, edge, &rungs[1 - fine], arena, &rungs[fine], error))
             return false;
-        bool agreed = agree(setup, &rungs[fine], &rungs[1 - fine], response);
-        if (agreed || rung == MOST_RUNGS || 2 * rungs[fine].march.samples > MOST_STEPS)
+        find_peaks(setup, edge, &rungs[fine]);
+        if (rung == MOST_RUNGS || 2 * rungs[fine].march.samples > MOST_STEPS ||
+            agree(setup, &rungs[fine], &rungs[1 - fine]))
             break;
     }
     for (size_t end = 0; end < 2; end++) {
         memcpy(response->curve[end], rungs[fine].curve[end], sizeof response->curve[end]);
         memcpy(response->coarse[end], rungs[1 - fine].curve[end], sizeof response->coarse[end]);
-        for (size_t k = 0; k < setup->problem->count; k++)
+        for (size_t k = 0; k < setup->problem->count; k++) {
             response->rest_error[end][k] = rungs[fine].march.rest[end][k].error;
+            response->shortest[end][k] = rungs[fine].peak[end][k];
+            response->difference[end][k] =
+                fabs(rungs[fine].peak[end][k].highest - rungs[1 - fine].peak[end][k].highest);
+        }
     }
     return true;
 }
@@ -246,6 +256,10 @@ double response_at(const struct line_response *response, size_t end, size_t vict
 static void peaks_at(const struct line_response *response, size_t victim, double edge,
                      struct line_peak peaks[2], double differences[2]) {
     for (size_t end = 0; end < 2; end++) {
+        peaks[end] = response->shortest[end][victim];
+        differences[end] = response->difference[end][victim];
+        if (edge == response->shortest_edge && peaks[end].highest > 0)
+            continue;
         peaks[end] = curve_peak(&response->curve[end][victim], edge);
         differences[end] =
             fabs(peaks[end].highest - curve_peak(&response->coarse[end][victim], edge).highest);

@@ -12,8 +12,11 @@ struct line_response {
     struct staircase staircase[2];
     struct curve curve[2][LINE_MOST_CONDUCTORS];
     struct curve coarse[2][LINE_MOST_CONDUCTORS]; /* the same on twice the step */
-    double difference[2][LINE_MOST_CONDUCTORS];   /* V, of both grids' peaks of the shortest edge */
-    double rest_error[2][LINE_MOST_CONDUCTORS];   /* relative: what may follow the window */
+    /* For the shortest edge, of all but what is driven: peaks, and by how much the coarse ones
+     * differ. */
+    struct line_peak shortest[2][LINE_MOST_CONDUCTORS];
+    double difference[2][LINE_MOST_CONDUCTORS];
+    double rest_error[2][LINE_MOST_CONDUCTORS]; /* relative: what may follow the window */
 };
 
 /* Whether the conductor exists and the edge was prepared for; ERROR_INPUT otherwise. */
