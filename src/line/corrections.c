@@ -78,23 +78,23 @@ static double kernel(double u) {
     return u <= 1 ? (1 - u * u) * (2 - u) / 2 : (1 - u) * (2 - u) * (3 - u) / 6;
 }
 
-/* Mean of (u - from)^power / power!, 0 before `from`, weighed by the kernel about 0; u in samples.
+/* Means of (u - from)^power / power!, 0 before `from`, weighed by the kernel about 0; u in samples.
  * Four Gauss-Legendre points are exact between the kernel's knots. */
-static double blurred_power(double from, size_t power) {
+static void blurred_powers(double from, double mean[FRONT_ORDERS]) {
     static const double point[2] = {0.33998104358485626, 0.86113631159405258};
     static const double weight[2] = {0.65214515486254614, 0.34785484513745386};
-    double sum = 0, factorial = power == 3 ? 6 : power == 2 ? 2 : 1;
+    memset(mean, 0, FRONT_ORDERS * sizeof *mean);
     for (int knot = -2; knot < 2; knot++) {
-        double low = fmax(from, knot), half = (knot + 1 - low) / 2;
+        double low = from > knot ? from : knot, half = (knot + 1 - low) / 2;
         for (int k = 0; k < 4 && half > 0; k++) {
             double u = low + half + half * (k % 2 ? -1 : 1) * point[k / 2];
-            double value = 1;
-            for (size_t p = 0; p < power; p++)
-                value *= u - from;
-            sum += half * weight[k / 2] * value / factorial * kernel(u);
+            double share = half * weight[k / 2] * kernel(u);
+            for (size_t power = 0; power < FRONT_ORDERS; power++) {
+                mean[power] += share;
+                share *= (u - from) / (double)(power + 1);
+            }
         }
     }
-    return sum;
 }
 
 /* A wave whose next arrival is left to the grid: its samples are blurred by the kernel, which keeps
@@ -108,8 +108,9 @@ static void blur_leaving(struct grid *grid, const struct front *front) {
         if (i >= grid->corrected)
             return;
         double scale = 1, mean[FRONT_ORDERS];
+        blurred_powers(position - (double)i, mean);
         for (size_t p = 0; p < FRONT_ORDERS; p++) {
-            mean[p] = scale * blurred_power(position - (double)i, p);
+            mean[p] *= scale;
             scale *= h;
         }
         for (size_t m = 0; m < count; m++) {

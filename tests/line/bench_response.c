@@ -22,22 +22,21 @@ static bool run(double length, bool resistive, double *micro, double *claimed) {
         problem.far[i] = resistive ? (struct line_end){100, 0} : (struct line_end){INFINITY, 5e-12};
     }
     struct error error = {0};
+    struct arena *arena = arena_create(&error);
+    bool ok = arena != NULL;
     double start = now();
-    for (int k = 0; k < ROUNDS; k++) {
-        struct arena *arena = arena_create(&error);
-        struct line_response *response =
-            arena == NULL ? NULL : line_response_create(&problem, 0, 1e-9, arena, &error);
+    for (int k = 0; ok && k < ROUNDS; k++) {
         struct line_peak near, far;
-        bool ok = response != NULL && line_response_peaks(response, 1, 1e-9, &near, &far, &error);
-        arena_free(arena);
-        if (!ok) {
-            fprintf(stderr, "%s\n", error.message);
-            return false;
-        }
-        *claimed = fmax(near.error, far.error);
+        arena_rewind(arena, (struct arena_mark){0, 0});
+        struct line_response *response = line_response_create(&problem, 0, 1e-9, arena, &error);
+        ok = response != NULL && line_response_peaks(response, 1, 1e-9, &near, &far, &error);
+        *claimed = ok ? fmax(near.error, far.error) : NAN;
     }
     *micro = (now() - start) / ROUNDS * 1e6;
-    return true;
+    if (!ok)
+        fprintf(stderr, "%s\n", error.message);
+    arena_free(arena);
+    return ok;
 }
 
 int main(void) {
