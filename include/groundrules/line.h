@@ -58,6 +58,12 @@ struct line_response *line_response_create(const struct line_problem *problem, s
                                            double shortest_edge, struct arena *arena,
                                            struct error *error);
 
+/* The same, solved so finely that the late ringing, which sequences of edges add up, counts too:
+ * two to four times the work. */
+struct line_response *line_response_create_lasting(const struct line_problem *problem,
+                                                   size_t driven, double shortest_edge,
+                                                   struct arena *arena, struct error *error);
+
 struct line_peak {
     double highest; /* V per volt of swing, largest |v(t)| */
     double time;    /* s after the start of the ramp */
@@ -68,13 +74,13 @@ struct line_peak {
 bool line_response_peaks(const struct line_response *response, size_t victim, double edge,
                          struct line_peak *near, struct line_peak *far, struct error *error);
 
-/* The worst sequence of edges at both ends of `victim`, V per volt of swing:
- *   free     edges of alternating sign, any two at least `bit_time` apart
- *   clocked  edges on whole multiples of `bit_time`, worst over the phase of the observation
- * `free` never grows with bit_time; `clocked` may.  Exact for the sampled response (32 samples an edge);
- * `error` is the relative change on twice the sample step, of the larger.  Fails: ERROR_INPUT when
- * bit_time is not above 0 or so short against the ringing that more than a million samples would be
- * needed; ERROR_MEMORY. */
+/* The worst sequence of edges at both ends of `victim`, V per volt of swing, best asked of a
+ * lasting response: free     edges of alternating sign, any two at least `bit_time` apart clocked
+ * edges on whole multiples of `bit_time`, worst over the phase of the observation `free` never
+ * grows with bit_time; `clocked` may.  Exact for the sampled response (32 samples an edge); `error`
+ * is the relative change on twice the sample step and on the response's coarser grid.  Fails:
+ * ERROR_INPUT when bit_time is not above 0 or so short against the ringing that more than a million
+ * samples would be needed; ERROR_MEMORY. */
 struct line_sequence {
     double free, clocked;
     double error;

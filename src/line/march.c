@@ -58,7 +58,8 @@ static bool all_at_rest(struct grid *grid, size_t samples, struct march *march) 
             const double *sum = grid->sum[end] + k * grid->room;
             march->rest[end][k] = rest_of(sum, samples, setup->window, edge, setup->final[end][k],
                                           &grid->seen[end][k]);
-            reached = reached && march->rest[end][k].reached;
+            reached =
+                reached && march->rest[end][k].reached && march->rest[end][k].late <= setup->latest;
         }
     return reached;
 }

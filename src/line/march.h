@@ -19,8 +19,9 @@ struct march_setup {
     size_t window; /* steps over which everything must have come to rest */
     double edge;   /* s, > 0: the shortest that will be asked for */
     double final[2][LINE_MOST_CONDUCTORS]; /* V, what all ends settle to; NAN where not known */
-    size_t most_steps;                     /* give up then */
-    size_t exact_steps;                    /* > 0: take exactly so many, without looking for rest */
+    double latest; /* largest share of a peak that the last window may show; INFINITY: as rest.h */
+    size_t most_steps;  /* give up then */
+    size_t exact_steps; /* > 0: take exactly so many, without looking for rest */
 };
 
 struct march {

@@ -16,9 +16,13 @@ enum { MOST_EXACT_FRONTS = 20000, MOST_GRID_FRONTS = 4000, MOST_STEPS = 200000 }
 static const double GRID_PASSAGE = 1e-2;
 /* Grid steps of the coarsest grid per fastest time constant of the ends, per shortest edge and per
  * passage of the fastest mode. */
-/* One conductor alone has no crosstalk to tell how good its waves are. */
-static const double STEPS_PER_CONSTANT_ALONE = 8;
+/* One conductor alone has no crosstalk to tell how good its waves are, and a single peak does not
+ * tell how good the late ringing is. */
+static const double STEPS_PER_CONSTANT_FINE = 8, STEPS_PER_PASSAGE_FINE = 6;
 static const double STEPS_PER_CONSTANT = 2, STEPS_PER_EDGE = 6, STEPS_PER_PASSAGE = 3;
+/* Of a peak: where sequences of edges are to be added up the march goes on until no more is left.
+ */
+static const double LATEST = 1e-3;
 /* The grid is halved, at most so many times, until two agree within a share of the peak and a share
  * of the EMF. */
 enum { MOST_RUNGS = 5 };
@@ -32,6 +36,7 @@ struct line_setup {
     const struct line_problem *problem;
     struct line_modes modes;
     size_t driven;
+    bool lasting; /* late ringing counts too */
     struct end_system near, far;
 };
 
@@ -108,6 +113,7 @@ static bool climb_to(const struct line_setup *setup, size_t steps, double edge,
                                       .step = step,
                                       .window = (size_t)fmin(ceil(window / step), MOST_STEPS / 2),
                                       .edge = edge,
+                                      .latest = setup->lasting ? LATEST : INFINITY,
                                       .most_steps = MOST_STEPS};
     if (coarser != NULL)
         march_setup.exact_steps = coarser->march.samples * steps / coarser->steps;
@@ -150,10 +156,11 @@ static bool agree(const struct line_setup *setup, const struct rung *fine,
 static size_t first_steps(const struct line_setup *setup, double edge) {
     double passage = setup->modes.slowness[0] * setup->problem->length;
     double fastest = fmin(setup->near.fastest, setup->far.fastest);
-    double per_constant =
-        setup->problem->count == 1 ? STEPS_PER_CONSTANT_ALONE : STEPS_PER_CONSTANT;
+    bool finely = setup->lasting || setup->problem->count == 1;
+    double per_constant = finely ? STEPS_PER_CONSTANT_FINE : STEPS_PER_CONSTANT;
+    double per_passage = setup->lasting ? STEPS_PER_PASSAGE_FINE : STEPS_PER_PASSAGE;
     double steps = fmax(passage * per_constant / fastest, passage * STEPS_PER_EDGE / edge);
-    return (size_t)fmin(fmax(ceil(steps), STEPS_PER_PASSAGE), 1e5);
+    return (size_t)fmin(fmax(ceil(steps), per_passage), 1e5);
 }
 
 /* Grids, each of half the step of the one before, until two agree. */
@@ -181,6 +188,7 @@ static bool build_curves(const struct line_setup *setup, struct arena *arena,
         memcpy(response->coarse[end], rungs[1 - fine].curve[end], sizeof response->coarse[end]);
         for (size_t k = 0; k < setup->problem->count; k++) {
             response->rest_error[end][k] = rungs[fine].march.rest[end][k].error;
+            response->late[end][k] = rungs[fine].march.rest[end][k].late;
             response->shortest[end][k] = rungs[fine].peak[end][k];
             response->difference[end][k] =
                 fabs(rungs[fine].peak[end][k].highest - rungs[1 - fine].peak[end][k].highest);
@@ -189,10 +197,10 @@ static bool build_curves(const struct line_setup *setup, struct arena *arena,
     return true;
 }
 
-struct line_response *line_response_create(const struct line_problem *problem, size_t driven,
-                                           double shortest_edge, struct arena *arena,
-                                           struct error *error) {
-    struct line_setup setup = {.problem = problem, .driven = driven};
+static struct line_response *create(const struct line_problem *problem, size_t driven, bool lasting,
+                                    double shortest_edge, struct arena *arena,
+                                    struct error *error) {
+    struct line_setup setup = {.problem = problem, .driven = driven, .lasting = lasting};
     if (!problem_check(problem, driven, error) || !line_modes(problem, &setup.modes, error))
         return NULL;
     if (!(shortest_edge > 0 && shortest_edge <= 1e6)) {
@@ -233,6 +241,18 @@ struct line_response *line_response_create(const struct line_problem *problem, s
     return build_curves(&setup, arena, response, error) ? response : NULL;
 }
 
+struct line_response *line_response_create(const struct line_problem *problem, size_t driven,
+                                           double shortest_edge, struct arena *arena,
+                                           struct error *error) {
+    return create(problem, driven, false, shortest_edge, arena, error);
+}
+
+struct line_response *line_response_create_lasting(const struct line_problem *problem,
+                                                   size_t driven, double shortest_edge,
+                                                   struct arena *arena, struct error *error) {
+    return create(problem, driven, true, shortest_edge, arena, error);
+}
+
 bool response_check(const struct line_response *response, size_t victim, double edge,
                     struct error *error) {
     if (victim >= response->count)
@@ -249,6 +269,12 @@ double response_at(const struct line_response *response, size_t end, size_t vict
                    double time) {
     return response->exact ? staircase_at(&response->staircase[end], victim, edge, time)
                            : curve_response(&response->curve[end][victim], edge, time);
+}
+
+double response_coarse_at(const struct line_response *response, size_t end, size_t victim,
+                          double edge, double time) {
+    return response->exact ? response_at(response, end, victim, edge, time)
+                           : curve_response(&response->coarse[end][victim], edge, time);
 }
 
 /* Peaks of both ends on the finer grid; differences[2]: by how much the coarser one's are others.

@@ -16,6 +16,7 @@ struct line_response {
      * differ. */
     struct line_peak shortest[2][LINE_MOST_CONDUCTORS];
     double difference[2][LINE_MOST_CONDUCTORS];
+    double late[2][LINE_MOST_CONDUCTORS];       /* what the last window still shows, of a peak */
     double rest_error[2][LINE_MOST_CONDUCTORS]; /* relative: what may follow the window */
 };
 
@@ -26,5 +27,8 @@ bool response_check(const struct line_response *response, size_t victim, double 
 /* V at the near (0) or far end (1) of `victim` at `time`, for a ramp of `edge`. */
 double response_at(const struct line_response *response, size_t end, size_t victim, double edge,
                    double time);
+/* The same on twice the step. */
+double response_coarse_at(const struct line_response *response, size_t end, size_t victim,
+                          double edge, double time);
 
 #endif

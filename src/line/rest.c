@@ -63,6 +63,7 @@ struct rest rest_of(const double *sum, size_t samples, size_t window, size_t edg
     double range = fmax(integral.high - integral.low, floor);
     double of_ramp = fmax(larger_magnitude(&late_ramp) - floor, 0);
     double swing = fmax(late_integral.high - late_integral.low - floor, 0);
+    rest.late = of_ramp / peak;
     /* Nothing like the peak can come again, nor be made up where the curve goes over to its mean.
      */
     if (fabs(rest.final) * (double)edge + 2 * fmax(of_ramp, swing) < 0.9 * peak)

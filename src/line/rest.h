@@ -15,6 +15,7 @@
 struct rest {
     double final; /* V */
     double error; /* what may still come, as a share of any peak */
+    double late; /* what the last window still shows of the shortest ramp, as a share of its peak */
     bool reached;
 };
 

@@ -34,6 +34,8 @@ double sequence_clocked(const double *response, size_t count, size_t period) {
     return worst / 2;
 }
 
+static const double LEFT_OVER = 3;
+
 /* When the response to a ramp has come to rest. */
 static double resting_time(const struct line_response *response, size_t end, size_t victim,
                            double edge) {
@@ -55,16 +57,20 @@ static void worst_of_samples(const double *samples, size_t count, size_t apart, 
 static void worst_sequence(const struct line_response *response, size_t end, size_t victim,
                            double edge, double step, size_t count, size_t apart, double *samples,
                            double *scratch, struct line_sequence *worst) {
-    struct line_sequence coarse;
+    struct line_sequence coarse, other;
+    for (size_t i = 0; i < count; i++)
+        samples[i] = response_coarse_at(response, end, victim, edge, (double)i * step);
+    worst_of_samples(samples, count, apart, scratch, &other);
     for (size_t i = 0; i < count; i++)
         samples[i] = response_at(response, end, victim, edge, (double)i * step);
     worst_of_samples(samples, count, apart, scratch, worst);
     for (size_t i = 0; 2 * i < count; i++)
         samples[i] = samples[2 * i];
     worst_of_samples(samples, (count + 1) / 2, apart / 2, scratch, &coarse);
-    worst->error = response->rest_error[end][victim];
+    /* What comes after the last window falls from one window to the next. */
+    worst->error = response->rest_error[end][victim] + LEFT_OVER * response->late[end][victim];
     if (worst->free > 0)
-        worst->error += (worst->free - coarse.free) / worst->free;
+        worst->error += (worst->free - coarse.free + fabs(worst->free - other.free)) / worst->free;
 }
 
 bool line_response_sequences(const struct line_response *response, size_t victim, double edge,

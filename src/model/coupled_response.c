@@ -209,7 +209,8 @@ bool coupled_respond(const struct coupled_pair *pair, const struct coupled_drive
                      struct model_worker *worker, double *outputs, double *errors,
                      struct error *error) {
     struct line_problem problem = line_of(pair, drive);
-    const struct line_response *response = worker_response(worker, &problem, drive->edge, error);
+    const struct line_response *response =
+        worker_response(worker, &problem, drive->edge, drive->bit_time > 0.0, error);
     struct line_peak near, far;
     if (response == NULL || !line_response_peaks(response, 1, drive->edge, &near, &far, error))
         return error_in(error, "line");

@@ -12,6 +12,7 @@ struct kept_response {
     struct arena *arena;
     struct line_problem problem; /* padding and unused entries zeroed, so that memcmp compares */
     double shortest_edge;
+    bool lasting;
     struct line_response *response; /* NULL: none yet */
     size_t used;                    /* when, in calls */
 };
@@ -68,11 +69,12 @@ static double shortest_edge_for(const struct model_worker *worker, double edge) 
 
 /* The one that answers this problem, else the one that was not used for longest. */
 static struct kept_response *kept_for(struct model_worker *worker,
-                                      const struct line_problem *problem, double shortest) {
+                                      const struct line_problem *problem, double shortest,
+                                      bool lasting) {
     struct kept_response *oldest = &worker->kept[0];
     for (size_t i = 0; i < KEPT; i++) {
         struct kept_response *kept = &worker->kept[i];
-        if (kept->response != NULL && kept->shortest_edge == shortest &&
+        if (kept->response != NULL && kept->shortest_edge == shortest && kept->lasting == lasting &&
             memcmp(&kept->problem, problem, sizeof *problem) == 0)
             return kept;
         if (kept->used < oldest->used)
@@ -84,14 +86,17 @@ static struct kept_response *kept_for(struct model_worker *worker,
 
 const struct line_response *worker_response(struct model_worker *worker,
                                             const struct line_problem *problem, double edge,
-                                            struct error *error) {
+                                            bool lasting, struct error *error) {
     double shortest = shortest_edge_for(worker, edge);
-    struct kept_response *kept = kept_for(worker, problem, shortest);
+    struct kept_response *kept = kept_for(worker, problem, shortest, lasting);
     kept->used = ++worker->calls;
     if (kept->response != NULL)
         return kept->response;
     arena_rewind(kept->arena, (struct arena_mark){0, 0});
-    kept->response = line_response_create(problem, 0, shortest, kept->arena, error);
+    kept->response = lasting
+                         ? line_response_create_lasting(problem, 0, shortest, kept->arena, error)
+                         : line_response_create(problem, 0, shortest, kept->arena, error);
+    kept->lasting = lasting;
     kept->problem = *problem;
     kept->shortest_edge = shortest;
     return kept->response;

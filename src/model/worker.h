@@ -9,6 +9,6 @@
  * until the next call. */
 const struct line_response *worker_response(struct model_worker *worker,
                                             const struct line_problem *problem, double edge,
-                                            struct error *error);
+                                            bool lasting, struct error *error);
 
 #endif
