@@ -11,7 +11,6 @@
 #include <stdint.h>
 #include <string.h>
 
-enum { SCAN_SHORT = 4 }; /* one sample in so many of short runs */
 enum { MOST_SAMPLES = 32, MOST_SCAN = 20000, LINE_POSITIONS = (MOST_SAMPLES - 1) * SCAN_FINE + 1 };
 /* Room for what is not at the worst corner or end in the scan; what hides must rise by so much
  * above its neighbours to be worth a look. */
@@ -49,14 +48,14 @@ static double short_run(const struct scan *scan) {
                                                           : 0.0;
 }
 
-/* A run a twelfth as long couples at most about a twelfth as much while it is short against the
- * edge, and costs the most to solve (its bounces are the finest): a probe leaves such runs to the
- * proof, and a proof leaves out those that are short. */
+/* Short runs cost the most to solve (their bounces are the finest) and couple in proportion to
+ * their length: below a quarter of the longest none is the worst.  A probe leaves all runs below a
+ * twelfth to the proof. */
 static double sample_from(const struct scan *scan, const struct region_axis *axis) {
-    double twelfth = axis->high / 12.0;
     if (!is_named(scan->region, axis, "length"))
         return axis->low;
-    return fmax(axis->low, scan->full ? fmin(twelfth, short_run(scan)) : twelfth);
+    double steady = fmin(axis->high / 4.0, short_run(scan));
+    return fmax(axis->low, scan->full ? steady : fmax(steady, axis->high / 12.0));
 }
 
 static size_t samples_for(const struct scan *scan, const struct region_axis *axis, double low) {
@@ -114,16 +113,6 @@ static double value_at(const struct scan *scan, size_t i, size_t at) {
         return axis.low + (double)(at / SCAN_FINE);
     axis.low = scan->low[i];
     return region_sample(&axis, at, (scan->samples[i] - 1) * SCAN_FINE + 1);
-}
-
-/* Of short runs as short as a twelfth to a quarter of the longest a few samples are enough: there
- * is no resonance between them, and the slope still calls for more. */
-static bool is_thin(const struct scan *scan, size_t position) {
-    static const double share = 0.25;
-    const struct region_axis *axis = &scan->region->axes[scan->line];
-    double length = value_at(scan, scan->line, position);
-    return scan->full && is_named(scan->region, axis, "length") &&
-           length < fmin(short_run(scan), share * axis->high);
 }
 
 /* ---- the worst so far ---- */
@@ -220,26 +209,15 @@ static bool may_hide(const struct scan *scan, const struct line *line, size_t fr
     return false;
 }
 
-/* The samples of a line, the longest first; where runs are short a few of them. */
-static bool solve_samples(struct scan *scan, struct line *line, struct error *error) {
+static bool solve_line(struct scan *scan, struct line *line, bool refined, struct error *error) {
     memset(line->known, 0, sizeof line->known);
-    for (size_t left = (line->positions - 1) / SCAN_FINE + 1; left > 0; left--) {
-        size_t position = (left - 1) * SCAN_FINE;
-        if ((left - 1) % SCAN_SHORT != 0 && scan->line != SIZE_MAX && is_thin(scan, position))
-            continue;
+    for (size_t position = 0; position < line->positions; position += SCAN_FINE)
         if (!solve_position(scan, line, position, error))
             return false;
-    }
-    return true;
-}
-
-static bool solve_line(struct scan *scan, struct line *line, bool refined, struct error *error) {
-    if (!solve_samples(scan, line, error))
-        return false;
-    for (size_t stride = SCAN_SHORT * SCAN_FINE; refined && stride > 1; stride /= 2)
+    for (size_t stride = SCAN_FINE; refined && stride > 1; stride /= 2)
         for (size_t from = 0; from + stride < line->positions; from += stride)
             if (line->known[from] && line->known[from + stride] &&
-                !line->known[from + stride / 2] && may_hide(scan, line, from, stride) &&
+                may_hide(scan, line, from, stride) &&
                 !solve_position(scan, line, from + stride / 2, error))
                 return false;
     return true;
