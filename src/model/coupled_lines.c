@@ -137,7 +137,7 @@ const struct model model_coupled_lines = {
                "published?",
     .method = "The given matrices are taken as they are. " COUPLED_LINE_METHOD,
     .validity = "Lossless lines of constant section; drivers and receivers are linear.",
-    .revision = 1,
+    .revision = 2,
     .inputs = inputs,
     .input_count = INPUT_COUNT,
     .outputs = coupled_outputs,

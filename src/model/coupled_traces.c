@@ -230,7 +230,7 @@ const struct model model_coupled_traces = {
     .validity = BOARD_SECTION_VALIDITY
     " Drivers and receivers are linear; a strip between the traces is tied "
     "ideally, everywhere or at one point.",
-    .revision = 1,
+    .revision = 2,
     .inputs = inputs,
     .input_count = INPUT_COUNT,
     .outputs = coupled_outputs,
