@@ -35,12 +35,20 @@ static bool reserve(struct comb *comb, size_t phases, struct error *error) {
     return true;
 }
 
+typedef double sampled(const struct line_response *response, size_t end, size_t victim, double edge,
+                       double time);
+
 static void take_samples(const struct line_response *response, size_t end, size_t victim,
-                         double edge, struct comb *comb) {
+                         double edge, sampled *sample, struct comb *comb) {
     for (size_t k = 0; k < comb->teeth; k++)
         for (size_t p = 0; p < comb->phases; p++)
             comb->samples[k * comb->phases + p] =
-                response_at(response, end, victim, edge, comb->phase[p] + (double)k * comb->apart);
+                sample(response, end, victim, edge, comb->phase[p] + (double)k * comb->apart);
+}
+
+void comb_coarse(const struct line_response *response, size_t end, size_t victim, double edge,
+                 struct comb *comb) {
+    take_samples(response, end, victim, edge, response_coarse_at, comb);
 }
 
 /* A phase worth having, and by how much a sample beside it may fall short, V. */
@@ -166,13 +174,13 @@ bool comb_create(const struct line_response *response, size_t end, size_t victim
         made.extra[p] = false;
     }
     if (ok)
-        take_samples(response, end, victim, edge, &made);
+        take_samples(response, end, victim, edge, response_at, &made);
     ok = ok && add_extra(response, end, victim, edge, &made, error);
     if (!ok) {
         comb_free(&made);
         return false;
     }
-    take_samples(response, end, victim, edge, &made);
+    take_samples(response, end, victim, edge, response_at, &made);
     *comb = made;
     return true;
 }

@@ -21,6 +21,9 @@ struct comb {
 bool comb_create(const struct line_response *response, size_t end, size_t victim, double edge,
                  double bit_time, double from, double longest, struct comb *comb,
                  struct error *error);
+/* The same phases sampled on the response's coarser grid. */
+void comb_coarse(const struct line_response *response, size_t end, size_t victim, double edge,
+                 struct comb *comb);
 void comb_free(struct comb *comb);
 
 /* Leaves every other uniform phase out, for what the rest is worth. */

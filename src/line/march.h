@@ -28,7 +28,8 @@ struct march {
     size_t count;
     double step;
     size_t samples, window;
-    double *value[2];                          /* [count][samples] step response, V, near and far */
+    size_t stride;                             /* from conductor to conductor in `value` */
+    double *value[2];                          /* [count][stride] step response, V, near and far */
     double *integral[2];                       /* [count][samples] its integral, V s */
     struct rest rest[2][LINE_MOST_CONDUCTORS]; /* not set with exact_steps */
 };

@@ -103,3 +103,10 @@ bool problem_check(const struct line_problem *problem, struct error *error) {
             return false;
     return check_emfs(problem, error);
 }
+
+double problem_largest_emf(const struct line_problem *problem) {
+    double largest = 0;
+    for (size_t i = 0; i < problem->count; i++)
+        largest = fmax(largest, fabs(problem->near[i].emf));
+    return largest;
+}

@@ -10,6 +10,9 @@
 bool problem_check_matrices(const struct line_problem *problem, struct error *error);
 bool problem_check(const struct line_problem *problem, struct error *error);
 
+/* V, of the near ends. */
+double problem_largest_emf(const struct line_problem *problem);
+
 /* End voltages for the EMFs of the near ends at the complex frequency s, rad/s, Re s >= 0.
  * Travelling-wave form: unknowns are the modal waves leaving both ends, so nothing is singular
  * where sin(beta l) = 0. */

@@ -15,7 +15,12 @@ struct line_response {
     struct curve curve[2][LINE_MOST_CONDUCTORS];
     struct curve coarse[2][LINE_MOST_CONDUCTORS]; /* the same on twice the step */
     struct lossy *lossy;                          /* NULL without loss */
-    double rest_error[2][LINE_MOST_CONDUCTORS];   /* relative: what may follow the window */
+    double emf;                                   /* V, the largest */
+    /* For the shortest edge, of all but what is driven: peaks, and by how much the coarse ones
+     * differ. */
+    struct line_peak shortest[2][LINE_MOST_CONDUCTORS];
+    double difference[2][LINE_MOST_CONDUCTORS];
+    double rest_error[2][LINE_MOST_CONDUCTORS]; /* relative: what may follow the window */
     /* V s: range of the integral, and by how much it still swings at the end of the march */
     double range[2][LINE_MOST_CONDUCTORS], late[2][LINE_MOST_CONDUCTORS];
 };
@@ -41,5 +46,8 @@ bool response_check(const struct line_response *response, size_t victim, double 
 /* V at the near (0) or far end (1) of `victim` at `time`, for a ramp of `edge`. */
 double response_at(const struct line_response *response, size_t end, size_t victim, double edge,
                    double time);
+/* The same on twice the step. */
+double response_coarse_at(const struct line_response *response, size_t end, size_t victim,
+                          double edge, double time);
 
 #endif

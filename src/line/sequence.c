@@ -48,9 +48,13 @@ static double resting_time(const struct line_response *response, size_t end, siz
     return (staircase->steps > 0 ? staircase->time[staircase->steps - 1] : 0) + edge;
 }
 
+/* Blurred fronts, which late ringing is made of, fall with the step alone: what is left on the
+ * finer grid is as much as the change, or more where the coarser one is far off. */
+static const double LEFT_OF_CHANGE = 2;
+
 struct found {
     double free, clocked;
-    double change; /* without every other uniform phase, V */
+    double change; /* without every other uniform phase, and on the response's coarser grid, V */
 };
 
 static bool search(const struct line_response *response, size_t end, size_t victim, double edge,
@@ -72,7 +76,11 @@ static bool search(const struct line_response *response, size_t end, size_t vict
     count = comb.teeth * comb.phases;
     double thin_free = sequence_free(comb.samples, count, comb.phases, scratch);
     double thin_clocked = sequence_clocked(comb.samples, count, comb.phases);
-    all.change = fmax(all.free - thin_free, all.clocked - thin_clocked);
+    comb_coarse(response, end, victim, edge, &comb);
+    double coarse_free = sequence_free(comb.samples, count, comb.phases, scratch);
+    double coarse_clocked = sequence_clocked(comb.samples, count, comb.phases);
+    double of_grid = fmax(fabs(coarse_free - thin_free), fabs(coarse_clocked - thin_clocked));
+    all.change = fmax(all.free - thin_free, all.clocked - thin_clocked) + LEFT_OF_CHANGE * of_grid;
     *found = all;
     free(scratch);
     comb_free(&comb);
@@ -80,7 +88,8 @@ static bool search(const struct line_response *response, size_t end, size_t vict
 }
 
 /* V: what edges `bit_time` apart can add up to after the end of the march, each at most its last
- * swing over the edge, less and less as the ringing has fallen so far. */
+ * swing over the edge, less and less as the ringing has fallen so far; twice that, for what rings
+ * last falls more slowly than the whole did. */
 static double tail(const struct line_response *response, size_t end, size_t victim, double edge,
                    double bit_time) {
     double late = response->late[end][victim], range = response->range[end][victim];
@@ -88,7 +97,7 @@ static double tail(const struct line_response *response, size_t end, size_t vict
         return 0;
     double fallen =
         log(fmax(range / late, 1.01)) * bit_time / resting_time(response, end, victim, edge);
-    return late / edge / -expm1(-fallen);
+    return 2 * late / edge / -expm1(-fallen);
 }
 
 /* The response itself is as good as its peak. */

@@ -271,14 +271,14 @@ static void complete(const struct coupled_drive *drive, struct arrival *arrival)
 static bool arrivals(const struct coupled_fold *fold, const struct coupled_drive *drive,
                      struct model_worker *worker, struct arrival *arrival, struct error *error) {
     bool to_rest = drive->bit_time > 0.0 || drive->settling > 0.0;
-    size_t place = 0;
+    bool first = true;
     for (size_t a = 0; a < fold->count; a++) {
-        bool first = place == 0;
         if (a == COUPLED_VICTIM || (!drive->independent && !first))
             continue;
         struct line_problem problem = line_of(fold, drive, drive->independent ? a : SIZE_MAX);
         const struct line_response *response =
-            worker_response(worker, place++, &problem, drive->edge, to_rest, error);
+            worker_response(worker, &problem, drive->edge, to_rest, error);
+        first = false;
         if (response == NULL)
             return error_in(error, "line");
         if (!add_response(response, drive, arrival, error))

@@ -356,6 +356,13 @@ static bool respond(const double *values, const double *prepared, struct model_w
     return true;
 }
 
+/* A tenth of the edge for a passage in the dielectric alone, the slowest there is. */
+static double steady_length(const double *values) {
+    static const double light = 299792458.0, part = 0.1;
+    double dk = fmax(values[DK], fmax(values[MASK_DK], values[COVER_DK]));
+    return part * values[EDGE] * light / sqrt(fmax(dk, 1.0));
+}
+
 const struct model model_coupled_traces = {
     .name = "coupled-traces",
     .title = "Traces side by side",
@@ -377,4 +384,5 @@ const struct model model_coupled_traces = {
     .prepare = prepare,
     .respond = respond,
     .sketch = sketch,
+    .steady_length = steady_length,
 };
