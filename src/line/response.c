@@ -144,49 +144,65 @@ struct line_peak response_peak(const struct line_response *response, size_t end,
                : curve_peak(&response->curve[end][victim], edge, from);
 }
 
-/* V, between the two grids. */
-static double difference(const struct line_response *response, size_t end, size_t victim,
-                         double edge, double from) {
-    if (is_kept(response, end, victim, edge, from))
-        return response->difference[end][victim];
-    return fabs(response_peak(response, end, victim, edge, from).highest -
-                curve_peak(&response->coarse[end][victim], edge, from).highest);
+/* Peaks of both ends on the finer grid; differences[2]: by how much the coarser one's are others.
+ */
+static void peaks_on_grids(const struct line_response *response, size_t victim, double edge,
+                           double from, struct line_peak peaks[2], double differences[2]) {
+    for (size_t end = 0; end < 2; end++) {
+        peaks[end] = response_peak(response, end, victim, edge, from);
+        differences[end] =
+            is_kept(response, end, victim, edge, from)
+                ? response->difference[end][victim]
+                : fabs(peaks[end].highest -
+                       curve_peak(&response->coarse[end][victim], edge, from).highest);
+    }
 }
 
-/* Fourth order would leave a fifteenth of the difference, fronts that blur all of it.  Two peaks
- * may agree by chance; both ends, and the shortest edge, whose error falls with the edge, hardly
- * do. */
-double response_peak_error(const struct line_response *response, size_t end, size_t victim,
-                           double edge, double from) {
-    struct line_peak peak = response_peak(response, end, victim, edge, from);
-    if (response->lossy != NULL)
-        return peak.error * peak.highest;
-    if (response->exact)
-        return 0;
+/* V.  Fourth order would leave a fifteenth of the difference, fronts that blur all of it.  Two
+ * peaks may agree by chance; both ends, and the shortest edge, whose error falls with the edge,
+ * hardly do. */
+static double error_on_grids(const struct line_response *response, size_t end, size_t victim,
+                             double edge, double peak, const double differences[2]) {
     double shortest = response->difference[end][victim] * response->shortest_edge / edge;
-    double own = difference(response, end, victim, edge, from);
-    double other = difference(response, 1 - end, victim, edge, from);
-    return fmax(own, fmax(0.5 * other, shortest)) + ALIKE * peak.highest +
+    return fmax(differences[end], fmax(0.5 * differences[1 - end], shortest)) + ALIKE * peak +
            ALIKE_OF_EMF * response->emf;
 }
 
-static struct line_peak peak_at(const struct line_response *response, size_t end, size_t victim,
-                                double edge) {
-    struct line_peak peak = response_peak(response, end, victim, edge, 0);
-    if (response->lossy != NULL)
-        return peak;
-    peak.error = response->rest_error[end][victim];
-    if (peak.highest > 0)
-        peak.error += response_peak_error(response, end, victim, edge, 0) / peak.highest;
-    return peak;
+double response_peak_error(const struct line_response *response, size_t end, size_t victim,
+                           double edge, double from) {
+    struct line_peak peaks[2];
+    double differences[2];
+    if (response->lossy != NULL) {
+        struct line_peak peak = response_peak(response, end, victim, edge, from);
+        return peak.error * peak.highest;
+    }
+    if (response->exact)
+        return 0;
+    peaks_on_grids(response, victim, edge, from, peaks, differences);
+    return error_on_grids(response, end, victim, edge, peaks[end].highest, differences);
 }
 
 bool line_response_peaks(const struct line_response *response, size_t victim, double edge,
                          struct line_peak *near, struct line_peak *far, struct error *error) {
+    struct line_peak peaks[2];
+    double differences[2] = {0, 0};
+    bool on_grids = !response->exact && response->lossy == NULL;
     if (!response_check(response, victim, edge, error))
         return false;
-    *near = peak_at(response, 0, victim, edge);
-    *far = peak_at(response, 1, victim, edge);
+    if (on_grids)
+        peaks_on_grids(response, victim, edge, 0, peaks, differences);
+    for (size_t end = 0; end < 2; end++) {
+        if (!on_grids)
+            peaks[end] = response_peak(response, end, victim, edge, 0);
+        if (response->lossy == NULL)
+            peaks[end].error = response->rest_error[end][victim];
+        if (on_grids && peaks[end].highest > 0)
+            peaks[end].error +=
+                error_on_grids(response, end, victim, edge, peaks[end].highest, differences) /
+                peaks[end].highest;
+    }
+    *near = peaks[0];
+    *far = peaks[1];
     return true;
 }
 

@@ -139,14 +139,33 @@ static void find_peaks(const struct line_setup *setup, double edge, struct rung 
                 rung->peak[end][k] = curve_peak(&rung->curve[end][k], edge, 0);
 }
 
+static bool is_enough(double peak, double other, double emf) {
+    return fabs(peak - other) <= ENOUGH * peak + ENOUGH_OF_EMF * emf;
+}
+
+/* Two peaks may agree by chance, not those of other edges as well. */
+static bool agree_elsewhere(const struct line_setup *setup, double edge, const struct rung *fine,
+                            const struct rung *coarse) {
+    static const double longer[] = {1.23, 1.61};
+    double emf = problem_largest_emf(setup->problem);
+    for (size_t i = 0; i < sizeof longer / sizeof *longer; i++)
+        for (size_t end = 0; end < 2; end++)
+            for (size_t k = 0; k < setup->problem->count; k++)
+                if (tells(setup->problem, k) &&
+                    !is_enough(curve_peak(&fine->curve[end][k], longer[i] * edge, 0).highest,
+                               curve_peak(&coarse->curve[end][k], longer[i] * edge, 0).highest,
+                               emf))
+                    return false;
+    return true;
+}
+
 /* Whether both grids agree on the peaks of the shortest edge. */
 static bool agree(const struct line_setup *setup, const struct rung *fine,
                   const struct rung *coarse) {
     double emf = problem_largest_emf(setup->problem);
     for (size_t end = 0; end < 2; end++)
         for (size_t k = 0; k < setup->problem->count; k++) {
-            double peak = fine->peak[end][k].highest, other = coarse->peak[end][k].highest;
-            if (!(fabs(peak - other) <= ENOUGH * peak + ENOUGH_OF_EMF * emf))
+            if (!is_enough(fine->peak[end][k].highest, coarse->peak[end][k].highest, emf))
                 return false;
         }
     return true;
@@ -179,7 +198,8 @@ bool rungs_climb(const struct line_setup *setup, struct arena *arena,
             return false;
         find_peaks(setup, edge, &rungs[fine]);
         if (rung == MOST_RUNGS || 2 * rungs[fine].march.samples > MOST_STEPS ||
-            agree(setup, &rungs[fine], &rungs[1 - fine]))
+            (agree(setup, &rungs[fine], &rungs[1 - fine]) &&
+             agree_elsewhere(setup, edge, &rungs[fine], &rungs[1 - fine])))
             break;
     }
     for (size_t end = 0; end < 2; end++) {
