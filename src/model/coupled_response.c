@@ -30,7 +30,7 @@ const struct model_output coupled_outputs[COUPLED_OUTPUT_COUNT] = {
          "Largest voltage for edges on whole multiples of the bit time, larger end.",
          DIMENSION_VOLTAGE, MODEL_HIGHER_IS_WORSE, NULL},
     [COUPLED_NOISE_PEAK] =
-        {"noise_peak", "crosstalk that the victim's receiver counts", "V<sub>noise</sub>",
+        {"noise_peak", "crosstalk that counts at the receiver", "V<sub>noise</sub>",
          "Largest voltage at the receiver's end for the worst sequence of edges (`bit_time`; else "
          "one "
          "edge), at instants at least `settling` after the start of the latest edge.",
