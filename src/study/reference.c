@@ -11,22 +11,10 @@ struct words {
     size_t inputs;
 };
 
-/* Where 0 stands for what is not there, a reader would take "an edge distance of 0 mm" for a trace
- * at the edge. */
-static const char *absent(const char *name) {
-    static const char *const words[][2] = {{"edge_distance", "an infinite plane"},
-                                           {"cover", "no plane above"},
-                                           {"bit_time", "a single edge"}};
-    for (size_t i = 0; i < sizeof words / sizeof *words; i++)
-        if (strcmp(name, words[i][0]) == 0)
-            return words[i][1];
-    return NULL;
-}
-
 /* "Four layers, 1.6 mm at a gap of 0.3 mm and a length of 50 mm" */
 static void describe(struct words *words, const char *name, const char *text, double value) {
+    const char *nothing = value == 0.0 ? given_absent(name) : NULL;
     const char *article = strchr("aeiou", name[0]) != NULL ? "an" : "a";
-    const char *nothing = value == 0.0 ? absent(name) : NULL;
     if (words->text.length > 0)
         text_add(&words->text, words->inputs == 0 ? " at " : " and ");
     words->inputs++;

@@ -290,7 +290,7 @@ static void test_a_reference_and_a_table_are_read(void **state) {
     assert_true(reference->values[input_of(chapter, "gap")] == 0.3e-3);
     assert_true(reference->values[input_of(chapter, "height")] == 0.19e-3);
     assert_true(isnan(reference->values[input_of(chapter, "width")]));
-    assert_string_equal(reference->text, "b at a gap of 0.3 mm");
+    assert_string_equal(reference->text, "b at a gap of 0.3 mm and an infinite plane");
     assert_int_equal(rule->rows.count, 2);
     assert_int_equal(rule->rows.input, input_of(chapter, "length"));
     assert_range(rule->rows.ranges[0], 1e-3, 50e-3);
