@@ -369,9 +369,8 @@ static void test_the_previous_issue_is_looked_for_beside_the_study(void **state)
     assert_int_equal(error.kind, ERROR_NONE);
     assert_int_equal(problems.count, 1);
     assert_string_equal(problems.items[0].path, "previous");
-    write_text(old_path,
-               "{\"format\": \"groundrules-rules 1\", \"rules\": [],\n"
-               " \"files\": [{\"name\": \"a.pdf\"}]}");
+    write_text(old_path, "{\"format\": \"groundrules-rules 1\", \"rules\": [],\n"
+                         " \"files\": [{\"name\": \"a.pdf\"}]}");
     assert_ok(study_read(study_path, arena, &study, &problems, &error));
     assert_string_equal(study.previous, old_path);
     remove(study_path);
