@@ -118,9 +118,9 @@ bool coupled_respond(const struct coupled_set *set, const struct coupled_drive *
 #define COUPLED_RESISTIVITY                                                                        \
     {                                                                                              \
         "copper_resistivity",                                                                      \
-            "resistivity of the copper, 1.72e-8 ohm m at 20 C; 0 = lossless, which bounds the "    \
-            "peaks "                                                                               \
-            "from above and is some ten times faster",                                             \
+            "resistivity of the copper, 1.72e-8 ohm m at 20 C; 0 = lossless, some ten times "      \
+            "faster; mostly the larger peaks, but not at the far end between planes nor long "     \
+            "after an edge",                                                                       \
             DIMENSION_RESISTIVITY, MODEL_SHAPE, 0, 0, 1e-5, false, NULL, NULL, 0, NULL             \
     }
 #define COUPLED_FREQUENCY                                                                          \

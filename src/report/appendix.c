@@ -174,10 +174,9 @@ static void inputs(struct flow *flow) {
 
 static void methods(struct flow *flow) {
     static const char *const paragraphs[] = {
-        "<b>Sections.</b> First-kind Galerkin boundary elements on the faces of the copper, the "
-        "grounded slab by its "
-        "image series; with a coating, a plane above or a plane that ends, total charge on copper "
-        "and on the borders of the dielectrics; external inductance from the solution in air, L = "
+        "<b>Sections.</b> Galerkin boundary elements on the faces of the copper, the grounded slab "
+        "by its image series; mask, planes above or that end and etched copper by the charge on "
+        "the borders of the dielectrics as well; external inductance from the solution in air, L = "
         "µ<sub>0</sub>ε<sub>0</sub>C<sub>0</sub><sup>−1"
         "</sup>. Total-charge and image methods for multiconductor lines: Weeks 1970 (IEEE Trans. "
         "MTT-18, 35–43); Wei, "
@@ -192,11 +191,9 @@ static void methods(struct flow *flow) {
         "current. Tied at one end: zero potential and zero net current, valid below the strip’s "
         "resonance.",
         "<b>Lines.</b> Coupled lines by travelling modes between the real ends (Branin 1967 for "
-        "one "
-        "line; modal decomposition as in Paul, Analysis of Multiconductor Transmission Lines, 2nd "
-        "ed. 2008); with loss by inversion of the Laplace transform (Wilcox 1978), skin effect by "
-        "the incremental-inductance rule (Wheeler 1942), the dielectric causal (Djordjevic, "
-        "Biljic, Likar-Smiljanic and Sarkar 2001).",
+        "one line; modal decomposition as in Paul, Analysis of Multiconductor Transmission Lines, "
+        "2nd ed. 2008); with loss (skin effect after Wheeler 1942, causal dielectric after "
+        "Djordjevic et al. 2001) by inversion of the Laplace transform (Wilcox 1978).",
         "<b>Rules.</b> The region that a rule permits (the found input beyond its bound, stated "
         "ranges, tolerances, "
         "either receiver end) is scanned, every local maximum is refined by solving, and the value "
@@ -238,6 +235,11 @@ static void glossary(struct flow *flow) {
          "Far-end voltage of a matched, weakly coupled pair per length and per "
          "rate of change of the aggressor’s voltage; negative where the "
          "inductive part prevails."},
+        {"Bit time", "Least time between two edges of one aggressor; 0: there is only one edge."},
+        {"Settling",
+         "From the start of the aggressor’s latest edge to the instant at which the victim is "
+         "sampled; 0: every instant counts."},
+        {"Edge distance", "From the centre of the outermost trace to the edge of the plane."},
         {"Level", "20 log of the victim’s voltage over the driver’s EMF."},
         {"Floating, tied",
          "Copper connected to nothing; to ground. Tied at one end: at a single point."},
@@ -275,16 +277,16 @@ static void cautions(struct flow *flow) {
         "they come first.",
         "Emission and immunity are shown by measurement to the standards that apply to the "
         "product.",
-        "Sections are as drawn: solder mask, tapered copper and loss are in the numbers only where "
-        "a "
-        "chapter states them; planes are infinite but for an edge that is stated. Cuts in the "
-        "plane, vias, connectors and bends are not in these numbers; over a cut plane none of "
-        "these rules holds.",
+        "Loss, solder mask, etched copper, a plane above and the edge of a plane are in a number "
+        "only where its inputs give them; see Inputs and tolerances. Cuts in the plane, vias, "
+        "connectors and bends are in none; over a cut plane none of these rules holds.",
+        "What is solved without loss is mostly the larger, but not the far end between planes or "
+        "under thick mask, nor what is left long after an edge.",
         "Edges are linear ramps. A rounder edge of the same 10–90 % time can give up to 28 % more "
-        "at a matched far end. "
-        "Peaks are for one edge unless a bit time is given; on a line that rings the edges of a "
-        "sequence can add up to more.",
-        "One aggressor switches unless a chapter states more. Several neighbours that switch "
+        "at a matched far end. Near-end, far-end, larger and receiver peaks are for one edge; on a "
+        "line that rings the edges of a sequence can add up to more. Only the peaks of a sequence "
+        "and what the receiver counts know the bit time.",
+        "One aggressor switches unless a chapter says that there are more; neighbours that switch "
         "together add their contributions.",
     };
     flow_heading(flow, 1, "Cautions", "part.cautions", 120.0);

@@ -208,13 +208,32 @@ static const char *would_do(struct flow *flow, const struct study_chapter *chapt
     return all;
 }
 
+/* A rule on the peak of a single edge says nothing on the sequences that the stated bit time
+ * allows, however plainly the card shows that bit time among what is given. */
+static const char *condition_words(struct flow *flow, const struct study_rule *rule,
+                                   const struct study_chapter *chapter) {
+    static const char *const of_one_edge[] = {"near_end_peak",  "far_end_peak",   "worst_peak",
+                                              "receiver_peak",  "near_end_ratio", "far_end_ratio",
+                                              "near_end_level", "far_end_level"};
+    const char *words = words_condition(flow, rule, chapter, &rule->variants[0]);
+    const char *output = chapter->model->outputs[rule->condition.output].name;
+    size_t bit_time = model_input_index(chapter->model, "bit_time");
+    bool many = false;
+    for (size_t v = 0; bit_time < chapter->model->input_count && v < rule->variant_count; v++)
+        many = many || rule->variants[v].settings[bit_time].range.to > 0.0;
+    for (size_t i = 0; many && i < sizeof of_one_edge / sizeof *of_one_edge; i++)
+        if (strcmp(output, of_one_edge[i]) == 0)
+            return flow_print(
+                flow, "%s, for a single edge: sequences at the bit time are not counted", words);
+    return words;
+}
+
 static size_t lines_of(struct flow *flow, const struct study_chapter *chapter,
                        const struct guideline_rule *result, double width, struct line *lines) {
     const struct study_rule *rule = result->rule;
     const char *remedies = would_do(flow, chapter, result);
     size_t count = 0;
-    lines[count++] =
-        (struct line){"So that", words_condition(flow, rule, chapter, &rule->variants[0])};
+    lines[count++] = (struct line){"So that", condition_words(flow, rule, chapter)};
     if (*remedies != '\0')
         lines[count++] = (struct line){
             "Would do", flow_shorten(flow, THEME_BODY, remedies, width, REMEDY_LINES)};

@@ -89,6 +89,25 @@ double given_middle(const struct model_input *input, struct interval range) {
     return range.from + (range.to - range.from) / 2;
 }
 
+const char *given_absent(const char *input) {
+    static const char *const absent[][2] = {{"edge_distance", "an infinite plane"},
+                                            {"cover", "no plane above"},
+                                            {"bit_time", "a single edge"}};
+    for (size_t i = 0; i < sizeof absent / sizeof *absent; i++)
+        if (strcmp(input, absent[i][0]) == 0)
+            return absent[i][1];
+    return NULL;
+}
+
+bool given_begins_soundly(const struct reader *reader, const struct node *node,
+                          const struct model_input *input, double from) {
+    const char *absent = given_absent(input->name);
+    return from != 0.0 || absent == NULL ||
+           reader_refuse(reader, node,
+                         "begins at 0, which for %s is %s and not its least value; begin above it",
+                         input->name, absent);
+}
+
 static bool in_declaration(const struct reader *reader, const struct node *node,
                            const struct model_input *input, double value) {
     struct error error = {0};
@@ -146,6 +165,8 @@ bool given_setting(const struct reader *reader, const struct node *node,
         if (!reader_span(reader, node, input->dimension,
                          (struct bounds){input->lowest, input->highest},
                          given_is_edge(input) ? &levels : NULL, &quantity, &read.range, &is_range))
+            return false;
+        if (is_range && !given_begins_soundly(reader, node, input, read.range.from))
             return false;
         read.value = is_range ? given_middle(input, read.range) : quantity.value;
         read.minus = quantity.minus;

@@ -44,6 +44,14 @@ bool given_value(const struct reader *reader, const struct node *node,
 bool given_interval(const struct reader *reader, const struct node *node,
                     const struct model_input *input, struct interval *interval);
 
+/* What a 0 of this input stands for where it is no small value but nothing at all, as an edge
+ * distance of 0 is an infinite plane; NULL for all other inputs. */
+const char *given_absent(const char *input);
+
+/* Whether an interval of it may begin there. */
+bool given_begins_soundly(const struct reader *reader, const struct node *node,
+                          const struct model_input *input, double from);
+
 /* "stackup", "aggressor", "victim". */
 bool given_is_source(const char *key);
 

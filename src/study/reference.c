@@ -12,17 +12,20 @@ struct words {
 };
 
 /* "Four layers, 1.6 mm at a gap of 0.3 mm and a length of 50 mm" */
-static void describe(struct words *words, const char *name, const char *value) {
+static void describe(struct words *words, const char *name, const char *text, double value) {
+    const char *nothing = value == 0.0 ? given_absent(name) : NULL;
     const char *article = strchr("aeiou", name[0]) != NULL ? "an" : "a";
-    text_format(&words->text, "%s%s ",
-                words->text.length == 0 ? ""
-                : words->inputs == 0    ? " at "
-                                        : " and ",
-                article);
+    if (words->text.length > 0)
+        text_add(&words->text, words->inputs == 0 ? " at " : " and ");
+    words->inputs++;
+    if (nothing != NULL) {
+        text_add(&words->text, nothing);
+        return;
+    }
+    text_format(&words->text, "%s ", article);
     for (const char *at = name; *at != '\0'; at++)
         text_add_length(&words->text, *at == '_' ? " " : at, 1);
-    text_format(&words->text, " of %s", value);
-    words->inputs++;
+    text_format(&words->text, " of %s", text);
 }
 
 static bool read_inputs(const struct reader *reader, const struct model *model,
@@ -43,7 +46,7 @@ static bool read_inputs(const struct reader *reader, const struct model *model,
             ok = false;
             continue;
         }
-        describe(words, child->key, child->text);
+        describe(words, child->key, child->text, reference->values[input]);
     }
     return ok;
 }

@@ -113,6 +113,7 @@ bool draft_read_vary(const struct reader *reader, struct draft *draft) {
                            "found %s; expected a sweep, such as \"0.15 mm .. 6 mm in 40 points\", "
                            "or a list of values",
                            tree_kind_name(child->kind));
+    ok = ok && given_begins_soundly(reader, child, &model->inputs[input], vary->points[0]);
     draft->vary_node = ok ? child : NULL;
     return ok;
 }

@@ -38,6 +38,13 @@ P
 
 check "a folder below a file cannot be written" exits 5 "$program" build "$root/studies/minimal.json" -o /dev/null/x --quiet
 check "/dev/full is no folder" exits 5 "$program" build "$root/studies/minimal.json" -o /dev/full --quiet
+sed 's/"length": /"bit_time": "10 ns", &/' "$root/studies/minimal.json" > "$scratch/rhythm.json"
+check "a study with a bit time is built" exits 0 "$program" build "$scratch/rhythm.json" -o "$scratch/rhythm" --quiet
+for study in minimal rhythm; do
+    pdftotext -layout "$scratch/$study/guideline.pdf" "$scratch/$study.text"
+done
+check "a rule on a single edge says so beside a bit time" grep -q "for a single edge: sequences" "$scratch/rhythm.text"
+check "and only there" sh -c "! grep -q 'for a single edge: sequences' '$scratch/minimal.text'"
 cp -r "$scratch/minimal" "$scratch/before"
 check "a full disk is told" sh -c "ulimit -f 8; '$program' build '$root/studies/minimal.json' -o '$scratch/minimal' --quiet; [ \$? -eq 5 ]"
 check "and leaves the previous document untouched" diff -r "$scratch/before" "$scratch/minimal"

@@ -290,7 +290,7 @@ static void test_a_reference_and_a_table_are_read(void **state) {
     assert_true(reference->values[input_of(chapter, "gap")] == 0.3e-3);
     assert_true(reference->values[input_of(chapter, "height")] == 0.19e-3);
     assert_true(isnan(reference->values[input_of(chapter, "width")]));
-    assert_string_equal(reference->text, "b at a gap of 0.3 mm");
+    assert_string_equal(reference->text, "b at a gap of 0.3 mm and an infinite plane");
     assert_int_equal(rule->rows.count, 2);
     assert_int_equal(rule->rows.input, input_of(chapter, "length"));
     assert_range(rule->rows.ranges[0], 1e-3, 50e-3);
@@ -369,9 +369,8 @@ static void test_the_previous_issue_is_looked_for_beside_the_study(void **state)
     assert_int_equal(error.kind, ERROR_NONE);
     assert_int_equal(problems.count, 1);
     assert_string_equal(problems.items[0].path, "previous");
-    write_text(old_path,
-               "{\"format\": \"groundrules-rules 1\", \"rules\": [],\n"
-               " \"files\": [{\"name\": \"a.pdf\"}]}");
+    write_text(old_path, "{\"format\": \"groundrules-rules 1\", \"rules\": [],\n"
+                         " \"files\": [{\"name\": \"a.pdf\"}]}");
     assert_ok(study_read(study_path, arena, &study, &problems, &error));
     assert_string_equal(study.previous, old_path);
     remove(study_path);
