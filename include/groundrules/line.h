@@ -88,9 +88,9 @@ struct line_response;
 struct line_response *line_response_create(const struct line_problem *problem, double shortest_edge,
                                            struct arena *arena, struct error *error);
 
-/* The same, followed until the integral swings by a thousandth of its range instead of a fiftieth,
- * and so finely that the late ringing keeps its phase: for sequences of edges, where ringing adds
- * up, and for victims that are sampled late.  Two to four times the work. */
+/* The same, followed until the integral swings by a thousandth of its range instead of a
+ * two-hundredth, and so finely that the late ringing keeps its phase: for sequences of edges, where
+ * ringing adds up, and for victims that are sampled late.  Two to four times the work. */
 struct line_response *line_response_create_long(const struct line_problem *problem,
                                                 double shortest_edge, struct arena *arena,
                                                 struct error *error);

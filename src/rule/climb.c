@@ -5,6 +5,9 @@
 #include <string.h>
 
 enum { MOST_STEPS = 6 }; /* in one direction; the scan's samples are no further apart */
+/* A ridge that gains less than this in so many steps has come to its top. */
+enum { IDLE_STEPS = 20 };
+static const double RIDGE_GAIN = 5e-4;
 
 static double forth(const struct region_axis *axis, double value) {
     return axis->logarithmic ? log(value) : value;
@@ -129,13 +132,14 @@ bool climb_ridge(const struct judge *judge, const struct region *region, size_t 
     uint64_t state = 1;
     double direction[MODEL_MOST_INPUTS], size = 0.2;
     bool worse = false;
-    for (int i = 0; i < steps && region->axis_count > 1; i++) {
+    for (int i = 0, idle = 0; i < steps && idle < IDLE_STEPS && region->axis_count > 1; i++) {
         struct worst tried = *worst;
         if (!worse)
             draw_direction(region, line, &state, direction);
         if (!step_along(judge, region, line, direction, size, &tried, error))
             return false;
         worse = tried.verdict.badness > worst->verdict.badness;
+        idle = tried.verdict.badness > worst->verdict.badness + RIDGE_GAIN ? 0 : idle + 1;
         if (worse)
             *worst = tried;
         size = fmin(0.5, size * (worse ? 1.5 : 0.8));

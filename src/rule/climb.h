@@ -18,8 +18,8 @@ bool climb_axis(const struct judge *judge, const struct region_axis *axis, struc
 
 /* Along a ridge that runs across the axes, where a search along them stands still: random steps in
  * all axes but `line` at once, each followed by a climb along `line` (SIZE_MAX: none), longer after
- * a success, shorter after a failure (Rechenberg 1973), on in a direction that got worse.  The
- * numbers drawn are the same each time. */
+ * a success, shorter after a failure (Rechenberg 1973), on in a direction that got worse; at most
+ * `steps`, and until it rises no more.  The numbers drawn are the same each time. */
 bool climb_ridge(const struct judge *judge, const struct region *region, size_t line, int steps,
                  struct worst *worst, struct error *error);
 

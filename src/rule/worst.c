@@ -14,7 +14,7 @@
 #include <stdint.h>
 #include <string.h>
 
-enum { MOST_CORNER_AXES = 8, ROUNDS = 3, RIDGES = 2, RIDGE_STEPS = 20 };
+enum { MOST_CORNER_AXES = 8, ROUNDS = 3, RIDGES = 2, RIDGE_STEPS = 160 };
 /* A start this much below the worst does not overtake it within a cell. */
 static const double BEHIND = 0.15;
 /* A probe that is this far from the limit is not climbed: what may hide between its samples is a
