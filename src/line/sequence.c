@@ -133,7 +133,8 @@ bool line_response_sequences(const struct line_response *response, size_t victim
     return true;
 }
 
-/* What rings on after the march is at most its last swing over the edge. */
+/* What rings on after the march is at most its last swing over the edge.  Late ringing is no better
+ * known than the peak that it came from. */
 static struct line_settled settled_single(const struct line_response *response, size_t end,
                                           size_t victim, double edge, double settling) {
     struct line_peak late = response_peak(response, end, victim, edge, settling);
@@ -144,7 +145,8 @@ static struct line_settled settled_single(const struct line_response *response, 
         .single = late.highest,
         .time = late.time,
         .free = late.highest,
-        .error = response_peak_error(response, end, victim, edge, settling) +
+        .error = fmax(response_peak_error(response, end, victim, edge, settling),
+                      response_peak_error(response, end, victim, edge, 0)) +
                  response->rest_error[end][victim] * late.highest +
                  (response->exact ? left : fmax(left - late.highest, 0)),
     };
