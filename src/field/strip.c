@@ -81,6 +81,13 @@ static struct strip image_of(const struct strip *strip) {
 
 static const double GAUSS = 0.57735026918962576451;
 
+/* Squared distance of the points of the i-th pair of four. */
+static double square_between(const struct strip *a, const struct strip *b, int i) {
+    struct point p = point_on(a, (i & 1) != 0 ? GAUSS : -GAUSS);
+    struct point q = point_on(b, (i & 2) != 0 ? GAUSS : -GAUSS);
+    return (p.x - q.x) * (p.x - q.x) + (p.z - q.z) * (p.z - q.z);
+}
+
 static double far_coupling(const struct strip *a, const struct strip *b, double length) {
     double sum = 0.0;
     for (int i = 0; i < 4; i++) {
@@ -92,26 +99,36 @@ static double far_coupling(const struct strip *a, const struct strip *b, double 
     return sum / 4.0;
 }
 
-/* The logarithms in closed form, the rest by Gauss; a strip's mean distance from itself is a third
- * of its width. */
-static double near_coupling(const struct strip *a, const struct strip *b, double length) {
-    struct strip image = image_of(b);
+/* k(s) at Gauss points: exact enough where the strips are small against their distance. */
+static double mean_kernel(const struct strip *a, const struct strip *b, double length) {
     double sum = 0.0;
     for (int i = 0; i < 4; i++) {
-        struct point p = point_on(a, (i & 1) != 0 ? GAUSS : -GAUSS);
-        struct point q = point_on(b, (i & 2) != 0 ? GAUSS : -GAUSS);
-        double x = p.x - q.x, z = p.z - q.z, square = x * x + z * z;
-        if (a == b)
-            square = (a->to - a->from) * (a->to - a->from) / 9.0;
-        sum += remainder_of(length, square) - remainder_of(length, x * x + z * z + 4.0 * p.z * q.z);
+        double square = square_between(a, b, i);
+        sum += remainder_of(length, square) - 0.5 * length * log(square);
     }
-    return sum / 4.0 - length * (mean_logarithm(a, b) - mean_logarithm(a, &image));
+    return sum / 4.0;
+}
+
+/* The logarithm in closed form, the rest by Gauss; a strip's mean distance from itself is a third
+ * of its width. */
+static double near_kernel(const struct strip *a, const struct strip *b, double length) {
+    double sum = 0.0;
+    for (int i = 0; i < 4; i++)
+        sum += remainder_of(length, a == b ? (a->to - a->from) * (a->to - a->from) / 9.0
+                                           : square_between(a, b, i));
+    return sum / 4.0 - length * mean_logarithm(a, b);
+}
+
+static bool apart(const struct strip *a, const struct strip *b) {
+    struct point p = point_on(a, 0.0), q = point_on(b, 0.0);
+    double reach = 3.0 * ((a->to - a->from) + (b->to - b->from));
+    return (p.x - q.x) * (p.x - q.x) + (p.z - q.z) * (p.z - q.z) > reach * reach;
 }
 
 double strip_coupling(const struct strip *a, const struct strip *b, double length) {
-    struct point p = point_on(a, 0.0), q = point_on(b, 0.0);
-    double reach = 3.0 * ((a->to - a->from) + (b->to - b->from));
-    if ((p.x - q.x) * (p.x - q.x) + (p.z - q.z) * (p.z - q.z) > reach * reach)
+    if (apart(a, b))
         return far_coupling(a, b, length);
-    return near_coupling(a, b, length);
+    struct strip image = image_of(b);
+    return near_kernel(a, b, length) -
+           (apart(a, &image) ? mean_kernel(a, &image, length) : near_kernel(a, &image, length));
 }

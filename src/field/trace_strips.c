@@ -9,8 +9,9 @@
 #include <stdlib.h>
 #include <string.h>
 
-/* Strips across a thin sheet, across one face of thick copper, and up one side; coarse are half. */
-enum { SHEET = 16, FACE = 12, SIDE = 4, MOST_STRIPS = 2 * (FACE + SIDE) };
+/* Strips across a thin sheet, across one face of thick copper, and up one side, which is small as a
+ * rule; coarse are half. */
+enum { SHEET = 16, FACE = 12, LOW_SIDE = 4, MOST_STRIPS = 4 * FACE };
 
 /* Edge k of n between 0 and 1, crowded at both ends: current crowds there as the -1/2 power of the
  * distance at a sheet's edge and the -1/3 power at a corner; the fourth power of k makes the error
@@ -34,10 +35,11 @@ static size_t strips_of(const struct inductance_trace *trace, size_t coarseness,
     double foot = trace->height, top = foot + trace->thickness;
     if (trace->thickness == 0.0)
         return divide(strips, false, left, right, foot, SHEET / coarseness);
+    size_t side = (trace->thickness > 0.3 * trace->width ? FACE : LOW_SIDE) / coarseness;
     size_t count = divide(strips, false, left, right, foot, FACE / coarseness);
     count += divide(strips + count, false, left, right, top, FACE / coarseness);
-    count += divide(strips + count, true, foot, top, left, SIDE / coarseness);
-    return count + divide(strips + count, true, foot, top, right, SIDE / coarseness);
+    count += divide(strips + count, true, foot, top, left, side);
+    return count + divide(strips + count, true, foot, top, right, side);
 }
 
 static bool same_section(const struct inductance_trace *a, const struct inductance_trace *b) {
@@ -149,7 +151,7 @@ bool inductance_traces_solve(const struct inductance_traces *traces, double *ind
         return false;
     for (size_t i = 0; i < traces->count * traces->count; i++) {
         inductance[i] = fine[i];
-        estimate[i] = fabs(coarse[i] - fine[i]) / 3.0 + 1e-6 * fabs(fine[i]);
+        estimate[i] = fabs(coarse[i] - fine[i]) / 2.0 + 1e-6 * fabs(fine[i]);
     }
     return true;
 }
