@@ -138,7 +138,7 @@ struct inductance_trace {
 struct inductance_traces {
     size_t count;
     const struct inductance_trace *traces; /* all start and end together, none touching */
-    double length;                         /* m, > 0 */
+    double length;                         /* m, at least a quarter of any width and thickness */
 };
 
 /* inductance[count * count], H: partial inductances of straight traces with their images in the

@@ -43,19 +43,12 @@ static double mean_logarithm(const struct strip *a, const struct strip *b) {
            area;
 }
 
-/* l ln(l + q) - q + s, what the logarithm leaves. */
-static double remainder_of(double length, double square) {
-    double q = sqrt(length * length + square);
-    return length * log(length + q) - q + sqrt(square);
-}
-
-/* k(s) - k(s') for s'^2 = s^2 + more, without cancelling. */
-static double difference(double length, double square, double more) {
-    double s = sqrt(square), image = sqrt(square + more);
+/* Of what the logarithm leaves, l ln(l + q) - q + s, the part without image less the one with it,
+ * s'^2 = s^2 + more, without cancelling. */
+static double smooth_difference(double length, double square, double more) {
     double q = sqrt(length * length + square), q_image = sqrt(length * length + square + more);
     double step = more / (q + q_image);
-    return length * (0.5 * log1p(more / square) - log1p(step / (length + q))) + step -
-           more / (s + image);
+    return step - length * log1p(step / (length + q)) - more / (sqrt(square) + sqrt(square + more));
 }
 
 struct point {
@@ -79,56 +72,61 @@ static struct strip image_of(const struct strip *strip) {
     return image;
 }
 
-static const double GAUSS = 0.57735026918962576451;
+/* A pair of Gauss points: squared distance, and what the image adds to it. */
+struct pair {
+    double square, more;
+};
 
-/* Squared distance of the points of the i-th pair of four. */
-static double square_between(const struct strip *a, const struct strip *b, int i) {
-    struct point p = point_on(a, (i & 1) != 0 ? GAUSS : -GAUSS);
-    struct point q = point_on(b, (i & 2) != 0 ? GAUSS : -GAUSS);
-    return (p.x - q.x) * (p.x - q.x) + (p.z - q.z) * (p.z - q.z);
+/* The i-th of four; the middles when there is only one. */
+static struct pair pair_of(const struct strip *a, const struct strip *b, int pairs, int i) {
+    double gauss = pairs == 1 ? 0.0 : 0.57735026918962576451;
+    struct point p = point_on(a, (i & 1) != 0 ? gauss : -gauss);
+    struct point q = point_on(b, (i & 2) != 0 ? gauss : -gauss);
+    double x = p.x - q.x, z = p.z - q.z;
+    return (struct pair){x * x + z * z, 4.0 * p.z * q.z};
 }
 
-static double far_coupling(const struct strip *a, const struct strip *b, double length) {
-    double sum = 0.0;
-    for (int i = 0; i < 4; i++) {
-        struct point p = point_on(a, (i & 1) != 0 ? GAUSS : -GAUSS);
-        struct point q = point_on(b, (i & 2) != 0 ? GAUSS : -GAUSS);
-        double x = p.x - q.x, z = p.z - q.z;
-        sum += difference(length, x * x + z * z, 4.0 * p.z * q.z);
+/* A strip's mean distance from itself is a third of its width; taken for the image too, so that
+ * what is wrong with it goes out of the difference. */
+static double smooth(const struct strip *a, const struct strip *b, double length, int pairs) {
+    double sum = 0.0, width = a->to - a->from;
+    for (int i = 0; i < pairs; i++) {
+        struct pair pair = pair_of(a, b, pairs, i);
+        sum += smooth_difference(length, a == b ? width * width / 9.0 : pair.square, pair.more);
     }
-    return sum / 4.0;
+    return sum / pairs;
 }
 
-/* k(s) at Gauss points: exact enough where the strips are small against their distance. */
-static double mean_kernel(const struct strip *a, const struct strip *b, double length) {
+/* Mean of ln(s'/s) where both strips are small against their distance. */
+static double far_logarithm(const struct strip *a, const struct strip *b, int pairs) {
     double sum = 0.0;
-    for (int i = 0; i < 4; i++) {
-        double square = square_between(a, b, i);
-        sum += remainder_of(length, square) - 0.5 * length * log(square);
+    for (int i = 0; i < pairs; i++) {
+        struct pair pair = pair_of(a, b, pairs, i);
+        sum += log1p(pair.more / pair.square);
     }
-    return sum / 4.0;
+    return sum / (2 * pairs);
 }
 
-/* The logarithm in closed form, the rest by Gauss; a strip's mean distance from itself is a third
- * of its width. */
-static double near_kernel(const struct strip *a, const struct strip *b, double length) {
+static double gauss_logarithm(const struct strip *a, const struct strip *b) {
     double sum = 0.0;
     for (int i = 0; i < 4; i++)
-        sum += remainder_of(length, a == b ? (a->to - a->from) * (a->to - a->from) / 9.0
-                                           : square_between(a, b, i));
-    return sum / 4.0 - length * mean_logarithm(a, b);
+        sum += log(pair_of(a, b, 4, i).square);
+    return sum / 8.0;
 }
 
-static bool apart(const struct strip *a, const struct strip *b) {
-    struct point p = point_on(a, 0.0), q = point_on(b, 0.0);
-    double reach = 3.0 * ((a->to - a->from) + (b->to - b->from));
-    return (p.x - q.x) * (p.x - q.x) + (p.z - q.z) * (p.z - q.z) > reach * reach;
+static bool apart(const struct strip *a, const struct strip *b, double widths) {
+    double reach = widths * ((a->to - a->from) + (b->to - b->from));
+    return pair_of(a, b, 1, 0).square > reach * reach;
 }
 
+/* Four pairs of points are good to (1/6)^4 of a small part three widths apart, one to (1/50)^2. */
 double strip_coupling(const struct strip *a, const struct strip *b, double length) {
-    if (apart(a, b))
-        return far_coupling(a, b, length);
+    int pairs = apart(a, b, 25.0) ? 1 : 4;
+    double rest = smooth(a, b, length, pairs);
+    if (apart(a, b, 3.0))
+        return length * far_logarithm(a, b, pairs) + rest;
     struct strip image = image_of(b);
-    return near_kernel(a, b, length) -
-           (apart(a, &image) ? mean_kernel(a, &image, length) : near_kernel(a, &image, length));
+    double logarithm =
+        apart(a, &image, 3.0) ? gauss_logarithm(a, &image) : mean_logarithm(a, &image);
+    return length * (logarithm - mean_logarithm(a, b)) + rest;
 }

@@ -145,7 +145,7 @@ static bool prepare(const double *values, double *prepared, struct model_memo *m
     if (!group(values, 1, 0, &prepared[PREPARED_SINGLE], NULL, error) ||
         !group(values, count, 0, &prepared[PREPARED_UNIFORM], NULL, error) ||
         !group(values, count, harmonics, &prepared[PREPARED_GROUP], shares, error) ||
-        !group(values, count, harmonics > 1 ? harmonics - 1 : 0, &coarser, NULL, error) ||
+        !group(values, count, harmonics > 2 ? harmonics - 2 : 0, &coarser, NULL, error) ||
         (room && !group(values, count + 1, harmonics, &prepared[PREPARED_NEXT], NULL, error)))
         return error_in(error, "vias");
     prepared[PREPARED_LARGEST] = prepared[PREPARED_SMALLEST] = shares[0];
@@ -221,7 +221,7 @@ const struct model model_ground_vias = {
         "Partial inductances of thin round tubes, averaged exactly over their surfaces, with "
         "the plane by images: a via onto a plane has half the inductance of one twice as high. "
         "Currents find their shares among the vias and, as harmonics of the azimuth, around "
-        "each barrel; the change of the last harmonic is the error estimate. The barrel alone is "
+        "each barrel; the change of the last two harmonics is the error estimate. The barrel alone is "
         "Rosa's formula of 1908.",
     .validity = "Perfectly conducting barrels, current constant along the height, an infinite "
                 "uncut plane; the tops are joined by copper that is not counted and are open "

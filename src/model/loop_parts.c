@@ -121,16 +121,23 @@ bool loop_solve(const struct loop_shape *shape, size_t count, struct loop_soluti
 }
 
 bool loop_check(const struct loop_shape *shape, double vias, struct error *error) {
-    double least = via_least_pitch(shape->via_diameter);
+    double barrel = via_least_pitch(shape->via_diameter);
+    double plate = fmax(shape->width, shape->thickness) / 4.0;
     if (!via_check_count("vias", vias, error) ||
         !via_check_pitch(vias, shape->via_pitch, shape->via_diameter, error))
         return false;
-    return shape->length >= least * (1.0 - 1e-9) ||
+    if (!(shape->length >= barrel * (1.0 - 1e-9)))
+        return error_set(
+            error, ERROR_INPUT,
+            "length is %s: the loop is shorter than its vias of %s are wide; the smallest "
+            "allowed is %s (1.05 via_diameter)",
+            via_length(shape->length).text, via_length(shape->via_diameter).text,
+            via_length(barrel).text);
+    return shape->length >= plate * (1.0 - 1e-9) ||
            error_set(error, ERROR_INPUT,
-                     "length is %s: the loop is shorter than its vias of %s are wide; the smallest "
-                     "allowed is %s (1.05 via_diameter)",
-                     via_length(shape->length).text, via_length(shape->via_diameter).text,
-                     via_length(least).text);
+                     "length is %s: with copper so wide or thick it is a plate and no trace; the "
+                     "smallest allowed is %s (a quarter of the width and of the thickness)",
+                     via_length(shape->length).text, via_length(plate).text);
 }
 
 unsigned loop_flags(const struct loop_shape *shape, double frequency) {

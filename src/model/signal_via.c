@@ -97,7 +97,7 @@ static bool prepare(const double *values, double *prepared, struct model_memo *m
     double closest = values[RETURN_DISTANCE] * closeness(values[RETURN_VIAS]), coarser;
     size_t harmonics = inductance_barrel_harmonics(values[DIAMETER], closest);
     if (!loop(values, harmonics, &prepared[PREPARED_LOOP], error) ||
-        !loop(values, harmonics - 1, &coarser, error) ||
+        !loop(values, harmonics > 2 ? harmonics - 2 : 0, &coarser, error) ||
         !loop(values, 0, &prepared[PREPARED_UNIFORM], error))
         return error_in(error, "vias");
     prepared[PREPARED_ERROR] = fabs(coarser - prepared[PREPARED_LOOP]);
@@ -154,7 +154,7 @@ const struct model model_signal_via = {
               "change along the height and the field is two-dimensional: exact for tubes. Without "
               "planes the upright parts are taken alone, their ends open. Currents find their "
               "shares among the ground vias and, as harmonics of the azimuth, around each barrel; "
-              "the change of the last harmonic is the error estimate.",
+              "the change of the last two harmonics is the error estimate.",
     .validity = "Perfectly conducting barrels, infinite uncut planes; the height is well below a "
                 "tenth of the wavelength. Without planes the horizontal parts of the loop are not "
                 "counted.",
