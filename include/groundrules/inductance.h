@@ -114,8 +114,9 @@ struct inductance_barrels {
     size_t harmonics;
 };
 
-/* Harmonics beyond which barrels this far apart (centre to centre) change by less than about 1e-4.
- */
+/* What each further harmonic brings, over what the one before brought, of two barrels this far
+ * apart (centre to centre); for harmonics that reach about 3e-4 and better. */
+double inductance_barrel_convergence(double diameter, double spacing);
 size_t inductance_barrel_harmonics(double diameter, double spacing);
 
 /* matrix[count * count], H: partial inductances after the azimuthal currents have found their

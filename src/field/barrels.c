@@ -15,9 +15,13 @@ struct blocks {
     double *cosine, *sine; /* [count][orders * orders] */
 };
 
+/* Two circles: images at ratio exp(-arcosh(D/d)); the energy has its square. */
+double inductance_barrel_convergence(double diameter, double spacing) {
+    return exp(-2.0 * acosh(fmax(spacing / diameter, 1.0 + 1e-6)));
+}
+
 size_t inductance_barrel_harmonics(double diameter, double spacing) {
-    /* Two circles: images at ratio exp(-arcosh(D/d)); the energy of order m has its square. */
-    double order = ceil(3.2 / acosh(fmax(spacing / diameter, 1.0 + 1e-6)));
+    double order = ceil(-6.4 / log(inductance_barrel_convergence(diameter, spacing)));
     return (size_t)fmin(order, INDUCTANCE_MOST_HARMONICS);
 }
 

@@ -153,8 +153,9 @@ static bool prepare(const double *values, double *prepared, struct model_memo *m
         prepared[PREPARED_LARGEST] = fmax(prepared[PREPARED_LARGEST], shares[i]);
         prepared[PREPARED_SMALLEST] = fmin(prepared[PREPARED_SMALLEST], shares[i]);
     }
+    double rest = fmin(1.0, 6.0 * inductance_barrel_convergence(values[DIAMETER], values[PITCH]));
     prepared[PREPARED_ERROR] =
-        fabs(coarser - prepared[PREPARED_GROUP]) / prepared[PREPARED_GROUP] + 1e-8;
+        rest * fabs(coarser - prepared[PREPARED_GROUP]) / prepared[PREPARED_GROUP] + 1e-8;
     return true;
 }
 
@@ -221,7 +222,8 @@ const struct model model_ground_vias = {
         "Partial inductances of thin round tubes, averaged exactly over their surfaces, with "
         "the plane by images: a via onto a plane has half the inductance of one twice as high. "
         "Currents find their shares among the vias and, as harmonics of the azimuth, around "
-        "each barrel; the change of the last two harmonics is the error estimate. The barrel alone is "
+        "each barrel; what the last two changed, carried on geometrically, is the error estimate. "
+        "The barrel alone is "
         "Rosa's formula of 1908.",
     .validity = "Perfectly conducting barrels, current constant along the height, an infinite "
                 "uncut plane; the tops are joined by copper that is not counted and are open "

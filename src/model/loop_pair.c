@@ -149,10 +149,6 @@ static bool sketch(const double *values, struct sketch *drawing, struct error *e
     sketch_add_dimension(
         drawing,
         (struct sketch_dimension){true, 0.0, height, values[SEPARATION] + half, "height", height});
-    if (values[BODY] > 0.0)
-        sketch_add_dimension(drawing, (struct sketch_dimension){true, height, foot,
-                                                                values[SEPARATION] + half, "body",
-                                                                values[BODY]});
     return true;
 }
 

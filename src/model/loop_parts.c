@@ -164,7 +164,4 @@ void loop_sketch(const struct loop_shape *shape, double body, struct sketch *ske
                          (struct sketch_dimension){false, 0.0, length, top, "length", length});
     sketch_add_dimension(
         sketch, (struct sketch_dimension){true, 0.0, board, length + radius, "height", board});
-    if (body > 0.0)
-        sketch_add_dimension(
-            sketch, (struct sketch_dimension){true, board, foot, length + radius, "body", body});
 }

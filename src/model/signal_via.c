@@ -100,7 +100,8 @@ static bool prepare(const double *values, double *prepared, struct model_memo *m
         !loop(values, harmonics > 2 ? harmonics - 2 : 0, &coarser, error) ||
         !loop(values, 0, &prepared[PREPARED_UNIFORM], error))
         return error_in(error, "vias");
-    prepared[PREPARED_ERROR] = fabs(coarser - prepared[PREPARED_LOOP]);
+    double rest = fmin(1.0, 6.0 * inductance_barrel_convergence(values[DIAMETER], closest));
+    prepared[PREPARED_ERROR] = rest * fabs(coarser - prepared[PREPARED_LOOP]);
     return true;
 }
 
@@ -154,7 +155,7 @@ const struct model model_signal_via = {
               "change along the height and the field is two-dimensional: exact for tubes. Without "
               "planes the upright parts are taken alone, their ends open. Currents find their "
               "shares among the ground vias and, as harmonics of the azimuth, around each barrel; "
-              "the change of the last two harmonics is the error estimate.",
+              "what the last two changed, carried on geometrically, is the error estimate.",
     .validity = "Perfectly conducting barrels, infinite uncut planes; the height is well below a "
                 "tenth of the wavelength. Without planes the horizontal parts of the loop are not "
                 "counted.",
