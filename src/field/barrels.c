@@ -38,11 +38,12 @@ static const double *block_at(struct blocks *blocks, const struct barrel_kernel 
     return cosine;
 }
 
-/* Where harmonic `m`, cosine or sine, of barrel `i` stands: harmonics first, net currents last. */
+/* Where harmonic `m`, cosine or sine, of barrel `i` stands: low harmonics of all barrels first, net
+ * currents last, so that a leading part of the elimination is that of fewer harmonics. */
 static size_t place(const struct inductance_barrels *barrels, size_t i, size_t m, bool sine) {
     if (m == 0)
         return 2 * barrels->count * barrels->harmonics + i;
-    return (i * barrels->harmonics + m - 1) * 2 + (sine ? 1 : 0);
+    return ((m - 1) * barrels->count + i) * 2 + (sine ? 1 : 0);
 }
 
 struct system {
@@ -95,21 +96,18 @@ static void assemble(struct system *system, const struct inductance_barrels *bar
     }
 }
 
-/* What is left for the net currents once the harmonics have found their size. */
-static bool reduce(struct system *system, const struct inductance_barrels *barrels, double factor,
-                   double *matrix, struct error *error) {
-    size_t n = barrels->count, rows = system->rows;
-    if (rows > 0 && !dense_eliminate(rows, n, system->width, system->a, NULL))
-        return error_set(error, ERROR_SINGULAR, "the currents around the barrels have no solution");
-    for (size_t i = 0; i < n; i++)
+/* What is left for the net currents once so many harmonics have found their size. */
+static void reduce(const struct system *system, const struct inductance_barrels *barrels,
+                   size_t harmonics, double factor, double *matrix) {
+    size_t n = barrels->count, rows = 2 * n * harmonics;
+    for (size_t i = 0; matrix != NULL && i < n; i++)
         for (size_t j = i; j < n; j++) {
-            double value = system->a[(rows + i) * system->width + rows + j];
+            double value = system->a[(system->rows + i) * system->width + system->rows + j];
             for (size_t k = 0; k < rows; k++)
-                value -= system->a[k * system->width + rows + i] *
-                         system->a[k * system->width + rows + j];
+                value -= system->a[k * system->width + system->rows + i] *
+                         system->a[k * system->width + system->rows + j];
             matrix[i * n + j] = matrix[j * n + i] = factor * INDUCTANCE_MU_0 / (2.0 * M_PI) * value;
         }
-    return true;
 }
 
 static bool check(const struct inductance_barrels *barrels, struct error *error) {
@@ -136,7 +134,7 @@ static double reference_of(const struct inductance_barrels *barrels) {
 }
 
 bool inductance_barrels_solve(const struct inductance_barrels *barrels, double *matrix,
-                              struct error *error) {
+                              double *coarser, double *even, struct error *error) {
     if (!check(barrels, error))
         return false;
     size_t n = barrels->count, orders = barrels->harmonics + 1, pairs = n * (n - 1) / 2 + 1;
@@ -153,7 +151,15 @@ bool inductance_barrels_solve(const struct inductance_barrels *barrels, double *
     struct barrel_kernel kernel =
         barrel_kernel(barrels->height, barrels->ends, reference_of(barrels));
     assemble(&system, barrels, &kernel, &blocks);
-    bool ok = reduce(&system, barrels, kernel.factor, matrix, error);
+    size_t harmonics = barrels->harmonics;
+    bool ok = harmonics == 0 || dense_eliminate(system.rows, n, system.width, system.a, NULL);
+    if (ok) {
+        reduce(&system, barrels, harmonics, kernel.factor, matrix);
+        reduce(&system, barrels, harmonics > 2 ? harmonics - 2 : 0, kernel.factor, coarser);
+        reduce(&system, barrels, 0, kernel.factor, even);
+    } else {
+        error_set(error, ERROR_SINGULAR, "the currents around the barrels have no solution");
+    }
     free(memory);
     return ok;
 }

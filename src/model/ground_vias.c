@@ -56,14 +56,14 @@ static const struct model_output outputs[OUTPUT_COUNT] = {
                             "L<sub>u</sub>",
                             "The group with the current even around each barrel: an upper bound.",
                             DIMENSION_INDUCTANCE, MODEL_HIGHER_IS_WORSE, NULL},
-    [BENEFIT] = {"benefit", "taken off by the group", "b",
+    [BENEFIT] = {"benefit", "benefit of the group", "b",
                  "What the group takes off the inductance of one via: 1 - inductance over "
                  "single_inductance.",
                  DIMENSION_RATIO, MODEL_LOWER_IS_WORSE, NULL},
-    [IDEAL_BENEFIT] = {"ideal_benefit", "taken off if vias were independent", "b<sub>ideal</sub>",
+    [IDEAL_BENEFIT] = {"ideal_benefit", "benefit of independent vias", "b<sub>ideal</sub>",
                        "What vias without mutual inductance would take off: 1 - 1/vias.",
                        DIMENSION_RATIO, MODEL_NEITHER, NULL},
-    [NEXT_BENEFIT] = {"next_benefit", "taken off by one via more", "b<sub>+1</sub>",
+    [NEXT_BENEFIT] = {"next_benefit", "benefit of one via more", "b<sub>+1</sub>",
                       "What one via more in the same arrangement would take off the group's "
                       "inductance.",
                       DIMENSION_RATIO, MODEL_LOWER_IS_WORSE, NULL},
@@ -118,8 +118,8 @@ static void place(enum arrangement arrangement, size_t count, double pitch, doub
     }
 }
 
-static bool group(const double *values, size_t count, size_t harmonics, double *inductance,
-                  double *shares, struct error *error) {
+static bool group_of(const double *values, size_t count, struct via_group *group,
+                     struct error *error) {
     double x[VIA_MOST + 1], y[VIA_MOST + 1];
     place((enum arrangement)values[ARRANGEMENT], count, values[PITCH], x, y);
     struct inductance_barrels barrels = {
@@ -129,9 +129,10 @@ static bool group(const double *values, size_t count, size_t harmonics, double *
         .height = values[HEIGHT],
         .diameter = values[DIAMETER],
         .ends = values[FAR_END] == FAR_FREE ? INDUCTANCE_FREE : INDUCTANCE_ON_PLANE,
-        .harmonics = count > 1 ? harmonics : 0,
     };
-    return via_joined(&barrels, inductance, shares, error);
+    if (count > 1)
+        barrels.harmonics = inductance_barrel_harmonics(values[DIAMETER], values[PITCH]);
+    return via_joined(&barrels, values[PITCH], group, error) || error_in(error, "vias");
 }
 
 static bool prepare(const double *values, double *prepared, struct model_memo *memo,
@@ -139,23 +140,17 @@ static bool prepare(const double *values, double *prepared, struct model_memo *m
     (void)memo;
     size_t count = (size_t)values[VIAS];
     bool room = values[PITCH] >= via_least_pitch(values[DIAMETER]) * (1.0 - 1e-9);
-    size_t harmonics = room ? inductance_barrel_harmonics(values[DIAMETER], values[PITCH]) : 0;
-    double shares[VIA_MOST + 1], coarser;
-    prepared[PREPARED_NEXT] = NAN;
-    if (!group(values, 1, 0, &prepared[PREPARED_SINGLE], NULL, error) ||
-        !group(values, count, 0, &prepared[PREPARED_UNIFORM], NULL, error) ||
-        !group(values, count, harmonics, &prepared[PREPARED_GROUP], shares, error) ||
-        !group(values, count, harmonics > 2 ? harmonics - 2 : 0, &coarser, NULL, error) ||
-        (room && !group(values, count + 1, harmonics, &prepared[PREPARED_NEXT], NULL, error)))
-        return error_in(error, "vias");
-    prepared[PREPARED_LARGEST] = prepared[PREPARED_SMALLEST] = shares[0];
-    for (size_t i = 1; i < count; i++) {
-        prepared[PREPARED_LARGEST] = fmax(prepared[PREPARED_LARGEST], shares[i]);
-        prepared[PREPARED_SMALLEST] = fmin(prepared[PREPARED_SMALLEST], shares[i]);
-    }
-    double rest = fmin(1.0, 6.0 * inductance_barrel_convergence(values[DIAMETER], values[PITCH]));
-    prepared[PREPARED_ERROR] =
-        rest * fabs(coarser - prepared[PREPARED_GROUP]) / prepared[PREPARED_GROUP] + 1e-8;
+    struct via_group single, group, next = {.inductance = NAN};
+    if (!group_of(values, 1, &single, error) || !group_of(values, count, &group, error) ||
+        (room && !group_of(values, count + 1, &next, error)))
+        return false;
+    prepared[PREPARED_SINGLE] = single.inductance;
+    prepared[PREPARED_GROUP] = group.inductance;
+    prepared[PREPARED_UNIFORM] = group.even;
+    prepared[PREPARED_NEXT] = next.inductance;
+    prepared[PREPARED_LARGEST] = group.largest;
+    prepared[PREPARED_SMALLEST] = group.smallest;
+    prepared[PREPARED_ERROR] = group.error / group.inductance;
     return true;
 }
 

@@ -9,8 +9,12 @@ enum {
     NODES_EACH = 3, /* top of the first end, top and foot of the second */
 };
 
-/* What the azimuthal harmonics leave out, of the vias' share (test_inductance_groups.c). */
-static const double VIA_ERROR = 3e-4;
+/* What the azimuthal harmonics leave out, of the vias' share: 3e-4 (test_inductance_groups.c), more
+ * where their number is at its limit. */
+static double via_error(double diameter, double spacing) {
+    return fmax(3e-4,
+                pow(inductance_barrel_convergence(diameter, spacing), INDUCTANCE_MOST_HARMONICS));
+}
 
 /* Rows across the trace at both ends; loop after loop, first end before second. */
 static size_t place(const struct loop_shape *shape, size_t count, double *x, double *y) {
@@ -44,7 +48,7 @@ static bool vias_matrix(const struct loop_shape *shape, size_t count, double *ma
         .ends = INDUCTANCE_ON_PLANE,
         .harmonics = inductance_barrel_harmonics(shape->via_diameter, closest(shape, count)),
     };
-    return inductance_barrels_solve(&barrels, matrix, error) || error_in(error, "vias");
+    return inductance_barrels_solve(&barrels, matrix, NULL, NULL, error) || error_in(error, "vias");
 }
 
 static bool traces_matrix(const struct loop_shape *shape, size_t count, double *inductance,
@@ -112,10 +116,11 @@ bool loop_solve(const struct loop_shape *shape, size_t count, struct loop_soluti
         return error_in(error, "loop");
     *solution = (struct loop_solution){
         .inductance = inductance[0], .trace = traces[0], .vias = inductance[0] - traces[0]};
-    solution->error = estimate[0] + VIA_ERROR * solution->vias;
+    double relative = via_error(shape->via_diameter, closest(shape, count));
+    solution->error = estimate[0] + relative * solution->vias;
     if (count > 1) {
         solution->mutual = inductance[1];
-        solution->mutual_error = estimate[1] + VIA_ERROR * fabs(inductance[1] - traces[1]);
+        solution->mutual_error = estimate[1] + relative * fabs(inductance[1] - traces[1]);
     }
     return true;
 }

@@ -58,28 +58,14 @@ static bool check(const double *values, struct error *error) {
                      via_length(values[DIAMETER]).text, via_length(least).text);
 }
 
-static bool loop(const double *values, size_t harmonics, double *inductance, struct error *error) {
-    enum { MOST = MOST_RETURNS + 1 };
-    double x[MOST] = {0}, y[MOST] = {0}, matrix[MOST * MOST];
-    size_t from[MOST] = {1}, to[MOST] = {2}, returns = (size_t)values[RETURN_VIAS];
-    for (size_t i = 1; i <= returns; i++) {
-        double turn = 2.0 * M_PI * (double)(i - 1) / (double)returns;
-        x[i] = values[RETURN_DISTANCE] * cos(turn);
-        y[i] = values[RETURN_DISTANCE] * sin(turn);
-        from[i] = 0;
+enum { MOST = MOST_RETURNS + 1 };
+
+/* Out through the first barrel, back through all others. */
+static bool loop_of(const double *matrix, size_t count, double *inductance, struct error *error) {
+    size_t from[MOST] = {1}, to[MOST], in = 1, out = 0; /* the others start at node 0 */
+    for (size_t i = 0; i < count; i++)
         to[i] = 2;
-    }
-    struct inductance_barrels barrels = {
-        .count = returns + 1,
-        .x = x,
-        .y = y,
-        .height = values[HEIGHT],
-        .diameter = values[DIAMETER],
-        .ends = values[PLANES] == TWO_PLANES ? INDUCTANCE_PLANES : INDUCTANCE_FREE,
-        .harmonics = harmonics,
-    };
-    size_t in = 1, out = 0;
-    struct inductance_network network = {.branches = returns + 1,
+    struct inductance_network network = {.branches = count,
                                          .matrix = matrix,
                                          .from = from,
                                          .to = to,
@@ -87,21 +73,37 @@ static bool loop(const double *values, size_t harmonics, double *inductance, str
                                          .ports = 1,
                                          .port_in = &in,
                                          .port_out = &out};
-    return inductance_barrels_solve(&barrels, matrix, error) &&
-           inductance_network_solve(&network, inductance, NULL, error);
+    return inductance_network_solve(&network, inductance, NULL, error);
 }
 
 static bool prepare(const double *values, double *prepared, struct model_memo *memo,
                     struct error *error) {
     (void)memo;
-    double closest = values[RETURN_DISTANCE] * closeness(values[RETURN_VIAS]), coarser;
-    size_t harmonics = inductance_barrel_harmonics(values[DIAMETER], closest);
-    if (!loop(values, harmonics, &prepared[PREPARED_LOOP], error) ||
-        !loop(values, harmonics > 2 ? harmonics - 2 : 0, &coarser, error) ||
-        !loop(values, 0, &prepared[PREPARED_UNIFORM], error))
+    double x[MOST] = {0}, y[MOST] = {0}, matrix[MOST * MOST], coarser[MOST * MOST],
+           even[MOST * MOST], coarse = 0.0;
+    size_t count = (size_t)values[RETURN_VIAS] + 1;
+    for (size_t i = 1; i < count; i++) {
+        double turn = 2.0 * M_PI * (double)(i - 1) / values[RETURN_VIAS];
+        x[i] = values[RETURN_DISTANCE] * cos(turn);
+        y[i] = values[RETURN_DISTANCE] * sin(turn);
+    }
+    double closest = values[RETURN_DISTANCE] * closeness(values[RETURN_VIAS]);
+    struct inductance_barrels barrels = {
+        .count = count,
+        .x = x,
+        .y = y,
+        .height = values[HEIGHT],
+        .diameter = values[DIAMETER],
+        .ends = values[PLANES] == TWO_PLANES ? INDUCTANCE_PLANES : INDUCTANCE_FREE,
+        .harmonics = inductance_barrel_harmonics(values[DIAMETER], closest),
+    };
+    if (!inductance_barrels_solve(&barrels, matrix, coarser, even, error) ||
+        !loop_of(matrix, count, &prepared[PREPARED_LOOP], error) ||
+        !loop_of(coarser, count, &coarse, error) ||
+        !loop_of(even, count, &prepared[PREPARED_UNIFORM], error))
         return error_in(error, "vias");
-    double rest = fmin(1.0, 6.0 * inductance_barrel_convergence(values[DIAMETER], closest));
-    prepared[PREPARED_ERROR] = rest * fabs(coarser - prepared[PREPARED_LOOP]);
+    prepared[PREPARED_ERROR] =
+        via_rest(coarse - prepared[PREPARED_LOOP], values[DIAMETER], closest);
     return true;
 }
 

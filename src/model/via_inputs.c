@@ -50,15 +50,20 @@ bool via_check_pitch(double count, double pitch, double diameter, struct error *
                      via_length(pitch).text, via_length(diameter).text, via_length(least).text);
 }
 
-bool via_joined(const struct inductance_barrels *barrels, double *inductance, double *shares,
-                struct error *error) {
-    double matrix[(VIA_MOST + 1) * (VIA_MOST + 1)];
+/* A geometric series would leave less; in some groups the odd or the even harmonics hardly count.
+ */
+double via_rest(double change, double diameter, double spacing) {
+    return fabs(change) * fmin(1.0, 6.0 * inductance_barrel_convergence(diameter, spacing));
+}
+
+static bool joined(const double *matrix, size_t count, double *inductance, double *shares,
+                   struct error *error) {
     size_t from[VIA_MOST + 1], to[VIA_MOST + 1], in = 1, out = 0;
-    for (size_t i = 0; i < barrels->count; i++) {
+    for (size_t i = 0; i < count; i++) {
         from[i] = 1;
         to[i] = 0;
     }
-    struct inductance_network network = {.branches = barrels->count,
+    struct inductance_network network = {.branches = count,
                                          .matrix = matrix,
                                          .from = from,
                                          .to = to,
@@ -66,6 +71,26 @@ bool via_joined(const struct inductance_barrels *barrels, double *inductance, do
                                          .ports = 1,
                                          .port_in = &in,
                                          .port_out = &out};
-    return inductance_barrels_solve(barrels, matrix, error) &&
-           inductance_network_solve(&network, inductance, shares, error);
+    return inductance_network_solve(&network, inductance, shares, error);
+}
+
+bool via_joined(const struct inductance_barrels *barrels, double spacing, struct via_group *group,
+                struct error *error) {
+    enum { MOST = (VIA_MOST + 1) * (VIA_MOST + 1) };
+    double matrix[MOST], coarser[MOST], even[MOST], shares[VIA_MOST + 1];
+    double coarse = 0.0;
+    size_t count = barrels->count;
+    if (!inductance_barrels_solve(barrels, matrix, coarser, even, error) ||
+        !joined(matrix, count, &group->inductance, shares, error) ||
+        !joined(coarser, count, &coarse, NULL, error) ||
+        !joined(even, count, &group->even, NULL, error))
+        return false;
+    group->error =
+        via_rest(coarse - group->inductance, barrels->diameter, spacing) + 1e-8 * group->inductance;
+    group->largest = group->smallest = shares[0];
+    for (size_t i = 1; i < count; i++) {
+        group->largest = fmax(group->largest, shares[i]);
+        group->smallest = fmin(group->smallest, shares[i]);
+    }
+    return true;
 }

@@ -50,8 +50,18 @@ struct via_text {
 };
 struct via_text via_length(double length);
 
-/* Inductance of all barrels joined at both ends; shares[count] may be NULL. */
-bool via_joined(const struct inductance_barrels *barrels, double *inductance, double *shares,
+/* Barrels joined at both ends. */
+struct via_group {
+    double inductance;
+    double error; /* absolute: what the last harmonics changed, carried on geometrically */
+    double even;  /* inductance with the current even around each barrel */
+    double largest, smallest; /* shares of the current */
+};
+/* `spacing`: of the closest two. */
+bool via_joined(const struct inductance_barrels *barrels, double spacing, struct via_group *group,
                 struct error *error);
+
+/* What a solution leaves open whose last harmonics changed it by `change`. */
+double via_rest(double change, double diameter, double spacing);
 
 #endif

@@ -21,7 +21,7 @@ static bool group(const char *name, const double *x, const double *y, size_t cou
     struct inductance_barrels barrels = {count, x, y, 1.6e-3, 0.6e-3, ends, harmonics};
     double start = now();
     for (int k = 0; k < ROUNDS; k++)
-        if (!inductance_barrels_solve(&barrels, matrix, &error))
+        if (!inductance_barrels_solve(&barrels, matrix, NULL, NULL, &error))
             return fprintf(stderr, "%s\n", error.message), false;
     printf("%-34s %zu harmonics %7.1f us\n", name, harmonics, (now() - start) / ROUNDS * 1e6);
     return true;

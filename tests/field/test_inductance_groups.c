@@ -54,7 +54,7 @@ static double group(struct layout *layout, enum inductance_ends ends, size_t har
     double matrix[MOST * MOST];
     layout->barrels.ends = ends;
     layout->barrels.harmonics = harmonics;
-    assert_ok(inductance_barrels_solve(&layout->barrels, matrix, &error));
+    assert_ok(inductance_barrels_solve(&layout->barrels, matrix, NULL, NULL, &error));
     return joined(matrix, layout->barrels.count);
 }
 
@@ -104,7 +104,7 @@ static void test_pieces_with_images_make_the_same_group(void **state) {
     for (int i = 0; i < 3; i++)
         pieces[i] = upright_tube(0.8 * i, 0, 0, 1.6, 0.6);
     assert_ok(inductance_matrix(pieces, 3, true, matrix, &error));
-    assert_ok(inductance_barrels_solve(&layout.barrels, row, &error));
+    assert_ok(inductance_barrels_solve(&layout.barrels, row, NULL, NULL, &error));
     for (int i = 0; i < 9; i++)
         assert_close(matrix[i], row[i], 1e-9);
 }
@@ -142,7 +142,7 @@ static double loop(struct layout *layout, enum inductance_ends ends, size_t harm
     size_t count = layout->barrels.count, from[MOST], to[MOST], in = 1, out = 0;
     layout->barrels.ends = ends;
     layout->barrels.harmonics = harmonics;
-    assert_ok(inductance_barrels_solve(&layout->barrels, matrix, &error));
+    assert_ok(inductance_barrels_solve(&layout->barrels, matrix, NULL, NULL, &error));
     for (size_t i = 0; i < count; i++) {
         from[i] = i == 0 ? 1 : 0;
         to[i] = 2;
@@ -262,13 +262,32 @@ static void test_more_vias_and_wider_ones_always_help(void **state) {
     }
 }
 
+/* The coarser and the even matrix are those of problems with fewer harmonics. */
+static void test_coarser_solutions_come_along(void **state) {
+    (void)state;
+    struct error error = {0};
+    double fine[16], coarser[16], even[16], alone[16];
+    struct layout layout = {.barrels = {.height = 1e-3, .diameter = 0.6e-3, .harmonics = 5}};
+    place(&layout, 4, RING, 0.7);
+    assert_ok(inductance_barrels_solve(&layout.barrels, fine, coarser, even, &error));
+    layout.barrels.harmonics = 3;
+    assert_ok(inductance_barrels_solve(&layout.barrels, alone, NULL, NULL, &error));
+    for (int i = 0; i < 16; i++)
+        assert_close(coarser[i], alone[i], 1e-12);
+    layout.barrels.harmonics = 0;
+    assert_ok(inductance_barrels_solve(&layout.barrels, alone, NULL, NULL, &error));
+    for (int i = 0; i < 16; i++)
+        assert_close(even[i], alone[i], 1e-12);
+    assert_true(fine[0] < coarser[0] && coarser[0] < even[0]);
+}
+
 static void test_touching_barrels_are_refused(void **state) {
     (void)state;
     struct error error = {0};
     double matrix[4] = {1, 2, 3, 4};
     struct layout layout = {.barrels = {.height = 1e-3, .diameter = 0.6e-3}};
     place(&layout, 2, ROW, 0.6);
-    assert_false(inductance_barrels_solve(&layout.barrels, matrix, &error));
+    assert_false(inductance_barrels_solve(&layout.barrels, matrix, NULL, NULL, &error));
     assert_int_equal(error.kind, ERROR_INPUT);
     assert_true(matrix[0] == 1 && matrix[3] == 4);
 }
@@ -285,6 +304,7 @@ int main(void) {
         cmocka_unit_test(test_all_lengths_doubled_double_the_inductance),
         cmocka_unit_test(test_a_turned_group_is_the_same),
         cmocka_unit_test(test_more_vias_and_wider_ones_always_help),
+        cmocka_unit_test(test_coarser_solutions_come_along),
         cmocka_unit_test(test_touching_barrels_are_refused),
     };
     return cmocka_run_group_tests(tests, NULL, NULL);

@@ -95,6 +95,25 @@ static void test_bars_and_tapes_are_hoer_and_loves(void **state) {
     }
 }
 
+/* Hoer and Love, J. Res. NBS 69C, 1965: their form evaluated apart in 50 digits and by quadrature
+ * over both sections, nH; bars from 5:1 to 10000:1 in length. */
+static void test_bars_of_many_shapes(void **state) {
+    (void)state;
+    const double cases[][4] = {{0.2, 0.035, 10, 9.89671914}, {1, 0.035, 10, 6.98638222},
+                               {1, 1, 10, 5.70425359},       {5, 0.035, 10, 4.07083847},
+                               {10, 0.035, 10, 2.9659361},   {0.3, 0.018, 2, 1.23190354},
+                               {10, 10, 1000, 1021.72196},   {10, 10, 10, 1.88231264}};
+    for (size_t i = 0; i < COUNT(cases); i++) {
+        struct inductance_piece bar = level_bar(0, 0, cases[i][0], cases[i][1], cases[i][2]);
+        assert_close(1e9 * inductance_self(&bar), cases[i][3], 5e-9);
+    }
+    struct inductance_piece bar = level_bar(0, 0, 1, 0.035, 10),
+                            beside = level_bar(2, 0, 1, 0.035, 10),
+                            above = level_bar(0, 1, 1, 0.035, 10);
+    assert_close(1e9 * inductance_mutual(&bar, &beside), 3.02837223, 5e-9);
+    assert_close(1e9 * inductance_mutual(&bar, &above), 4.0595171, 5e-9);
+}
+
 /* Ruehli, IBM J. Res. Dev. 16, 1972, the flat conductor; in long double, as it cancels. */
 static double ruehli(double width, double length) {
     long double u = (long double)length / (long double)width;
@@ -191,6 +210,7 @@ int main(void) {
         cmocka_unit_test(test_far_filaments_do_not_cancel),
         cmocka_unit_test(test_filaments_that_meet_follow_grover),
         cmocka_unit_test(test_bars_and_tapes_are_hoer_and_loves),
+        cmocka_unit_test(test_bars_of_many_shapes),
         cmocka_unit_test(test_flat_bars_are_ruehlis_tape_at_any_shape),
         cmocka_unit_test(test_closed_form_and_quadrature_agree),
         cmocka_unit_test(test_touching_halves_make_the_whole_bar),

@@ -172,6 +172,19 @@ static void test_signal_vias(void **state) {
     }
 }
 
+/* Two cylinders that all but touch: (mu0/pi) h arcosh(s/d), within what is stated. */
+static void test_stated_error_covers_the_exact_pair_at_any_distance(void **state) {
+    (void)state;
+    for (double ratio = 1.05; ratio < 40; ratio *= 1.1) {
+        struct signal_via via = {
+            .returns = 1, .spacing = 0.6 * ratio, .diameter = 0.6, .height = 1};
+        double stated, got = loop_of(&via, 1, "loop_inductance", &stated);
+        double exact = 400 * acosh(ratio);
+        assert_true(got > exact * (1 - 1e-9) && got - exact < stated);
+        assert_true(stated < (ratio > 1.3 ? 5e-3 : 0.03) * exact);
+    }
+}
+
 int main(void) {
     const struct CMUnitTest tests[] = {
         cmocka_unit_test(test_groups_lie_between_even_and_free_currents),
@@ -181,6 +194,7 @@ int main(void) {
         cmocka_unit_test(test_one_via_has_no_neighbours),
         cmocka_unit_test(test_impossible_groups_are_refused_with_the_smallest_legal_value),
         cmocka_unit_test(test_signal_vias),
+        cmocka_unit_test(test_stated_error_covers_the_exact_pair_at_any_distance),
     };
     return cmocka_run_group_tests(tests, NULL, NULL);
 }

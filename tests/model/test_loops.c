@@ -78,6 +78,22 @@ static void test_a_loop_of_general_pieces_is_the_same(void **state) {
     assert_close(loop_of(7, 0.4, 0, 3, "loop_inductance"), PICO * inductance, 1e-3);
 }
 
+static void test_all_lengths_doubled_double_the_loop(void **state) {
+    (void)state;
+    struct named_value values[] = {
+        {"height", 0.4e-3}, {"width", 0.3e-3},      {"thickness", 35e-6},
+        {"length", 7e-3},   {"separation", 2.1e-3}, {"via_diameter", 0.3e-3},
+        {"vias", 2},        {"via_pitch", 0.5e-3},  {"body", 0.3e-3}};
+    struct answer once = evaluate("loop-pair", values, 9);
+    for (size_t i = 0; i < 9; i++)
+        values[i].value *= i == 6 ? 1 : 2;
+    struct answer twice = evaluate("loop-pair", values, 9);
+    assert_close(output_of("loop-pair", &twice, "loop_inductance"),
+                 2 * output_of("loop-pair", &once, "loop_inductance"), 1e-10);
+    assert_close(output_of("loop-pair", &twice, "mutual_inductance"),
+                 2 * output_of("loop-pair", &once, "mutual_inductance"), 1e-10);
+}
+
 static void test_parts_make_the_loop_and_a_body_raises_it(void **state) {
     (void)state;
     double whole = loop_of(10, 0.6, 0.035, 2, "loop_inductance");
@@ -261,6 +277,7 @@ int main(void) {
         cmocka_unit_test(test_loops_within_a_percent),
         cmocka_unit_test(test_long_loops_grow_by_the_exact_inductance_per_length),
         cmocka_unit_test(test_a_loop_of_general_pieces_is_the_same),
+        cmocka_unit_test(test_all_lengths_doubled_double_the_loop),
         cmocka_unit_test(test_parts_make_the_loop_and_a_body_raises_it),
         cmocka_unit_test(test_mutual_inductance_within_one_and_a_half_percent),
         cmocka_unit_test(test_distant_loops_are_dipoles),
