@@ -36,10 +36,10 @@ struct inductance_piece {
     double across[2]; /* m, >= 0: a bar's sides along the other two axes, in the order x, y, z */
 };
 
-/* Partial self inductance in free space.  Tube: the average of Neumann's integral over the tube
- * [LoopsT], 1e-12.  Bar: Hoer and Love 1965 [HoerLove65] where that form keeps its digits, else
- * the average by quadrature; flat bars by quadrature, which is Ruehli's tape [Ruehli72]; 1e-9.
- * Filament: INFINITY.  Tests: test_inductance_pieces.c. */
+/* Partial self inductance in free space.  Tube: the average of Neumann's integral over the
+ * tube, 1e-12.  Bar: Hoer and Love 1965 where that form keeps its digits, else the average by
+ * quadrature; flat bars by quadrature, which is Ruehli's tape; 1e-9.  Filament: INFINITY.  Tests:
+ * test_inductance_pieces.c. */
 double inductance_self(const struct inductance_piece *piece);
 
 /* Partial mutual inductance in free space; 0 between perpendicular pieces.  Two parallel filaments:
@@ -54,11 +54,11 @@ double inductance_mutual(const struct inductance_piece *a, const struct inductan
 double inductance_image(const struct inductance_piece *a, const struct inductance_piece *b);
 
 /* Two straight filaments that start at one point and enclose `angle` (rad, 0 < angle < pi), both
- * currents flowing away from it [Grover46]. */
+ * currents flowing away from it (Grover 1946). */
 double inductance_meeting(double length_a, double length_b, double angle);
 
 /* The barrel formula of the trade: Rosa 1908 without the term of the solid wire's inside, one
- * barrel alone in free space [Rosa08].  3 % below the exact tube at 1.6 mm and 24 % at 0.19 mm for
+ * barrel alone in free space.  3 % below the exact tube at 1.6 mm and 24 % at 0.19 mm for
  * a diameter of 0.6 mm. */
 double inductance_barrel(double height, double diameter);
 

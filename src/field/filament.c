@@ -4,7 +4,6 @@
 
 #include "groundrules/inductance.h"
 
-#include <float.h>
 #include <math.h>
 
 double filament_overlap(const struct filament_pair *pair) {

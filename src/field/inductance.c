@@ -5,7 +5,6 @@
 #include "tube.h"
 
 #include <math.h>
-#include <stdlib.h>
 
 enum { CIRCLE = 64 };
 static const double NEUMANN = INDUCTANCE_MU_0 / (4.0 * M_PI);
