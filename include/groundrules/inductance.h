@@ -145,9 +145,10 @@ struct inductance_traces {
 
 /* inductance[count * count], H: partial inductances of straight traces with their images in the
  * plane. The copper's surface is divided into strips, graded to the edges, that are joined at both
- * ends of the trace and find their shares of its current (perfect conductor).  error[count *
- * count], H: estimate, from half as many strips.  Tests: the 2-D limit against exact sections and
- * against the section solver.  Fails: ERROR_INPUT, ERROR_SINGULAR, ERROR_MEMORY. */
+ * ends of the trace and find their shares of its current (perfect conductor).  estimate[count *
+ * count], H: the step of the extrapolation from half as many strips.  Tests: the 2-D limit against
+ * exact sections and against the section solver.  Fails: ERROR_INPUT, ERROR_SINGULAR, ERROR_MEMORY.
+ */
 bool inductance_traces_solve(const struct inductance_traces *traces, double *inductance,
                              double *estimate, struct error *error);
 

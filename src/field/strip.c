@@ -119,9 +119,9 @@ static bool apart(const struct strip *a, const struct strip *b, double widths) {
     return pair_of(a, b, 1, 0).square > reach * reach;
 }
 
-/* Four pairs of points are good to (1/6)^4 of a small part three widths apart, one to (1/50)^2. */
+/* Four pairs of points are good to (1/6)^4 of a small part three widths apart, one to (1/120)^2. */
 double strip_coupling(const struct strip *a, const struct strip *b, double length) {
-    int pairs = apart(a, b, 25.0) ? 1 : 4;
+    int pairs = apart(a, b, 60.0) ? 1 : 4;
     double rest = smooth(a, b, length, pairs);
     if (apart(a, b, 3.0))
         return length * far_logarithm(a, b, pairs) + rest;

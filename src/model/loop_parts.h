@@ -66,8 +66,9 @@ void loop_sketch(const struct loop_shape *shape, double body, struct sketch *ske
 
 #define LOOP_METHOD                                                                                \
     "Partial inductances over a perfect plane by images. The trace's surface is divided into "     \
-    "strips, graded to its edges, whose currents find their shares; half as many strips give the " \
-    "error estimate. The vias are thin round tubes, their currents free to find their shares "     \
+    "strips, graded to its edges, whose currents find their shares; the result is extrapolated "   \
+    "from two divisions, and the step is the error estimate. The vias are thin round tubes, "      \
+    "their currents free to find their shares "                                                    \
     "among them and around each; trace and vias close the loop through the plane as a network."
 #define LOOP_VALIDITY                                                                              \
     "Quasi-static: the loop is shorter than a tenth of the wavelength. Perfectly conducting "      \

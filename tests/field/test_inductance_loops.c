@@ -147,7 +147,7 @@ static void test_long_thin_traces_have_the_exact_inductance_per_length(void **st
         double step = (strips(1000, 0.3, 0, loops[i].height, &e1) -
                        strips(500, 0.3, 0, loops[i].height, &e2)) /
                       500;
-        assert_close(step, loops[i].per_mm, 2e-4);
+        assert_close(step, loops[i].per_mm, 4e-5);
     }
 }
 
@@ -169,7 +169,7 @@ static void test_long_thick_traces_agree_with_the_section_solver(void **state) {
                        strips(500, width, thickness, height, &e2)) /
                       500;
         double exact = PICO * 1e-3 * solution.inductance[0];
-        assert_close(step, exact, 1e-3);
+        assert_close(step, exact, 1e-4);
         assert_true(fabs(step - exact) < e1 / 1000);
     }
 }
@@ -238,6 +238,44 @@ static void test_mutual_of_two_traces(void **state) {
     }
 }
 
+/* 2 x 48 flat bars of the general pieces, graded alike, in one network: three times as fine,
+ * another integration.  Self and mutual within what is stated. */
+static void test_stated_errors_cover_a_finer_division(void **state) {
+    (void)state;
+    enum { EACH = 48, ALL = 2 * EACH };
+    static double matrix[ALL * ALL];
+    const double cases[][4] = {
+        {5, 0.3, 0.4, 0.5}, {1, 0.3, 0.19, 0.33}, {20, 1, 0.1, 3}, {3, 0.3, 1.6, 2}};
+    for (size_t c = 0; c < COUNT(cases); c++) {
+        double length = cases[c][0], width = cases[c][1], height = cases[c][2], apart = cases[c][3];
+        struct error error = {0};
+        struct inductance_piece pieces[ALL];
+        size_t from[ALL], to[ALL] = {0}, in[] = {1, 2}, out[] = {0, 0};
+        for (int i = 0; i < ALL; i++) {
+            double edge[2];
+            for (int k = 0; k < 2; k++) {
+                double t = 2.0 * (i % EACH + k) / EACH - 1;
+                edge[k] = width / 2 * (t < 0 ? -1 : 1) * (1 - pow(1 - fabs(t), 4));
+            }
+            pieces[i] = level_bar((edge[0] + edge[1]) / 2 + (i < EACH ? 0 : apart), height,
+                                  edge[1] - edge[0], 0, length);
+            from[i] = i < EACH ? 1 : 2;
+        }
+        assert_ok(inductance_matrix(pieces, ALL, true, matrix, &error));
+        struct inductance_network network = {ALL, matrix, from, to, 3, 2, in, out};
+        double fine[4], got[4], stated[4];
+        assert_ok(inductance_network_solve(&network, fine, NULL, &error));
+        struct inductance_trace trace[2] = {{0, width * 1e-3, 0, height * 1e-3},
+                                            {apart * 1e-3, width * 1e-3, 0, height * 1e-3}};
+        struct inductance_traces traces = {2, trace, length * 1e-3};
+        assert_ok(inductance_traces_solve(&traces, got, stated, &error));
+        for (int i = 0; i < 2; i++) {
+            assert_true(fabs(got[i] - fine[i]) < stated[i]);
+            assert_true(stated[i] < 5e-4 * fine[i]);
+        }
+    }
+}
+
 int main(void) {
     const struct CMUnitTest tests[] = {
         cmocka_unit_test(test_loops_of_even_current),
@@ -251,6 +289,7 @@ int main(void) {
         cmocka_unit_test(test_a_far_plane_changes_nothing),
         cmocka_unit_test(test_free_shares_lower_the_inductance),
         cmocka_unit_test(test_mutual_of_two_traces),
+        cmocka_unit_test(test_stated_errors_cover_a_finer_division),
     };
     return cmocka_run_group_tests(tests, NULL, NULL);
 }
