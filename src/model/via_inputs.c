@@ -3,15 +3,16 @@
 #include <math.h>
 
 const struct model_flag via_flags[VIA_FLAG_COUNT] = {
-    [VIA_FLAG_LONG] = {"electrically-long",
-                       "The current path is longer than a tenth of the wavelength in a laminate of "
-                       "dk 4.3: lumped inductance is beyond its validity."},
-    [VIA_FLAG_SLOW] = {"low-frequency",
-                       "The frequency is so low that the return current spreads through the plane "
-                       "by its resistance: the plane's image is beyond its validity."},
-    [VIA_FLAG_ROW] = {"row-wider-than-trace",
-                      "The row of vias is wider than the trace: the copper that joins them is not "
-                      "counted, the loop weighs more."},
+    [VIA_FLAG_LONG] = {.name = "electrically-long",
+                       .meaning = "The current path is longer than a tenth of the wavelength in a "
+                                  "laminate of dk 4.3: lumped inductance is beyond its validity."},
+    [VIA_FLAG_SLOW] = {.name = "low-frequency",
+                       .meaning = "The frequency is so low that the return current spreads through "
+                                  "the plane by its resistance: the plane's image is beyond its "
+                                  "validity."},
+    [VIA_FLAG_ROW] = {.name = "row-wider-than-trace",
+                      .meaning = "The row of vias is wider than the trace: the copper that joins "
+                                 "them is not counted, the loop weighs more."},
 };
 
 unsigned via_flags_of(double size, double height, double frequency) {
