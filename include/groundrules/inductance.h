@@ -120,8 +120,8 @@ double inductance_barrel_convergence(double diameter, double spacing);
 size_t inductance_barrel_harmonics(double diameter, double spacing);
 
 /* matrix[count * count], H: partial inductances after the azimuthal currents have found their
- * shares. coarser and even, of the same size, may be NULL: the same with two harmonics fewer (0
- * when there are no more than two), and with current even around each barrel, which are exact tube
+ * shares. coarser and even, of the same size, may be NULL: the same with two harmonics fewer (one
+ * of two, none of one), and with current even around each barrel, which are exact tube
  * averages, 1e-9. Fails: ERROR_INPUT for barrels that touch; ERROR_SINGULAR; ERROR_MEMORY. */
 bool inductance_barrels_solve(const struct inductance_barrels *barrels, double *matrix,
                               double *coarser, double *even, struct error *error);

@@ -21,7 +21,7 @@ double inductance_barrel_convergence(double diameter, double spacing) {
 }
 
 size_t inductance_barrel_harmonics(double diameter, double spacing) {
-    double order = ceil(-6.4 / log(inductance_barrel_convergence(diameter, spacing)));
+    double order = ceil(-7.4 / log(inductance_barrel_convergence(diameter, spacing)));
     return (size_t)fmin(order, INDUCTANCE_MOST_HARMONICS);
 }
 
@@ -155,7 +155,7 @@ bool inductance_barrels_solve(const struct inductance_barrels *barrels, double *
     bool ok = harmonics == 0 || dense_eliminate(system.rows, n, system.width, system.a, NULL);
     if (ok) {
         reduce(&system, barrels, harmonics, kernel.factor, matrix);
-        reduce(&system, barrels, harmonics > 2 ? harmonics - 2 : 0, kernel.factor, coarser);
+        reduce(&system, barrels, harmonics > 2 ? harmonics - 2 : harmonics / 2, kernel.factor, coarser);
         reduce(&system, barrels, 0, kernel.factor, even);
     } else {
         error_set(error, ERROR_SINGULAR, "the currents around the barrels have no solution");

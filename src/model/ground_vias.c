@@ -176,7 +176,8 @@ static bool respond(const double *values, const double *prepared, struct model_w
     errors[NEXT_BENEFIT] = isnan(answers[NEXT_BENEFIT]) ? 0.0 : relative;
     answers[LARGEST_SHARE] = prepared[PREPARED_LARGEST];
     answers[SMALLEST_SHARE] = prepared[PREPARED_SMALLEST];
-    errors[LARGEST_SHARE] = errors[SMALLEST_SHARE] = relative;
+    errors[LARGEST_SHARE] = 2.0 * relative * prepared[PREPARED_LARGEST];
+    errors[SMALLEST_SHARE] = 2.0 * relative * prepared[PREPARED_SMALLEST];
     answers[REACTANCE] = reach * all;
     errors[REACTANCE] = reach * errors[INDUCTANCE];
     *flags = via_flags_of(values[HEIGHT], values[HEIGHT], values[FREQUENCY]);

@@ -102,8 +102,7 @@ static bool prepare(const double *values, double *prepared, struct model_memo *m
         !loop_of(coarser, count, &coarse, error) ||
         !loop_of(even, count, &prepared[PREPARED_UNIFORM], error))
         return error_in(error, "vias");
-    prepared[PREPARED_ERROR] =
-        via_rest(coarse - prepared[PREPARED_LOOP], values[DIAMETER], closest);
+    prepared[PREPARED_ERROR] = via_rest(prepared[PREPARED_LOOP], coarse, values[DIAMETER], closest);
     return true;
 }
 
@@ -114,7 +113,7 @@ static bool respond(const double *values, const double *prepared, struct model_w
     (void)error;
     answers[LOOP_INDUCTANCE] = prepared[PREPARED_LOOP];
     answers[UNIFORM_INDUCTANCE] = prepared[PREPARED_UNIFORM];
-    errors[LOOP_INDUCTANCE] = prepared[PREPARED_ERROR] + 1e-8 * prepared[PREPARED_LOOP];
+    errors[LOOP_INDUCTANCE] = prepared[PREPARED_ERROR];
     errors[UNIFORM_INDUCTANCE] = 1e-8 * prepared[PREPARED_UNIFORM];
     *flags = 0;
     return true;

@@ -61,7 +61,7 @@ struct via_group {
 bool via_joined(const struct inductance_barrels *barrels, double spacing, struct via_group *group,
                 struct error *error);
 
-/* What a solution leaves open whose last harmonics changed it by `change`. */
-double via_rest(double change, double diameter, double spacing);
+/* What a solution leaves open that was `coarser` with fewer harmonics. */
+double via_rest(double inductance, double coarser, double diameter, double spacing);
 
 #endif
