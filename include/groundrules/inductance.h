@@ -114,8 +114,9 @@ struct inductance_barrels {
     size_t harmonics;
 };
 
-/* What each further harmonic brings, over what the one before brought, of two barrels this far
- * apart (centre to centre); for harmonics that reach about 3e-4 and better. */
+/* For two barrels this far apart, centre to centre: what a harmonic brings over what the one before
+ * it brought, and how many reach 3e-4 of a group's inductance or better (test_inductance_groups.c).
+ */
 double inductance_barrel_convergence(double diameter, double spacing);
 size_t inductance_barrel_harmonics(double diameter, double spacing);
 

@@ -155,7 +155,8 @@ bool inductance_barrels_solve(const struct inductance_barrels *barrels, double *
     bool ok = harmonics == 0 || dense_eliminate(system.rows, n, system.width, system.a, NULL);
     if (ok) {
         reduce(&system, barrels, harmonics, kernel.factor, matrix);
-        reduce(&system, barrels, harmonics > 2 ? harmonics - 2 : harmonics / 2, kernel.factor, coarser);
+        reduce(&system, barrels, harmonics > 2 ? harmonics - 2 : harmonics / 2, kernel.factor,
+               coarser);
         reduce(&system, barrels, 0, kernel.factor, even);
     } else {
         error_set(error, ERROR_SINGULAR, "the currents around the barrels have no solution");
