@@ -21,6 +21,10 @@ void arena_free(struct arena *arena);
 void *arena_take(struct arena *arena, size_t count, size_t size, struct error *error);
 #define arena_new(arena, count, type, error)                                                       \
     ((type *)arena_take((arena), (count), sizeof(type), (error)))
+/* The same, but not zeroed: for large arrays that are written before they are read. */
+void *arena_take_unset(struct arena *arena, size_t count, size_t size, struct error *error);
+#define arena_new_unset(arena, count, type, error)                                                 \
+    ((type *)arena_take_unset((arena), (count), sizeof(type), (error)))
 
 /* Copies of text, zero-terminated. */
 char *arena_copy(struct arena *arena, const char *text, struct error *error);

@@ -47,6 +47,7 @@ struct model_output {
 struct model_flag {
     const char *name;    /* "electrically-wide" */
     const char *meaning; /* one sentence for the document */
+    bool informs;        /* says what was solved; the number is as good as any */
 };
 
 struct model_memo;   /* solved sections and loops, shared by all threads */
@@ -77,6 +78,10 @@ struct model {
                     double *outputs, double *errors, unsigned *flags, struct error *error);
     /* The geometry of these inputs; NULL for a model without one. */
     bool (*sketch)(const double *inputs, struct sketch *sketch, struct error *error);
+    /* The longest run, m, that is so short against these inputs' edge that all outputs which rules
+     * limit grow steadily with the input `length`: searches need not look between shorter ones.
+     * NULL: not known. */
+    double (*steady_length)(const double *inputs);
 };
 
 /* The registry: one line a model in src/model/registry.c. */
@@ -115,6 +120,9 @@ struct model_memo_counts model_memo_counts(const struct model_memo *memo);
 
 struct model_worker *model_worker_create(struct error *error);
 void model_worker_free(struct model_worker *worker);
+/* The shortest edge, s, of the cases to come, where it is known: responses are prepared for it and
+ * shared.  0 (as at first): by powers of four. */
+void model_worker_expect(struct model_worker *worker, double shortest_edge);
 
 /* One point: resolve is the caller's; check, prepare, respond.  outputs, errors [output_count]. */
 bool model_evaluate(const struct model *model, const double *inputs, struct model_memo *memo,

@@ -15,6 +15,8 @@ enum sketch_role {
     SKETCH_TIED,     /* ground copper tied everywhere */
     SKETCH_FLOATING, /* copper connected to nothing */
     SKETCH_TIED_ONE_END,
+    SKETCH_MASK,  /* coating: the solid lies on the board, over copper it is as thick */
+    SKETCH_COVER, /* a plane above */
 };
 
 struct sketch_solid {
@@ -36,6 +38,7 @@ struct sketch_dimension {
 enum { SKETCH_MOST_SOLIDS = 32, SKETCH_MOST_DIMENSIONS = 16 };
 
 struct sketch {
+    double etch; /* m: the top of all copper on the board is so much narrower on either side */
     size_t solid_count;
     struct sketch_solid solids[SKETCH_MOST_SOLIDS];
     size_t dimension_count;
@@ -45,9 +48,10 @@ struct sketch {
 void sketch_add_solid(struct sketch *sketch, struct sketch_solid solid);
 void sketch_add_dimension(struct sketch *sketch, struct sketch_dimension dimension);
 
-/* The section problem that the drawn copper poses: conductors from left to right with their ties.
- */
-void sketch_section(const struct sketch *sketch, double dk, struct section_problem *problem,
+/* The section problem that is drawn: conductors in the order in which they were added, from left to
+ * right, with their ties; coating, plane above and the plane's end.  The permittivities in
+ * `problem` are the caller's. */
+void sketch_section(const struct sketch *sketch, struct section_problem *problem,
                     enum section_tie *ties);
 
 #endif

@@ -67,7 +67,7 @@ static bool add_block(struct arena *arena, size_t block, size_t bytes) {
     return true;
 }
 
-void *arena_take(struct arena *arena, size_t count, size_t size, struct error *error) {
+void *arena_take_unset(struct arena *arena, size_t count, size_t size, struct error *error) {
     size_t bytes = 0;
     if (__builtin_mul_overflow(count, size, &bytes) || bytes > SIZE_MAX - ALIGNMENT ||
         made_to_fail()) {
@@ -87,7 +87,12 @@ void *arena_take(struct arena *arena, size_t count, size_t size, struct error *e
     }
     void *memory = arena->blocks[arena->current] + arena->used;
     arena->used += bytes;
-    return memset(memory, 0, bytes);
+    return memory;
+}
+
+void *arena_take(struct arena *arena, size_t count, size_t size, struct error *error) {
+    void *memory = arena_take_unset(arena, count, size, error);
+    return memory == NULL ? NULL : memset(memory, 0, count * size);
 }
 
 char *arena_copy_length(struct arena *arena, const char *text, size_t length, struct error *error) {

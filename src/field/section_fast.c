@@ -159,8 +159,7 @@ static void add_scratch(struct system *s, size_t i, size_t j, const double *sign
 static struct body_shape shape_of(const struct system *s, size_t i) {
     const struct section_conductor *c = &s->problem->conductors[i];
     double h = s->problem->height;
-    return (struct body_shape){c->left / h, c->width / h, c->thickness / h,
-                               face_foot_corner(s->problem->dk),
+    return (struct body_shape){c->left / h, c->width / h, c->thickness / h, s->orders->foot_corner,
                                s->mirrored && 2 * i + 1 > s->problem->count};
 }
 

@@ -11,9 +11,10 @@
 struct section_orders {
     struct section_terms terms[SECTION_MOST_CONDUCTORS];
     size_t images;
-    double node_error; /* aimed at by every rule of nodes */
-    size_t more_nodes; /* beyond that, so that no two efforts share a rule */
-    bool reached;      /* false when something had to be capped: do not trust */
+    size_t foot_corner; /* face.h */
+    double node_error;  /* aimed at by every rule of nodes */
+    size_t more_nodes;  /* beyond that, so that no two efforts share a rule */
+    bool reached;       /* false when something had to be capped: do not trust */
 };
 
 /* Nodes of a conductor towards another (or its own images). */

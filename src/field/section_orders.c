@@ -14,10 +14,6 @@ static const double level_base = 3.3, level_factor = 2.0, inner_factor = 0.7;
 static const double upright_base = 1.7, upright_factor = 0.8;
 static const double node_error = 2e-4, inner_node_error = 6e-5, image_error = 2e-5;
 
-/* What two efforts have in common and their difference cannot show: corner exponents in steps,
- * tables. */
-static const double common_error = 5e-6;
-
 static double gap_between(const struct section_problem *problem, size_t i, size_t j) {
     const struct section_conductor *one = &problem->conductors[i < j ? i : j];
     const struct section_conductor *two = &problem->conductors[i < j ? j : i];
@@ -114,38 +110,11 @@ void section_orders_choose(const struct section_problem *problem, int effort,
     orders->more_nodes = (size_t)effort;
     orders->images =
         section_image_count(section_reflection(problem->dk), image_error * pow(10, -raise));
+    orders->foot_corner = face_foot_corner(problem->dk);
     orders->reached = true;
     for (size_t i = 0; i < problem->count; i++) {
         choose_terms(problem, i, raise, orders);
         for (size_t j = i == 0 ? 0 : i - 1; j < problem->count && j <= i + 1; j++)
             orders->reached = orders->reached && section_nodes(problem, orders, i, j).enough;
     }
-}
-
-static bool solve_with(const struct section_problem *problem, int effort,
-                       struct section_solution *solution, struct error *error) {
-    struct section_orders orders;
-    section_orders_choose(problem, effort, &orders);
-    return section_fast(problem, &orders, solution, error);
-}
-
-bool section_solve_once(const struct section_problem *problem, struct section_solution *solution,
-                        struct error *error) {
-    return section_check(problem, error) && solve_with(problem, 0, solution, error);
-}
-
-bool section_solve(const struct section_problem *problem, struct section_solution *solution,
-                   struct error *error) {
-    struct section_orders orders;
-    struct section_solution rough, finer;
-    if (!section_check(problem, error))
-        return false;
-    section_orders_choose(problem, 1, &orders);
-    if (!orders.reached)
-        return section_solve_plain(problem, solution, error);
-    if (!solve_with(problem, 0, &rough, error) || !section_fast(problem, &orders, &finer, error))
-        return false;
-    finer.error = section_difference(&rough, &finer) + common_error;
-    *solution = finer;
-    return true;
 }

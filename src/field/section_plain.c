@@ -263,10 +263,8 @@ static bool solve(const struct section_problem *problem, struct plain_orders ord
                               error);
 }
 
-bool section_solve_plain(const struct section_problem *problem, struct section_solution *solution,
-                         struct error *error) {
-    if (!section_check(problem, error))
-        return false;
+bool section_plain(const struct section_problem *problem, struct section_solution *solution,
+                   struct error *error) {
     struct arena *arena = arena_create(error);
     if (arena == NULL)
         return false;

@@ -78,6 +78,37 @@ static bool complement(const double *matrix, size_t count, const struct pick *ke
     return true;
 }
 
+/* The derivative of C_ss - C_sf inverse(C_ff) C_fs: floating conductors keep the potentials that
+ * -inverse(C_ff) C_fs gives them, so the derivative is T' D T with T = [1; -inverse(C_ff) C_fs]. */
+static bool congruence(const double *matrix, const double *capacitance, size_t count,
+                       const struct pick *kept, const struct pick *floating, double *result,
+                       struct error *error) {
+    double across[SECTION_MOST_CONDUCTORS * SECTION_MOST_CONDUCTORS];
+    double among[SECTION_MOST_CONDUCTORS * SECTION_MOST_CONDUCTORS];
+    double t[SECTION_MOST_CONDUCTORS * SECTION_MOST_CONDUCTORS] = {0}; /* count x kept */
+    size_t n = kept->count, m = floating->count;
+    pick_matrix(capacitance, count, floating, kept, across);
+    pick_matrix(capacitance, count, floating, floating, among);
+    if (m > 0 && !invert(m, among, error))
+        return false;
+    for (size_t i = 0; i < n; i++)
+        t[kept->at[i] * n + i] = 1;
+    for (size_t f = 0; f < m; f++)
+        for (size_t i = 0; i < n; i++)
+            for (size_t g = 0; g < m; g++)
+                t[floating->at[f] * n + i] -= among[f * m + g] * across[g * n + i];
+    for (size_t i = 0; i < n; i++)
+        for (size_t j = 0; j < n; j++) {
+            double sum = 0;
+            for (size_t k = 0; k < count; k++)
+                for (size_t l = 0; l < count; l++)
+                    if (t[k * n + i] != 0 && t[l * n + j] != 0)
+                        sum += t[k * n + i] * matrix[k * count + l] * t[l * n + j];
+            result[i * n + j] = sum;
+        }
+    return true;
+}
+
 static void symmetrise(size_t n, double *a) {
     for (size_t i = 0; i < n; i++)
         for (size_t j = 0; j < i; j++)
@@ -103,11 +134,14 @@ bool section_reduce(const struct section_solution *solution, const enum section_
     if (!complement(solution->capacitance, n, &signals, &floating, result.capacitance, error) ||
         !complement(solution->vacuum_capacitance, n, &signals, &floating, result.vacuum_capacitance,
                     error) ||
-        !complement(solution->inductance, n, &signals, &tied, result.inductance, error))
+        !complement(solution->inductance, n, &signals, &tied, result.inductance, error) ||
+        !congruence(solution->dielectric_capacitance, solution->capacitance, n, &signals, &floating,
+                    result.dielectric_capacitance, error))
         return false;
     symmetrise(signals.count, result.capacitance);
     symmetrise(signals.count, result.vacuum_capacitance);
     symmetrise(signals.count, result.inductance);
+    symmetrise(signals.count, result.dielectric_capacitance);
     *reduced = result;
     return true;
 }

@@ -7,81 +7,64 @@
 
 enum { MOST = LINE_MOST_CONDUCTORS, STENCIL = GRID_STENCIL };
 
-/* A front within this share of a step after a sample counts as being on it: fronts of the fastest
- * mode lie on samples but for rounding. */
-static const double ON_SAMPLE = 1e-6;
-
-double front_series(const double *jump, size_t stride, size_t orders, double t) {
-    static const double over[] = {1, 1, 1.0 / 2, 1.0 / 3};
-    double sum = 0;
-    for (size_t p = orders; p-- > 0;)
-        sum = jump[p * stride] + sum * t * (p + 1 < FRONT_ORDERS ? over[p + 1] : 0);
-    return sum;
-}
-
-size_t front_sample(double time, double step) {
-    double sample = ceil(time / step - ON_SAMPLE);
-    return sample > 0 ? (size_t)sample : 0;
-}
-
 /* Reading a wave between samples: where the four samples lie on both sides of a front, those on
  * the wrong side are continued across it. */
 static void correct_waves(struct grid *grid, const struct front *front) {
     double h = grid->setup->step;
     size_t first = front_sample(front->time, h), count = grid->count;
     size_t orders = grid->setup->fronts->orders, to = front->near ? 1 : 0;
+    double after = (double)first * h - front->time;
     for (size_t m = 0; m < count; m++) {
         const struct delay *delay = &grid->delay[m];
-        if (delay->fraction == 0)
+        const double *jump = front->leaving + m, *weight = delay->weight;
+        if (delay->fraction == 0 || first + delay->samples >= grid->corrected)
             continue;
-        for (size_t back = 0; back < 3; back++) {
-            double base = (double)first - (double)back; /* second stencil point */
-            double target = (base + delay->fraction) * h - front->time;
-            double correction = target >= -ON_SAMPLE * h
-                                    ? front_series(front->leaving + m, count, orders, target)
-                                    : 0;
-            for (size_t j = 0; j < STENCIL; j++) {
-                double sample = base - 1 + (double)j;
-                if (sample >= (double)first)
-                    correction -= delay->weight[j] * front_series(front->leaving + m, count, orders,
-                                                                  sample * h - front->time);
-            }
-            size_t i = first + delay->samples - back;
-            if (i < grid->corrected)
-                grid->wave_correction[to][i * count + m] += correction;
-        }
+        double s0 = front_series(jump, count, orders, after);
+        double s1 = front_series(jump, count, orders, after + h);
+        double s2 = front_series(jump, count, orders, after + 2 * h);
+        double target = after + delay->fraction * h, before = target - h;
+        double *at = grid->wave_correction[to] + (first + delay->samples) * count + m;
+        at[0] += front_series(jump, count, orders, target) -
+                 (weight[1] * s0 + weight[2] * s1 + weight[3] * s2);
+        at -= count;
+        if (before >= -ON_SAMPLE * h)
+            at[0] += front_series(jump, count, orders, before);
+        at[0] -= weight[2] * s0 + weight[3] * s1;
+        at -= count;
+        at[0] -= weight[3] * s0;
     }
 }
 
 /* Integrating the ends: the part of x due to the front is known as a power series; what the
- * quadrature would make of it is taken off. */
+ * quadrature would make of it is taken off, in the three steps whose samples lie on both sides. */
 static void correct_states(struct grid *grid, const struct front *front) {
     size_t end = front->near ? 0 : 1, count = grid->count;
     const struct stepper *stepper = &grid->stepper[end];
     size_t states = stepper->states, orders = grid->setup->fronts->orders;
-    double h = grid->setup->step, before[MOST] = {0};
+    double h = grid->setup->step, before[MOST] = {0}, wave[3][MOST];
     size_t first = front_sample(front->time, h);
-    /* The three steps whose samples lie on both sides, by the sample they lead to. */
-    for (size_t i = first > 0 ? first - 1 : 0; i < first + 2; i++) {
-        double now = (double)i * h - front->time, after[MOST] = {0};
-        for (size_t k = 0; k < states && i >= first; k++) {
-            double power = 1;
-            for (size_t p = 0; p < orders; p++) {
+    double late = (double)first * h - front->time;
+    for (size_t s = 0; s < 3 && states > 0; s++)
+        for (size_t m = 0; m < count; m++)
+            wave[s][m] = front_series(front->wave + m, count, orders, late + (double)s * h);
+    for (size_t step = first > 0 ? 0 : 1; step < 3; step++) {
+        size_t i = first + step - 1; /* the sample the step leads to */
+        double now = late + ((double)step - 1) * h, after[MOST] = {0};
+        if (i >= grid->corrected)
+            return;
+        for (size_t k = 0; k < states; k++) {
+            double power = 1, correction = 0;
+            for (size_t p = 0; p < orders && step > 0; p++) {
                 power *= now / (double)(p + 1);
                 after[k] += power * front->state[p * states + k];
             }
-        }
-        for (size_t k = 0; k < states; k++) {
-            double correction = after[k];
+            correction = after[k];
             for (size_t j = 0; j < states; j++)
                 correction -= stepper->decay[k * states + j] * before[j];
-            for (size_t s = 0; s < STENCIL && i + 1 >= first + s; s++)
+            for (size_t s = 0; s <= step; s++)
                 for (size_t m = 0; m < count; m++)
-                    correction -=
-                        stepper->gain[s][k * count + m] *
-                        front_series(front->wave + m, count, orders, now + (1 - (double)s) * h);
-            if (i < grid->corrected)
-                grid->state_correction[end][i * states + k] += correction;
+                    correction -= stepper->gain[s][k * count + m] * wave[step - s][m];
+            grid->state_correction[end][i * states + k] += correction;
         }
         memcpy(before, after, sizeof before);
     }
@@ -95,23 +78,23 @@ static double kernel(double u) {
     return u <= 1 ? (1 - u * u) * (2 - u) / 2 : (1 - u) * (2 - u) * (3 - u) / 6;
 }
 
-/* Mean of (u - from)^power / power!, 0 before `from`, weighed by the kernel about 0; u in samples.
+/* Means of (u - from)^power / power!, 0 before `from`, weighed by the kernel about 0; u in samples.
  * Four Gauss-Legendre points are exact between the kernel's knots. */
-static double blurred_power(double from, size_t power) {
+static void blurred_powers(double from, double mean[FRONT_ORDERS]) {
     static const double point[2] = {0.33998104358485626, 0.86113631159405258};
     static const double weight[2] = {0.65214515486254614, 0.34785484513745386};
-    double sum = 0, factorial = power == 3 ? 6 : power == 2 ? 2 : 1;
+    memset(mean, 0, FRONT_ORDERS * sizeof *mean);
     for (int knot = -2; knot < 2; knot++) {
-        double low = fmax(from, knot), half = (knot + 1 - low) / 2;
+        double low = from > knot ? from : knot, half = (knot + 1 - low) / 2;
         for (int k = 0; k < 4 && half > 0; k++) {
             double u = low + half + half * (k % 2 ? -1 : 1) * point[k / 2];
-            double value = 1;
-            for (size_t p = 0; p < power; p++)
-                value *= u - from;
-            sum += half * weight[k / 2] * value / factorial * kernel(u);
+            double share = half * weight[k / 2] * kernel(u);
+            for (size_t power = 0; power < FRONT_ORDERS; power++) {
+                mean[power] += share;
+                share *= (u - from) / (double)(power + 1);
+            }
         }
     }
-    return sum;
 }
 
 /* A wave whose next arrival is left to the grid: its samples are blurred by the kernel, which keeps
@@ -125,8 +108,9 @@ static void blur_leaving(struct grid *grid, const struct front *front) {
         if (i >= grid->corrected)
             return;
         double scale = 1, mean[FRONT_ORDERS];
+        blurred_powers(position - (double)i, mean);
         for (size_t p = 0; p < FRONT_ORDERS; p++) {
-            mean[p] = scale * blurred_power(position - (double)i, p);
+            mean[p] *= scale;
             scale *= h;
         }
         for (size_t m = 0; m < count; m++) {

@@ -52,7 +52,7 @@ bool curves_build(const struct march *march, const struct rest *rest, const stru
         curves[k] =
             (struct curve){.step = march->step,
                            .samples = samples,
-                           .value = march->value[end] + k * samples,
+                           .value = march->value[end] + k * march->stride,
                            .integral = march->integral[end] + k * samples,
                            .final = rest[k].final,
                            .settled = rest_settled(march->integral[end] + k * samples, samples,
@@ -190,61 +190,112 @@ static void search_cell(const struct curve *curve, double edge, double low, doub
 static void grid_values(const struct curve *curve, double edge, bool falling, size_t start,
                         size_t count, double *values) {
     double h = curve->step, shift = (falling ? edge : -edge) / h, whole = floor(shift);
-    double u = shift - whole, last = (double)(curve->samples - 1);
+    double u = shift - whole, first = (double)start + whole;
     double w0 = (1 + 2 * u) * (1 - u) * (1 - u), w1 = u * u * (3 - 2 * u);
     double d0 = h * u * (1 - u) * (1 - u), d1 = -h * u * u * (1 - u);
     double sign = falling ? 1 / edge : -1 / edge;
-    for (size_t k = 0; k < count; k++) {
-        double cell = (double)(start + k) + whole, shifted;
-        if (cell < 0)
-            shifted = 0;
-        else if (cell >= last)
-            shifted = curve->settled + curve->final * h * (cell + u);
-        else {
-            size_t i = (size_t)cell;
-            shifted = w0 * curve->integral[i] + d0 * curve->value[i] + w1 * curve->integral[i + 1] +
-                      d1 * curve->value[i + 1];
-        }
-        values[k] = sign * (shifted - curve->integral[start + k]);
+    const double *here = curve->integral + start;
+    size_t before = first < 0 ? (size_t)fmin(-first, (double)count) : 0;
+    size_t inside = (size_t)fmin(fmax((double)(curve->samples - 1) - first, 0), (double)count);
+    for (size_t k = 0; k < before; k++)
+        values[k] = -sign * here[k];
+    if (before < inside) {
+        size_t at = (size_t)(first + (double)before);
+        const double *integral = curve->integral + at, *value = curve->value + at;
+        for (size_t k = 0; k < inside - before; k++)
+            values[before + k] = sign * (w0 * integral[k] + d0 * value[k] + w1 * integral[k + 1] +
+                                         d1 * value[k + 1] - here[before + k]);
     }
+    for (size_t k = inside > before ? inside : before; k < count; k++)
+        values[k] = sign * (curve->settled + curve->final * h * (first + (double)k + u) - here[k]);
 }
 
-typedef void grid_visit(const struct curve *curve, double edge, double offset, size_t start,
-                        size_t count, const double *values, struct line_peak *peak);
+/* Blocks of grid times, first t_i, then t_i + e as far as these lie beyond the last sample.  They
+ * overlap, so that a cell is judged with both neighbours. */
+struct block {
+    bool falling;
+    size_t start, count;
+};
 
-static void walk_grid(const struct curve *curve, double edge, bool falling, grid_visit *visit,
-                      struct line_peak *peak) {
-    double values[BLOCK];
-    size_t samples = curve->samples, start = 0;
-    double offset = falling ? edge : 0;
+static struct block first_block(const struct curve *curve, double edge, bool falling) {
+    struct block block = {.falling = falling};
     if (falling) { /* times up to the last sample were visited without */
-        double skip = floor((double)(samples - 1) - edge / curve->step);
-        start = skip > 0 ? (size_t)skip : 0;
+        double skip = floor((double)(curve->samples - 1) - edge / curve->step);
+        block.start = skip > 0 ? (size_t)skip : 0;
     }
-    while (start + 1 < samples) {
-        size_t count = samples - start < BLOCK ? samples - start : BLOCK;
-        grid_values(curve, edge, falling, start, count, values);
-        visit(curve, edge, offset, start, count, values, peak);
-        if (start + count == samples)
-            return;
-        start += count - 3; /* overlap: a cell is judged with both neighbours */
+    size_t left = curve->samples - block.start;
+    block.count = left < BLOCK ? left : BLOCK;
+    return block;
+}
+
+static bool next_block(const struct curve *curve, double edge, struct block *block) {
+    if (block->start + block->count == curve->samples) {
+        if (block->falling)
+            return false;
+        *block = first_block(curve, edge, true);
+        return block->count > 1;
+    }
+    block->start += block->count - 3;
+    size_t left = curve->samples - block->start;
+    block->count = left < BLOCK ? left : BLOCK;
+    return true;
+}
+
+/* The largest magnitude and the largest step; lane by lane, so that none waits for the other. */
+static void largest_of(const double *values, size_t count, double *highest, double *steepest) {
+    enum { LANES = 8 };
+    double high[LANES] = {0}, steep[LANES] = {0};
+    size_t k = 0;
+    for (; k + LANES < count; k += LANES)
+        for (size_t lane = 0; lane < LANES; lane++) {
+            double size = fabs(values[k + lane]);
+            double step = fabs(values[k + lane + 1] - values[k + lane]);
+            high[lane] = size > high[lane] ? size : high[lane];
+            steep[lane] = step > steep[lane] ? step : steep[lane];
+        }
+    for (; k < count; k++) {
+        double size = fabs(values[k]), step = k + 1 < count ? fabs(values[k + 1] - values[k]) : 0;
+        high[0] = size > high[0] ? size : high[0];
+        steep[0] = step > steep[0] ? step : steep[0];
+    }
+    for (size_t lane = 0; lane < LANES; lane++) {
+        *highest = high[lane] > *highest ? high[lane] : *highest;
+        *steepest = steep[lane] > *steepest ? steep[lane] : *steepest;
     }
 }
 
-static void visit_coarse(const struct curve *curve, double edge, double offset, size_t start,
-                         size_t count, const double *values, struct line_peak *peak) {
-    (void)edge;
-    size_t best = 0;
-    for (size_t k = 1; k < count; k++)
-        if (fabs(values[k]) > fabs(values[best]))
-            best = k;
-    double time = (double)(start + best) * curve->step + offset;
-    offer(peak, response_at(curve, edge, time).value, time);
+struct search {
+    const struct curve *curve;
+    double edge, from;
+    struct line_peak peak;
+};
+
+/* The most that a cell of the block could hold: its largest value and 5/4 of its largest step. */
+static double look_at_block(struct search *search, const struct block *block) {
+    const struct curve *curve = search->curve;
+    double values[BLOCK], highest = 0, steepest = 0, offset = block->falling ? search->edge : 0;
+    double skip = ceil((search->from - offset) / curve->step) - (double)block->start;
+    if (!(skip < (double)block->count))
+        return 0;
+    /* The cell that `from` lies in counts. */
+    size_t first = skip > 1 ? (size_t)skip - 1 : 0;
+    grid_values(curve, search->edge, block->falling, block->start, block->count, values);
+    largest_of(values + first, block->count - first, &highest, &steepest);
+    if (highest > search->peak.highest) {
+        size_t best = first;
+        while (fabs(values[best]) < highest)
+            best++;
+        double time = fmax((double)(block->start + best) * curve->step + offset, search->from);
+        offer(&search->peak, response_at(curve, search->edge, time).value, time);
+    }
+    return highest + 1.25 * steepest;
 }
 
-static void visit_fine(const struct curve *curve, double edge, double offset, size_t start,
-                       size_t count, const double *values, struct line_peak *peak) {
-    double h = curve->step;
+static void search_block(struct search *search, const struct block *block) {
+    const struct curve *curve = search->curve;
+    double values[BLOCK], h = curve->step, offset = block->falling ? search->edge : 0;
+    size_t count = block->count;
+    grid_values(curve, search->edge, block->falling, block->start, count, values);
     for (size_t k = 0; k + 1 < count; k++) {
         double here = fabs(values[k + 1] - values[k]);
         double left = k > 0 ? fabs(values[k] - values[k - 1]) : here;
@@ -252,18 +303,34 @@ static void visit_fine(const struct curve *curve, double edge, double offset, si
         /* fmax is a call. */
         double first = fabs(values[k]), second = fabs(values[k + 1]);
         double highest = first > second ? first : second, beside = left > right ? left : right;
-        if (highest + (here < beside ? here : beside) + beside / 4 < peak->highest)
+        if (highest + (here < beside ? here : beside) + beside / 4 < search->peak.highest)
             continue;
-        double low = (double)(start + k) * h + offset;
-        search_cell(curve, edge, low, low + h, peak);
+        double low = (double)(block->start + k) * h + offset;
+        if (low + h > search->from)
+            search_cell(curve, search->edge, fmax(low, search->from), low + h, &search->peak);
     }
 }
 
-struct line_peak curve_peak(const struct curve *curve, double edge) {
-    struct line_peak peak = {0};
-    walk_grid(curve, edge, false, visit_coarse, &peak);
-    walk_grid(curve, edge, true, visit_coarse, &peak);
-    walk_grid(curve, edge, false, visit_fine, &peak);
-    walk_grid(curve, edge, true, visit_fine, &peak);
-    return peak;
+struct line_peak curve_peak(const struct curve *curve, double edge, double from) {
+    enum { BLOCKS = 1024 }; /* what lies beyond them is searched without having been looked at */
+    struct search search = {.curve = curve, .edge = edge, .from = from, .peak = {.time = from}};
+    double room[BLOCKS];
+    size_t blocks = 0;
+    offer(&search.peak, response_at(curve, edge, from).value, from);
+    if (curve->samples < 2)
+        return search.peak;
+    struct block block = first_block(curve, edge, false);
+    do {
+        if (blocks == BLOCKS)
+            break;
+        room[blocks++] = look_at_block(&search, &block);
+    } while (next_block(curve, edge, &block));
+    size_t k = 0;
+    block = first_block(curve, edge, false);
+    do {
+        if (k >= blocks || room[k] >= search.peak.highest)
+            search_block(&search, &block);
+        k++;
+    } while (next_block(curve, edge, &block));
+    return search.peak;
 }

@@ -29,7 +29,7 @@ bool curves_build(const struct march *march, const struct rest *rest, const stru
 
 /* The response at time t to a ramp of `edge`. */
 double curve_response(const struct curve *curve, double edge, double time);
-/* The true maximum of its magnitude, also between samples. */
-struct line_peak curve_peak(const struct curve *curve, double edge);
+/* The true maximum of its magnitude from `from` on, also between samples. */
+struct line_peak curve_peak(const struct curve *curve, double edge, double from);
 
 #endif

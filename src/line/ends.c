@@ -37,12 +37,12 @@ static struct nodes sort_nodes(const struct line_modes *modes, const struct line
     return nodes;
 }
 
-/* The nodal current forced by one unit input: 2 Yc T b or G e. */
-static double forced(const struct line_modes *modes, const struct nodes *nodes, size_t i,
-                     size_t input, size_t driven) {
+/* The nodal current forced by one unit input: 2 Yc T b or G emf e. */
+static double forced(const struct line_modes *modes, const struct nodes *nodes,
+                     const struct line_end *ends, size_t i, size_t input) {
     size_t count = modes->count;
     if (input == nodes->states + count)
-        return i == driven ? nodes->conductance[i] : 0;
+        return nodes->conductance[i] * ends[i].emf;
     if (input < nodes->states)
         return 0;
     size_t m = input - nodes->states;
@@ -54,16 +54,17 @@ static double forced(const struct line_modes *modes, const struct nodes *nodes, 
 
 /* V[count][inputs], inputs = states, then waves, then the EMF: known nodes first, then Kirchhoff's
  * law at the free ones. */
-static bool node_voltages(const struct line_modes *modes, const struct nodes *nodes, size_t driven,
-                          double voltage[MOST][INPUTS], struct error *error) {
+static bool node_voltages(const struct line_modes *modes, const struct nodes *nodes,
+                          const struct line_end *ends, double voltage[MOST][INPUTS],
+                          struct error *error) {
     size_t count = modes->count, inputs = nodes->states + count + 1;
     double matrix[MOST * MOST] = {0}, right[MOST * INPUTS] = {0};
     memset(voltage, 0, sizeof(double) * MOST * INPUTS);
     for (size_t i = 0; i < count; i++) {
         if (nodes->kind[i] == NODE_STATE)
             voltage[i][nodes->state[i]] = 1;
-        if (nodes->kind[i] == NODE_FIXED && i == driven)
-            voltage[i][inputs - 1] = 1;
+        if (nodes->kind[i] == NODE_FIXED)
+            voltage[i][inputs - 1] = ends[i].emf;
     }
     if (nodes->frees == 0)
         return true;
@@ -72,7 +73,7 @@ static bool node_voltages(const struct line_modes *modes, const struct nodes *no
             continue;
         size_t row = nodes->free[i];
         for (size_t input = 0; input < inputs; input++) {
-            double sum = forced(modes, nodes, i, input, driven);
+            double sum = forced(modes, nodes, ends, i, input);
             for (size_t j = 0; j < count; j++)
                 if (nodes->kind[j] != NODE_FREE)
                     sum -= modes->characteristic_admittance[i * count + j] * voltage[j][input];
@@ -94,7 +95,7 @@ static bool node_voltages(const struct line_modes *modes, const struct nodes *no
 }
 
 static void fill_states(const struct line_modes *modes, const struct nodes *nodes,
-                        const struct line_end *ends, size_t driven, double voltage[MOST][INPUTS],
+                        const struct line_end *ends, double voltage[MOST][INPUTS],
                         struct end_system *system) {
     size_t count = modes->count, states = nodes->states;
     for (size_t i = 0; i < count; i++) {
@@ -103,7 +104,7 @@ static void fill_states(const struct line_modes *modes, const struct nodes *node
         size_t row = nodes->state[i];
         for (size_t input = 0; input <= states + count; input++) {
             double current =
-                forced(modes, nodes, i, input, driven) - nodes->conductance[i] * voltage[i][input];
+                forced(modes, nodes, ends, i, input) - nodes->conductance[i] * voltage[i][input];
             for (size_t j = 0; j < count; j++)
                 current -= modes->characteristic_admittance[i * count + j] * voltage[j][input];
             double slope = current / ends[i].capacitance;
@@ -147,14 +148,14 @@ static void fill_outputs(const struct line_problem *problem, const struct line_m
 }
 
 bool end_system_build(const struct line_problem *problem, const struct line_modes *modes,
-                      const struct line_end *ends, size_t driven, double negligible,
-                      struct end_system *system, struct error *error) {
+                      const struct line_end *ends, double negligible, struct end_system *system,
+                      struct error *error) {
     double voltage[MOST][INPUTS];
     struct nodes nodes = sort_nodes(modes, ends, negligible);
     struct end_system built = {.count = modes->count, .states = nodes.states};
-    if (!node_voltages(modes, &nodes, driven, voltage, error))
+    if (!node_voltages(modes, &nodes, ends, voltage, error))
         return false;
-    fill_states(modes, &nodes, ends, driven, voltage, &built);
+    fill_states(modes, &nodes, ends, voltage, &built);
     fill_outputs(problem, modes, voltage, &built);
     /* The rows of A bound its eigenvalues (Gershgorin), and the fastest is what steps must resolve.
      */

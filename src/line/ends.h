@@ -3,12 +3,13 @@
 
 #include "groundrules/line.h"
 
-/* One set of ends as a linear system driven by the modal waves b that arrive and by the EMF e:
+/* One set of ends as a linear system driven by the modal waves b that arrive and by the EMFs,
+ * all of them their share times e:
  *     dx/dt = A x + B b + Be e          x: voltages of the ends that have a capacitance
  *     V     = Vx x + Vb b + Ve e        node voltages
  *     a     = Ax x + Ab b + Ae e        modal waves that leave
- * From  Cend dV/dt + (G + Yc) V = 2 Yc T b + G e  and  a = T' C V - b.  An end of 0 ohm has V = e;
- * an open one has G = 0; both are ordinary. All matrices row major. */
+ * From  Cend dV/dt + (G + Yc) V = 2 Yc T b + G emf e  and  a = T' C V - b.  An end of 0 ohm has V =
+ * emf e; an open one has G = 0; both are ordinary. All matrices row major. */
 struct end_system {
     size_t count;                                                      /* conductors = modes */
     size_t states;                                                     /* ends with a capacitance */
@@ -24,10 +25,10 @@ struct end_system {
     double fastest; /* s, smallest time constant of the states; INFINITY when there are none */
 };
 
-/* `driven` >= count: no EMF at these ends.  Capacitances whose time constant with their own end is
+/* Capacitances whose time constant with their own end is
  * below `negligible` seconds are left out. */
 bool end_system_build(const struct line_problem *problem, const struct line_modes *modes,
-                      const struct line_end *ends, size_t driven, double negligible,
-                      struct end_system *system, struct error *error);
+                      const struct line_end *ends, double negligible, struct end_system *system,
+                      struct error *error);
 
 #endif

@@ -7,6 +7,9 @@
  * sin(beta l) = 0 the equations stay regular, unlike admittances. */
 #include "problem.h"
 
+#include "loss.h"
+#include "terminated.h"
+
 #include <lapacke.h>
 #include <math.h>
 #include <string.h>
@@ -104,7 +107,7 @@ static void scale_columns(struct line_modes *modes) {
 }
 
 bool problem_solve_at(const struct line_problem *problem, const struct line_modes *modes,
-                      size_t driven, double complex s, double complex *near, double complex *far,
+                      double complex s, double complex *near, double complex *far,
                       struct error *error) {
     size_t count = problem->count;
     struct line_modes scaled = *modes;
@@ -112,7 +115,8 @@ bool problem_solve_at(const struct line_problem *problem, const struct line_mode
     struct equations equations;
     fill_equations(problem, &scaled, problem->near, problem->far, s, &equations);
     memset(equations.right, 0, equations.size * sizeof *equations.right);
-    equations.right[driven] = equations.drive[driven];
+    for (size_t i = 0; i < count; i++)
+        equations.right[i] = equations.drive[i] * problem->near[i].emf;
     if (!solve(&equations, 1, error))
         return false;
     double complex delay[LINE_MOST_CONDUCTORS];
@@ -132,14 +136,60 @@ static bool check_frequency(double frequency, struct error *error) {
     return true;
 }
 
-bool line_frequency_response(const struct line_problem *problem, size_t driven, double frequency,
+static bool all_finite(const double complex *voltages, size_t count, struct error *error) {
+    for (size_t i = 0; i < count; i++)
+        if (!isfinite(creal(voltages[i])) || !isfinite(cimag(voltages[i])))
+            return error_set(error, ERROR_SINGULAR,
+                             "the line is at a resonance that nothing damps; no finite answer");
+    return true;
+}
+
+static bool lossy_response(const struct line_problem *problem, double complex s,
+                           double complex *near, double complex *far, struct error *error) {
+    double complex v_near[LINE_MOST_CONDUCTORS], v_far[LINE_MOST_CONDUCTORS];
+    struct terminated line = terminated_of(problem, problem->near, problem->far);
+    terminated_voltages(&line, s, v_near, v_far);
+    if (!all_finite(v_near, problem->count, error) || !all_finite(v_far, problem->count, error))
+        return false;
+    memcpy(near, v_near, problem->count * sizeof *near);
+    memcpy(far, v_far, problem->count * sizeof *far);
+    return true;
+}
+
+bool line_frequency_response(const struct line_problem *problem, double frequency,
                              double complex *near, double complex *far, struct error *error) {
     struct line_modes modes;
-    if (!problem_check(problem, driven, error) || !check_frequency(frequency, error) ||
+    if (!problem_check(problem, error) || !check_frequency(frequency, error) ||
         !line_modes(problem, &modes, error))
         return false;
     const double pi = 3.14159265358979323846;
-    return problem_solve_at(problem, &modes, driven, I * 2 * pi * frequency, near, far, error);
+    if (loss_present(problem))
+        return lossy_response(problem, I * 2 * pi * frequency, near, far, error);
+    return problem_solve_at(problem, &modes, I * 2 * pi * frequency, near, far, error);
+}
+
+static bool lossy_scattering(const struct line_problem *problem, const struct line_end *ports,
+                             double complex s, double complex *scattering, struct error *error) {
+    size_t count = problem->count, size = 2 * count;
+    double complex own[LINE_MOST_CONDUCTORS], other[LINE_MOST_CONDUCTORS];
+    for (size_t column = 0; column < size; column++) {
+        struct line_end driven[LINE_MOST_CONDUCTORS];
+        for (size_t i = 0; i < count; i++) {
+            driven[i] = ports[i];
+            driven[i].emf = i == column % count;
+        }
+        struct terminated line = terminated_of(problem, driven, ports);
+        terminated_voltages(&line, s, own, other);
+        if (!all_finite(own, count, error) || !all_finite(other, count, error))
+            return false;
+        /* Equal ports at both ends: driven from the far end the two exchange their roles. */
+        for (size_t row = 0; row < size; row++) {
+            bool same_end = (row < count) == (column < count);
+            double complex voltage = same_end ? own[row % count] : other[row % count];
+            scattering[row * size + column] = 2 * voltage - (row == column ? 1 : 0);
+        }
+    }
+    return true;
 }
 
 bool line_scattering(const struct line_problem *problem, double reference, double frequency,
@@ -152,11 +202,14 @@ bool line_scattering(const struct line_problem *problem, double reference, doubl
     struct line_problem matched = *problem;
     for (size_t i = 0; i < LINE_MOST_CONDUCTORS; i++)
         ports[i] = matched.near[i] = matched.far[i] = (struct line_end){.resistance = reference};
-    if (!problem_check(&matched, 0, error) || !check_frequency(frequency, error) ||
+    matched.near[0].emf = 1; /* a port is driven */
+    if (!problem_check(&matched, error) || !check_frequency(frequency, error) ||
         !line_modes(problem, &modes, error))
         return false;
     scale_columns(&modes);
     const double complex s = I * 2 * 3.14159265358979323846 * frequency;
+    if (loss_present(problem))
+        return lossy_scattering(problem, ports, s, scattering, error);
     struct equations equations;
     fill_equations(problem, &modes, ports, ports, s, &equations);
     size_t size = equations.size;
@@ -173,5 +226,34 @@ bool line_scattering(const struct line_problem *problem, double reference, doubl
             scattering[row * size + column] =
                 2 * end_voltage(&modes, delay, &equations, size, column, row) -
                 (row == column ? 1 : 0);
+    return true;
+}
+
+/* Eigenvalues alone: without eigenvectors nothing is lost where modes are equal. */
+bool line_propagation(const struct line_problem *problem, double frequency,
+                      double complex *constants, struct error *error) {
+    struct line_modes modes;
+    size_t count = problem->count;
+    if (!line_modes(problem, &modes, error) || !loss_check(problem, error) ||
+        !check_frequency(frequency, error))
+        return false;
+    const double complex s = I * 2 * 3.14159265358979323846 * frequency;
+    double complex slowness[LINE_MOST_CONDUCTORS * LINE_MOST_CONDUCTORS];
+    double complex eigenvalues[LINE_MOST_CONDUCTORS];
+    struct loss_laws laws = loss_laws_of(problem);
+    propagation_slowness(&laws, s, slowness);
+    lapack_int n = (lapack_int)count;
+    if (LAPACKE_zgeev(LAPACK_ROW_MAJOR, 'N', 'N', n, slowness, n, eigenvalues, NULL, n, NULL, n) !=
+        0)
+        return error_set(error, ERROR_SINGULAR, "propagation constants were not found");
+    for (size_t i = 0; i < count; i++)
+        for (size_t j = i + 1; j < count; j++)
+            if (creal(eigenvalues[j]) < creal(eigenvalues[i])) {
+                double complex swapped = eigenvalues[i];
+                eigenvalues[i] = eigenvalues[j];
+                eigenvalues[j] = swapped;
+            }
+    for (size_t i = 0; i < count; i++)
+        constants[i] = s * eigenvalues[i];
     return true;
 }

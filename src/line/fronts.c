@@ -219,7 +219,7 @@ static bool next_level(const struct lattice *lattice, const struct level *level,
         next->front[next->count++] = fronts->count++;
         fronts->front[fronts->count].wave = NULL;
     }
-    if (!converges(lattice, &strongest)) {
+    if (!converges(lattice, &strongest) || strongest.best < lattice->limit->weakest) {
         fronts->count = before;
         next->count = 0;
     }

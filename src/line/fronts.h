@@ -31,7 +31,8 @@ struct fronts {
 };
 
 struct fronts_limit {
-    double smallest;  /* fronts below this share of the first one are dropped */
+    double smallest;  /* V; fronts below are dropped */
+    double weakest;   /* V; passages whose strongest front is below are not followed */
     size_t most;      /* no more fronts than this */
     double latest;    /* s */
     double scale;     /* s, the time over which derivatives are compared with jumps */

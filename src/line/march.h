@@ -20,6 +20,7 @@ struct march_setup {
     double edge;   /* s, > 0: the shortest that will be asked for */
     double final[2][LINE_MOST_CONDUCTORS]; /* V, what all ends settle to; NAN where not known */
     size_t most_steps;                     /* give up then */
+    double settled;                        /* see rest_of */
     size_t exact_steps;                    /* > 0: take exactly so many, without looking for rest */
 };
 
@@ -27,7 +28,8 @@ struct march {
     size_t count;
     double step;
     size_t samples, window;
-    double *value[2];                          /* [count][samples] step response, V, near and far */
+    size_t stride;                             /* from conductor to conductor in `value` */
+    double *value[2];                          /* [count][stride] step response, V, near and far */
     double *integral[2];                       /* [count][samples] its integral, V s */
     struct rest rest[2][LINE_MOST_CONDUCTORS]; /* not set with exact_steps */
 };

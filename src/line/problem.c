@@ -1,12 +1,14 @@
 #include "problem.h"
 
+#include "loss.h"
+
 #include <math.h>
 
 /* Field solvers deliver symmetric matrices to about 1e-9; what is off by more is a mistake. */
 static const double SYMMETRY = 1e-6;
 /* Limits that no board, cable or cabinet reaches; inside them nothing over- or underflows. */
 static const double SHORTEST_LENGTH = 1e-9, LONGEST_LENGTH = 1e9;
-static const double SMALLEST_ENTRY = 1e-18, LARGEST_ENTRY = 1e3;
+static const double SMALLEST_ENTRY = 1e-18, LARGEST_ENTRY = 1e3, LARGEST_EMF = 1e6;
 
 static bool check_symmetric(const double *matrix, size_t count, const char *name,
                             struct error *error) {
@@ -64,22 +66,47 @@ static bool check_end(const struct line_end *end, const char *name, size_t i, st
     return true;
 }
 
-bool problem_check(const struct line_problem *problem, size_t driven, struct error *error) {
+static bool check_emfs(const struct line_problem *problem, struct error *error) {
+    bool driven = false;
+    for (size_t i = 0; i < problem->count; i++) {
+        double emf = problem->near[i].emf;
+        if (!(fabs(emf) <= LARGEST_EMF))
+            return error_set(
+                error, ERROR_INPUT,
+                "near[%zu]: EMF is %g V per volt of swing, must be within %g either way", i, emf,
+                LARGEST_EMF);
+        if (emf != 0 && isinf(problem->near[i].resistance))
+            return error_set(error, ERROR_INPUT,
+                             "near[%zu]: the driven end is open, an EMF needs a finite resistance",
+                             i);
+        if (problem->far[i].emf != 0)
+            return error_set(error, ERROR_INPUT,
+                             "far[%zu]: has an EMF, only near ends can be driven", i);
+        driven = driven || emf != 0;
+    }
+    if (!driven)
+        return error_set(error, ERROR_INPUT, "no near end is driven");
+    return true;
+}
+
+bool problem_check(const struct line_problem *problem, struct error *error) {
     if (!problem_check_matrices(problem, error))
         return false;
     if (!(problem->length >= SHORTEST_LENGTH && problem->length <= LONGEST_LENGTH))
         return error_set(error, ERROR_INPUT, "length is %g m, must be within %g and %g",
                          problem->length, SHORTEST_LENGTH, LONGEST_LENGTH);
+    if (!loss_check(problem, error))
+        return false;
     for (size_t i = 0; i < problem->count; i++)
         if (!check_end(&problem->near[i], "near", i, error) ||
             !check_end(&problem->far[i], "far", i, error))
             return false;
-    if (driven >= problem->count)
-        return error_set(error, ERROR_INPUT, "driven conductor is %zu, there are %zu (from 0)",
-                         driven, problem->count);
-    if (isinf(problem->near[driven].resistance))
-        return error_set(error, ERROR_INPUT,
-                         "near[%zu]: the driven end is open, an EMF needs a finite resistance",
-                         driven);
-    return true;
+    return check_emfs(problem, error);
+}
+
+double problem_largest_emf(const struct line_problem *problem) {
+    double largest = 0;
+    for (size_t i = 0; i < problem->count; i++)
+        largest = fmax(largest, fabs(problem->near[i].emf));
+    return largest;
 }

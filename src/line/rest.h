@@ -15,12 +15,24 @@
 struct rest {
     double final; /* V */
     double error; /* what may still come, as a share of any peak */
+    double range; /* of the integral */
+    double late;  /* by how much it still swings in the last window */
     bool reached;
 };
 
+/* Extremes of the samples looked at before, so that none is looked at twice; starts zeroed. */
+struct rest_seen {
+    size_t samples;
+    double ramp_low, ramp_high, integral_low, integral_high;
+};
+
 /* sum[samples]: running sum of the samples by trapezoids; `window` < samples; `edge` in samples;
- * `final` NAN where it is not known: the mean of the last window. */
-struct rest rest_of(const double *sum, size_t samples, size_t window, size_t edge, double final);
+ * `final` NAN where it is not known: the mean of the last window; `settled`: the share of its range
+ * by which the integral may still swing.  All but `sum` and `samples` are the same from call to
+ * call.
+ */
+struct rest rest_of(const double *sum, size_t samples, size_t window, size_t edge, double final,
+                    double settled, struct rest_seen *seen);
 
 /* Where integral - final * time settles, V s: the mean of the last window, weighed so that a swing
  * hardly enters. */

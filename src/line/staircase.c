@@ -79,17 +79,19 @@ double staircase_at(const struct staircase *staircase, size_t conductor, double 
            edge;
 }
 
-struct line_peak staircase_peak(const struct staircase *staircase, size_t conductor, double edge) {
-    struct line_peak peak = {0};
+struct line_peak staircase_peak(const struct staircase *staircase, size_t conductor, double edge,
+                                double from) {
+    struct line_peak peak = {.highest = fabs(staircase_at(staircase, conductor, edge, from)),
+                             .time = from};
     size_t at = 0, before = 0, after = 0;
     for (size_t k = 0; k < staircase->steps; k++) {
         double time = staircase->time[k];
         double here = integral_at(staircase, conductor, time, &at);
         double rising = here - integral_at(staircase, conductor, time - edge, &before);
         double falling = integral_at(staircase, conductor, time + edge, &after) - here;
-        if (fabs(rising) > peak.highest * edge)
+        if (time >= from && fabs(rising) > peak.highest * edge)
             peak = (struct line_peak){.highest = fabs(rising) / edge, .time = time};
-        if (fabs(falling) > peak.highest * edge)
+        if (time + edge >= from && fabs(falling) > peak.highest * edge)
             peak = (struct line_peak){.highest = fabs(falling) / edge, .time = time + edge};
     }
     return peak;

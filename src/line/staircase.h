@@ -17,7 +17,9 @@ bool staircase_build(const struct fronts *fronts, size_t count, bool near, struc
                      struct staircase *staircase, struct error *error);
 /* The response at time t of `conductor` to a ramp of `edge`. */
 double staircase_at(const struct staircase *staircase, size_t conductor, double edge, double time);
-/* Its largest magnitude: at a front or one edge after a front, nowhere else. */
-struct line_peak staircase_peak(const struct staircase *staircase, size_t conductor, double edge);
+/* Its largest magnitude from `from` on: there, at a front or one edge after a front, nowhere else.
+ */
+struct line_peak staircase_peak(const struct staircase *staircase, size_t conductor, double edge,
+                                double from);
 
 #endif

@@ -6,13 +6,6 @@
 /* Inputs that several models share, declared once so that their names, ranges and meanings agree.
  */
 
-#define BOARD_MASK_NOT_YET                                                                         \
-    "solder mask over the traces is not solved by this version; leave it out (bare copper)"
-#define BOARD_COVER_NOT_YET "a plane above the traces is not solved by this version; leave it out"
-#define BOARD_EDGE_NOT_YET                                                                         \
-    "a plane that ends is not solved by this version; leave it out (infinite plane)"
-#define BOARD_LOSS_NOT_YET "losses are not computed by this version (lossless lines)"
-
 #define BOARD_HEIGHT                                                                               \
     {                                                                                              \
         "height", "foot of the trace to the top of the plane", DIMENSION_LENGTH, MODEL_SHAPE, NAN, \
@@ -35,55 +28,55 @@
     }
 #define BOARD_ETCH                                                                                 \
     {                                                                                              \
-        "etch", "how much narrower the top of the trace is, per side", DIMENSION_LENGTH,           \
-            MODEL_SHAPE, 0, 0, 0.2e-3, false, NULL, NULL, 0,                                       \
-            "trapezoidal traces are not solved by this version; leave it out (square edges)"       \
+        "etch", "how much narrower the top of the copper is, per side; 0 = square",                \
+            DIMENSION_LENGTH, MODEL_SHAPE, 0, 0, 0.2e-3, false, NULL, NULL, 0, NULL                \
     }
 #define BOARD_DF                                                                                   \
     {                                                                                              \
-        "df", "loss tangent of the board", DIMENSION_NUMBER, MODEL_DRIVE, 0, 0, 0.2, false, NULL,  \
-            NULL, 0, BOARD_LOSS_NOT_YET                                                            \
+        "df", "loss tangent of the board, its mask and what fills it; 0 = lossless",               \
+            DIMENSION_NUMBER, MODEL_SHAPE, 0, 0, 0.2, false, NULL, NULL, 0, NULL                   \
     }
 #define BOARD_MATERIAL_FREQUENCY                                                                   \
     {                                                                                              \
         "material_frequency", "frequency at which dk and df hold", DIMENSION_FREQUENCY,            \
-            MODEL_DRIVE, 1e9, 1e3, 100e9, false, NULL, NULL, 0, BOARD_LOSS_NOT_YET                 \
+            MODEL_DRIVE, 1e9, 1e3, 100e9, false, NULL, NULL, 0, NULL                               \
     }
 #define BOARD_MASK                                                                                 \
     {                                                                                              \
-        "mask", "thickness of the solder mask; 0 = none", DIMENSION_LENGTH, MODEL_SHAPE, 0, 0,     \
-            0.2e-3, false, NULL, NULL, 0, BOARD_MASK_NOT_YET                                       \
+        "mask", "thickness of the solder mask, over the board as over the copper; 0 = none",       \
+            DIMENSION_LENGTH, MODEL_SHAPE, 0, 0, 0.2e-3, false, NULL, NULL, 0, NULL                \
     }
 #define BOARD_MASK_DK                                                                              \
     {                                                                                              \
         "mask_dk", "relative permittivity of the solder mask", DIMENSION_NUMBER, MODEL_SHAPE, 3.5, \
-            1, 15, false, NULL, NULL, 0, BOARD_MASK_NOT_YET                                        \
+            1, 15, false, NULL, NULL, 0, NULL                                                      \
     }
 #define BOARD_COVER                                                                                \
     {                                                                                              \
         "cover", "foot of the trace to the bottom of a plane above; 0 = none", DIMENSION_LENGTH,   \
-            MODEL_SHAPE, 0, 0, 10e-3, false, NULL, NULL, 0, BOARD_COVER_NOT_YET                    \
+            MODEL_SHAPE, 0, 0, 10e-3, false, NULL, NULL, 0, NULL                                   \
     }
 #define BOARD_COVER_DK                                                                             \
     {                                                                                              \
-        "cover_dk", "relative permittivity between the trace and the plane above",                 \
-            DIMENSION_NUMBER, MODEL_SHAPE, 4.3, 1, 15, false, NULL, NULL, 0, BOARD_COVER_NOT_YET   \
+        "cover_dk", "relative permittivity of what fills the room under the plane above",          \
+            DIMENSION_NUMBER, MODEL_SHAPE, 4.3, 1, 15, false, NULL, NULL, 0, NULL                  \
     }
-#define BOARD_EDGE_DISTANCE                                                                        \
+#define BOARD_EDGE_DISTANCE(WHAT)                                                                  \
     {                                                                                              \
-        "edge_distance", "centre of the trace to the edge of the plane; 0 = infinite plane",       \
-            DIMENSION_LENGTH, MODEL_SHAPE, 0, 0, 0.1, false, NULL, NULL, 0, BOARD_EDGE_NOT_YET     \
+        "edge_distance", WHAT " to the edge of the plane; 0 = infinite plane", DIMENSION_LENGTH,   \
+            MODEL_SHAPE, 0, 0, 0.1, false, NULL, NULL, 0, NULL                                     \
     }
 #define BOARD_FREQUENCY                                                                            \
     {                                                                                              \
         "frequency", "frequency of resistance and attenuation", DIMENSION_FREQUENCY, MODEL_DRIVE,  \
-            1e9, 1e3, 100e9, false, NULL, NULL, 0, BOARD_LOSS_NOT_YET                              \
+            1e9, 1e3, 100e9, false, NULL, NULL, 0, NULL                                            \
     }
 
 enum board_flag {
     BOARD_FLAG_THIN,
     BOARD_FLAG_WIDE_SECTION,
     BOARD_FLAG_SLOW,
+    BOARD_FLAG_NEAR_EDGE,
     BOARD_FLAG_COUNT,
 };
 extern const struct model_flag board_flags[BOARD_FLAG_COUNT];
@@ -93,17 +86,49 @@ extern const struct model_flag board_flags[BOARD_FLAG_COUNT];
     "the copper's faces, "                                                                         \
     "with the images of the grounded slab as kernel, once with the laminate and once in air; the " \
     "external "                                                                                    \
-    "inductance follows from the air solution. Every section is solved twice with different "      \
-    "orders and the "                                                                              \
+    "inductance follows from the air solution. With solder mask, a plane above, a plane that "     \
+    "ends or etched copper the charge on the borders of the dielectrics is solved too, with the "  \
+    "exact kernel of the planes. Every section is solved twice with different orders and the "     \
     "difference is carried as its error estimate."
 #define BOARD_SECTION_VALIDITY                                                                     \
-    "Quasi-TEM: the section must be small against the wavelength. The plane is infinite, uncut "   \
-    "and perfectly "                                                                               \
-    "conducting; copper has square edges; air above the laminate, no solder mask; no loss."
+    "Quasi-TEM: the section must be small against the wavelength. Planes are uncut, perfectly "    \
+    "conducting and infinite but for the edge that is given; solder mask is as thick over the "    \
+    "copper as beside it."
 
-/* The plane and the slab that every section here lies on. */
-void board_sketch_slab(struct sketch *sketch, double height);
+#define BOARD_LOSS_METHOD                                                                          \
+    "Skin resistance of trace and plane follows from the growth of the inductance in air when "    \
+    "their walls recede (the incremental-inductance rule, Wheeler 1942); the dielectric is that "  \
+    "of Djordjevic et al. 2001, causal, with the given values at the material frequency."
+#define BOARD_LOSS_VALIDITY                                                                        \
+    "Loss: copper thicker than a few skin depths, smooth; one loss tangent for all dielectrics."
 
+/* The board that a section lies on, as a model's inputs give it; what is 0 is not there. */
+struct board {
+    double height, thickness, dk;
+    double etch;
+    double mask, mask_dk;
+    double cover, cover_dk;
+    double edge_distance;
+};
+
+/* Combinations that cannot be.  `narrowest`: m, the narrowest copper of the section. */
+bool board_check(const struct board *board, double narrowest, struct error *error);
+
+/* Its planes, dielectrics and coating, the plane ending `edge_distance` from x = `edge_from`. */
+void board_sketch(struct sketch *sketch, const struct board *board, double edge_from);
+/* A trace or strip on it; from left to right. */
+void board_sketch_copper(struct sketch *sketch, const struct board *board, enum sketch_role role,
+                         double left, double width, const char *label);
+/* Dimensions of what board_sketch drew; `right`: x of the copper that they are measured at. */
+void board_sketch_dimensions(struct sketch *sketch, const struct board *board, double right,
+                             double edge_from);
+
+/* The section problem that a drawing on this board poses. */
+void board_section(const struct sketch *sketch, const struct board *board,
+                   struct section_problem *problem, enum section_tie *ties);
+
+/* Thin copper, and the plane's edge within ten heights. */
+unsigned board_flags_of_section(const struct board *board);
 /* BOARD_FLAG_WIDE_SECTION: size (m) above a tenth of the wavelength in the laminate at the edge's
  * highest frequency, taken as 0.35 over the 10-90 % time (common practice, no source).
  * BOARD_FLAG_SLOW: the edge's frequency is below ten times rho/(2 pi mu0 t h), where the plane's

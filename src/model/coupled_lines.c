@@ -21,6 +21,7 @@ enum {
     VICTIM_LOAD_CAPACITANCE,
     RECEIVER,
     BIT_TIME,
+    SETTLING,
     DC_RESISTANCE,
     SKIN_RESISTANCE,
     DF,
@@ -29,8 +30,6 @@ enum {
     EDGE,
     INPUT_COUNT
 };
-
-#define LOSS_NOT_YET "losses are not computed by this version (lossless lines)"
 
 static const struct model_input inputs[INPUT_COUNT] = {
     [INDUCTANCE] = {"inductance", "inductance of the aggressor", DIMENSION_INDUCTANCE_PER_LENGTH,
@@ -61,17 +60,19 @@ static const struct model_input inputs[INPUT_COUNT] = {
     [VICTIM_LOAD_CAPACITANCE] = COUPLED_VICTIM_LOAD_CAPACITANCE,
     [RECEIVER] = COUPLED_RECEIVER,
     [BIT_TIME] = COUPLED_BIT_TIME,
-    [DC_RESISTANCE] = {"dc_resistance", "series resistance at zero frequency",
+    [SETTLING] = COUPLED_SETTLING,
+    [DC_RESISTANCE] = {"dc_resistance", "series resistance of each trace at zero frequency",
                        DIMENSION_RESISTANCE_PER_LENGTH, MODEL_DRIVE, 0, 0, 1e6, false, NULL, NULL,
-                       0, LOSS_NOT_YET},
-    [SKIN_RESISTANCE] = {"skin_resistance", "skin-effect resistance per root of frequency",
+                       0, NULL},
+    [SKIN_RESISTANCE] = {"skin_resistance",
+                         "skin-effect resistance of each trace per root of frequency",
                          DIMENSION_SKIN_RESISTANCE, MODEL_DRIVE, 0, 0, 1, false, NULL, NULL, 0,
-                         LOSS_NOT_YET},
-    [DF] = {"df", "loss tangent of the dielectric", DIMENSION_NUMBER, MODEL_DRIVE, 0, 0, 0.2, false,
-            NULL, NULL, 0, LOSS_NOT_YET},
+                         NULL},
+    [DF] = {"df", "loss tangent of the dielectric at 1 GHz, where the capacitances hold",
+            DIMENSION_NUMBER, MODEL_DRIVE, 0, 0, 0.2, false, NULL, NULL, 0, NULL},
     [DIELECTRIC_SHARE] = {"dielectric_share",
                           "share of the capacitance that follows the dielectric", DIMENSION_RATIO,
-                          MODEL_DRIVE, 1, 0, 1, false, NULL, NULL, 0, LOSS_NOT_YET},
+                          MODEL_DRIVE, 1, 0, 1, false, NULL, NULL, 0, NULL},
     [SWING] = COUPLED_SWING,
     [EDGE] = COUPLED_EDGE,
 };
@@ -104,20 +105,33 @@ static bool prepare(const double *values, double *prepared, struct model_memo *m
     return true;
 }
 
+static void fill_loss(const double *values, struct coupled_set *pair) {
+    for (size_t i = 0; i < 2; i++) {
+        pair->dc_resistance[3 * i] = values[DC_RESISTANCE];
+        pair->skin_resistance[3 * i] = values[SKIN_RESISTANCE];
+    }
+    for (size_t k = 0; k < 4 && values[DF] > 0.0; k++)
+        pair->dielectric_capacitance[k] = values[DIELECTRIC_SHARE] * pair->capacitance[k];
+    pair->df = values[DF];
+    pair->material_frequency = 1e9;
+}
+
 static bool respond(const double *values, const double *prepared, struct model_worker *worker,
                     double *answers, double *errors, unsigned *flags, struct error *error) {
-    struct coupled_pair pair = {prepared[INDUCTANCE],
-                                prepared[VICTIM_INDUCTANCE],
-                                prepared[MUTUAL_INDUCTANCE],
-                                prepared[CAPACITANCE],
-                                prepared[VICTIM_CAPACITANCE],
-                                prepared[MUTUAL_CAPACITANCE],
-                                0.0};
+    struct coupled_set pair = {
+        .count = 2,
+        .inductance = {prepared[INDUCTANCE], prepared[MUTUAL_INDUCTANCE],
+                       prepared[MUTUAL_INDUCTANCE], prepared[VICTIM_INDUCTANCE]},
+        .capacitance = {prepared[CAPACITANCE], -prepared[MUTUAL_CAPACITANCE],
+                        -prepared[MUTUAL_CAPACITANCE], prepared[VICTIM_CAPACITANCE]},
+    };
+    fill_loss(values, &pair);
     struct coupled_drive drive = {
         .length = values[LENGTH],
         .swing = values[SWING],
         .edge = values[EDGE],
         .bit_time = values[BIT_TIME],
+        .settling = values[SETTLING],
         .source = values[SOURCE],
         .load = values[LOAD],
         .load_capacitance = values[LOAD_CAPACITANCE],
@@ -136,8 +150,9 @@ const struct model model_coupled_lines = {
     .summary = "What reaches the ends of a terminated pair whose matrices are known, measured or "
                "published?",
     .method = "The given matrices are taken as they are. " COUPLED_LINE_METHOD,
-    .validity = "Lossless lines of constant section; drivers and receivers are linear.",
-    .revision = 1,
+    .validity =
+        "Lines of constant section; drivers and receivers are linear. " COUPLED_LOSS_VALIDITY,
+    .revision = 2,
     .inputs = inputs,
     .input_count = INPUT_COUNT,
     .outputs = coupled_outputs,

@@ -1,23 +1,17 @@
 #ifndef MODEL_COUPLED_RESPONSE_H
 #define MODEL_COUPLED_RESPONSE_H
 
+#include "coupled_set.h"
 #include "groundrules/model.h"
 
-/* What coupled-traces and coupled-lines share: the terminated pair's inputs, and every output that
- * follows from a pair's matrices. */
-
-/* The pair's matrices per metre; conductor a drives, v listens.  `error` is the relative error of
- * the entries. */
-struct coupled_pair {
-    double inductance, victim_inductance, mutual_inductance; /* H/m */
-    double capacitance, victim_capacitance,
-        mutual_capacitance; /* F/m, Maxwell diagonals; mutual > 0 */
-    double error;
-};
+/* What coupled-traces and coupled-lines share: the terminated traces' inputs, and every output that
+ * follows from their matrices. */
 
 struct coupled_drive {
     double length, swing, edge;
-    double bit_time; /* s; 0 = a single edge */
+    double bit_time;  /* s; 0 = a single edge */
+    double settling;  /* s; 0 = every instant counts */
+    bool independent; /* aggressors switch each on its own: their worst cases add up */
     double source, load, load_capacitance;
     double victim_source, victim_load, victim_load_capacitance;
     bool receiver_near; /* the victim's load sits at the near end, its driver at the far end */
@@ -30,6 +24,7 @@ enum coupled_output {
     COUPLED_RECEIVER_PEAK,
     COUPLED_PATTERN_PEAK,
     COUPLED_CLOCKED_PEAK,
+    COUPLED_NOISE_PEAK,
     COUPLED_NEAR_END_RATIO,
     COUPLED_FAR_END_RATIO,
     COUPLED_NEAR_END_LEVEL,
@@ -52,11 +47,11 @@ enum coupled_output {
 };
 extern const struct model_output coupled_outputs[COUPLED_OUTPUT_COUNT];
 
-bool coupled_respond(const struct coupled_pair *pair, const struct coupled_drive *drive,
+bool coupled_respond(const struct coupled_set *set, const struct coupled_drive *drive,
                      struct model_worker *worker, double *outputs, double *errors,
                      struct error *error);
 
-/* Inputs of the terminated pair, in the same words for both models. */
+/* Inputs of the terminated traces, in the same words for both models. */
 #define COUPLED_LENGTH                                                                             \
     {                                                                                              \
         "length", "length over which the traces run side by side", DIMENSION_LENGTH, MODEL_DRIVE,  \
@@ -76,6 +71,14 @@ bool coupled_respond(const struct coupled_pair *pair, const struct coupled_drive
     {                                                                                              \
         "bit_time", "least time between two edges; 0 = a single edge", DIMENSION_TIME,             \
             MODEL_DRIVE, 0, 0, 1, false, NULL, NULL, 0, NULL                                       \
+    }
+#define COUPLED_SETTLING                                                                           \
+    {                                                                                              \
+        "settling",                                                                                \
+            "start of the aggressor's last edge to the instant at which the victim is sampled; 0 " \
+            "= "                                                                                   \
+            "edge-sensitive, every instant counts",                                                \
+            DIMENSION_TIME, MODEL_DRIVE, 0, 0, 1, false, NULL, NULL, 0, NULL                       \
     }
 #define COUPLED_SOURCE                                                                             \
     {                                                                                              \
@@ -114,15 +117,37 @@ bool coupled_respond(const struct coupled_pair *pair, const struct coupled_drive
     }
 #define COUPLED_RESISTIVITY                                                                        \
     {                                                                                              \
-        "copper_resistivity", "resistivity of the copper; 0 = lossless", DIMENSION_RESISTIVITY,    \
-            MODEL_DRIVE, 0, 0, 1e-5, false, NULL, NULL, 0,                                         \
-            "losses are not computed by this version (lossless lines)"                             \
+        "copper_resistivity",                                                                      \
+            "resistivity of the copper, 1.72e-8 ohm m at 20 C; 0 = lossless, which bounds the "    \
+            "peaks "                                                                               \
+            "from above and is some ten times faster",                                             \
+            DIMENSION_RESISTIVITY, MODEL_SHAPE, 0, 0, 1e-5, false, NULL, NULL, 0, NULL             \
+    }
+#define COUPLED_FREQUENCY                                                                          \
+    {                                                                                              \
+        "frequency", "frequency of outputs at one frequency", DIMENSION_FREQUENCY, MODEL_DRIVE,    \
+            1e9, 1e3, 100e9, false, NULL, NULL, 0,                                                 \
+            "no output of this version depends on a frequency"                                     \
     }
 extern const char *const coupled_receiver_words[];
 
 #define COUPLED_LINE_METHOD                                                                        \
-    "The pair is then solved as a lossless coupled line between its real ends in the time "        \
-    "domain; the peak is the "                                                                     \
-    "largest voltage of the whole ringing, found between the samples as well."
+    "The traces are then solved as a coupled line between their real ends in the time "            \
+    "domain: without loss by bounces and characteristics, with loss (skin effect by the "          \
+    "incremental-inductance rule of Wheeler 1942, dielectric by the causal model of Djordjevic "   \
+    "et al. 2001) by inversion of the Laplace transform; the peak is the "                         \
+    "largest voltage of the whole ringing, found between the samples as well. Sequences of edges " \
+    "are searched exactly over the sampled response; a victim that settles counts what is left "   \
+    "at its sampling instant."
+
+#define COUPLED_LOSS_VALIDITY                                                                      \
+    "Loss: copper thicker than a few skin depths, smooth; one loss tangent for all dielectrics."
+
+#define COUPLED_SEVERAL_METHOD                                                                     \
+    "Several aggressors have all the same ends; where both sides of the victim are alike, only "   \
+    "what is alike on both sides reaches it, and the line is solved for that. A strip between "    \
+    "lies on both sides of the victim, none between aggressors. Aggressors that switch each on "   \
+    "its "                                                                                         \
+    "own add up their worst cases."
 
 #endif

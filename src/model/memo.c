@@ -12,8 +12,12 @@
 static const double GRAIN = 1e-13;
 
 struct memo_key {
-    int64_t height, dk, count;
-    int64_t conductors[SECTION_MOST_CONDUCTORS][3];
+    int64_t height, dk;
+    int64_t plane, plane_end;
+    int64_t mask, mask_dk, mask_flat;
+    int64_t cover, cover_dk;
+    int64_t count;
+    int64_t conductors[SECTION_MOST_CONDUCTORS][4];
 };
 
 struct memo_entry {
@@ -70,17 +74,34 @@ static int64_t grains(double length) {
     return (int64_t)llround(length / GRAIN);
 }
 
+static int64_t fine(double dk) {
+    return (int64_t)llround(dk * 1e12);
+}
+
+/* What a missing part would be made of does not tell sections apart. */
 static struct memo_key key_of(const struct section_problem *problem) {
     struct memo_key key;
     memset(&key, 0, sizeof key);
     key.height = grains(problem->height);
-    key.dk = (int64_t)llround(problem->dk * 1e12);
+    key.dk = fine(problem->dk);
+    key.plane = problem->plane;
+    if (problem->plane == SECTION_PLANE_ENDS)
+        key.plane_end = grains(problem->plane_end - problem->conductors[0].left);
+    key.mask = grains(problem->mask);
+    if (problem->mask > 0) {
+        key.mask_dk = fine(problem->mask_dk);
+        key.mask_flat = problem->mask_flat;
+    }
+    key.cover = grains(problem->cover);
+    if (problem->cover > 0)
+        key.cover_dk = fine(problem->cover_dk);
     key.count = (int64_t)problem->count;
     for (size_t i = 0; i < problem->count; i++) {
         const struct section_conductor *conductor = &problem->conductors[i];
         key.conductors[i][0] = grains(conductor->left - problem->conductors[0].left);
         key.conductors[i][1] = grains(conductor->width);
         key.conductors[i][2] = grains(conductor->thickness);
+        key.conductors[i][3] = grains(conductor->etch);
     }
     return key;
 }
@@ -88,11 +109,19 @@ static struct memo_key key_of(const struct section_problem *problem) {
 static struct section_problem problem_of(const struct memo_key *key) {
     struct section_problem problem = {.height = (double)key->height * GRAIN,
                                       .dk = (double)key->dk * 1e-12,
+                                      .plane = (enum section_plane)key->plane,
+                                      .plane_end = (double)key->plane_end * GRAIN,
+                                      .mask = (double)key->mask * GRAIN,
+                                      .mask_dk = key->mask > 0 ? (double)key->mask_dk * 1e-12 : 1,
+                                      .mask_flat = key->mask_flat != 0,
+                                      .cover = (double)key->cover * GRAIN,
+                                      .cover_dk =
+                                          key->cover > 0 ? (double)key->cover_dk * 1e-12 : 1,
                                       .count = (size_t)key->count};
     for (size_t i = 0; i < problem.count; i++)
-        problem.conductors[i] = (struct section_conductor){(double)key->conductors[i][0] * GRAIN,
-                                                           (double)key->conductors[i][1] * GRAIN,
-                                                           (double)key->conductors[i][2] * GRAIN, 0.0};
+        problem.conductors[i] = (struct section_conductor){
+            (double)key->conductors[i][0] * GRAIN, (double)key->conductors[i][1] * GRAIN,
+            (double)key->conductors[i][2] * GRAIN, (double)key->conductors[i][3] * GRAIN};
     return problem;
 }
 

@@ -14,7 +14,8 @@ void sketch_add_dimension(struct sketch *sketch, struct sketch_dimension dimensi
 }
 
 static bool is_copper(enum sketch_role role) {
-    return role != SKETCH_PLANE && role != SKETCH_DIELECTRIC;
+    return role != SKETCH_PLANE && role != SKETCH_DIELECTRIC && role != SKETCH_MASK &&
+           role != SKETCH_COVER;
 }
 
 static enum section_tie tie_of(enum sketch_role role) {
@@ -27,6 +28,8 @@ static enum section_tie tie_of(enum sketch_role role) {
         return SECTION_TIED_ONE_END;
     case SKETCH_PLANE:
     case SKETCH_DIELECTRIC:
+    case SKETCH_MASK:
+    case SKETCH_COVER:
     case SKETCH_TRACE:
     case SKETCH_AGGRESSOR:
     case SKETCH_VICTIM:
@@ -35,17 +38,33 @@ static enum section_tie tie_of(enum sketch_role role) {
     return SECTION_SIGNAL;
 }
 
-void sketch_section(const struct sketch *sketch, double dk, struct section_problem *problem,
+static void add_conductor(const struct sketch_solid *solid, double etch,
+                          struct section_problem *problem, enum section_tie *ties) {
+    assert(problem->count < SECTION_MOST_CONDUCTORS);
+    problem->height = solid->bottom;
+    problem->conductors[problem->count] = (struct section_conductor){
+        solid->left, solid->right - solid->left, solid->top - solid->bottom, etch};
+    ties[problem->count++] = tie_of(solid->role);
+}
+
+void sketch_section(const struct sketch *sketch, struct section_problem *problem,
                     enum section_tie *ties) {
-    *problem = (struct section_problem){.dk = dk};
+    double cover = 0.0;
+    *problem = (struct section_problem){
+        .dk = problem->dk, .mask_dk = problem->mask_dk, .cover_dk = problem->cover_dk};
     for (size_t i = 0; i < sketch->solid_count; i++) {
         const struct sketch_solid *solid = &sketch->solids[i];
-        if (!is_copper(solid->role))
-            continue;
-        assert(problem->count < SECTION_MOST_CONDUCTORS);
-        problem->height = solid->bottom;
-        problem->conductors[problem->count] = (struct section_conductor){
-            solid->left, solid->right - solid->left, solid->top - solid->bottom, 0.0};
-        ties[problem->count++] = tie_of(solid->role);
+        if (is_copper(solid->role))
+            add_conductor(solid, sketch->etch, problem, ties);
+        else if (solid->role == SKETCH_MASK)
+            problem->mask = solid->top - solid->bottom;
+        else if (solid->role == SKETCH_COVER)
+            cover = solid->bottom;
+        else if (solid->role == SKETCH_PLANE && isfinite(solid->right)) {
+            problem->plane = SECTION_PLANE_ENDS;
+            problem->plane_end = solid->right;
+        }
     }
+    if (cover > 0.0)
+        problem->cover = cover - problem->height;
 }

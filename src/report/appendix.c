@@ -66,19 +66,52 @@ static const char *all_variants(struct flow *flow, const struct study_chapter *c
         return text;
     for (size_t v = 1; v < chapter->variant_count; v++) {
         const char *next = setting_words(flow, chapter, i, &chapter->variants[v].settings[i]);
-        if (strstr(text, next) == NULL)
+        bool told = false;
+        for (size_t w = 0; w < v && !told; w++)
+            told = strcmp(setting_words(flow, chapter, i, &chapter->variants[w].settings[i]),
+                          next) == 0;
+        if (!told)
             text = flow_print(flow, "%s; %s", text, next);
     }
     return text;
 }
 
+static void inputs_table(struct flow *flow, const char *name, const char *title,
+                         const char *destination, const struct table_row *rows, size_t count,
+                         bool origins) {
+    const struct table_column four[4] = {{.most = 110.0}, {.most = 170.0}, {.most = 60.0}, {0}};
+    const struct table_column three[3] = {{.most = 110.0}, {.most = 170.0}, {0}};
+    const struct table_head of_chapter[4] = {
+        {"Input", 1}, {"Value, all boards and cases", 1}, {"From", 1}, {"Meaning", 1}};
+    const struct table_head of_model[3] = {{"Input", 1}, {"Standard", 1}, {"Meaning", 1}};
+    const struct table_head_row head = {origins ? of_chapter : of_model, origins ? 4 : 3};
+    struct table table = {.name = name,
+                          .columns = origins ? four : three,
+                          .column_count = origins ? 4 : 3,
+                          .heads = &head,
+                          .head_count = 1,
+                          .rows = rows,
+                          .row_count = count,
+                          .stretch = true};
+    flow_heading(flow, 1, title, destination, flow_table_start(flow, &table));
+    flow_table(flow, &table);
+}
+
+static bool is_standard(const struct study_chapter *chapter, size_t i) {
+    for (size_t v = 0; v < chapter->variant_count; v++)
+        if (chapter->variants[v].settings[i].origin != STUDY_STANDARD)
+            return false;
+    return true;
+}
+
+/* What is not at its standard. */
 static void chapter_inputs(struct flow *flow, const struct study_chapter *chapter) {
     const struct model *model = chapter->model;
     struct table_row *rows =
         arena_new(flow->arena, model->input_count, struct table_row, flow->error);
     size_t count = 0;
     for (size_t i = 0; rows != NULL && i < model->input_count; i++) {
-        if (model->inputs[i].not_yet != NULL)
+        if (is_standard(chapter, i))
             continue;
         const char **cells = arena_new(flow->arena, 4, const char *, flow->error);
         if (cells == NULL)
@@ -89,20 +122,52 @@ static void chapter_inputs(struct flow *flow, const struct study_chapter *chapte
         cells[3] = flow_escape(flow, model->inputs[i].meaning);
         rows[count++].cells = cells;
     }
-    const struct table_column columns[4] = {{.most = 110.0}, {.most = 170.0}, {.most = 60.0}, {0}};
-    const struct table_head heads[4] = {
-        {"Input", 1}, {"Value, all boards and cases", 1}, {"From", 1}, {"Meaning", 1}};
-    const struct table_head_row head = {heads, 4};
-    struct table table = {.name = flow_print(flow, "%s-inputs", chapter->id),
-                          .columns = columns,
-                          .column_count = 4,
-                          .heads = &head,
-                          .head_count = 1,
-                          .rows = rows,
-                          .row_count = count,
-                          .stretch = true};
-    flow_heading(flow, 1, chapter->title, pages_destination(flow, "inputs", chapter->id), 60.0);
-    flow_table(flow, &table);
+    if (count > 0)
+        inputs_table(flow, flow_print(flow, "%s-inputs", chapter->id), chapter->title,
+                     pages_destination(flow, "inputs", chapter->id), rows, count, true);
+}
+
+static void model_standards(struct flow *flow, const struct study_chapter *chapter) {
+    const struct model *model = chapter->model;
+    struct table_row *rows =
+        arena_new(flow->arena, model->input_count, struct table_row, flow->error);
+    size_t count = 0;
+    for (size_t i = 0; rows != NULL && i < model->input_count; i++) {
+        const struct model_input *input = &model->inputs[i];
+        double value = input->same_as != NULL ? (double)NAN : input->standard;
+        struct study_setting standard = {
+            .value = value, .range = {value, value}, .origin = STUDY_STANDARD};
+        const char **cells = arena_new(flow->arena, 3, const char *, flow->error);
+        if (cells == NULL)
+            return;
+        if (input->not_yet != NULL || (isnan(input->standard) && input->same_as == NULL))
+            continue;
+        cells[0] = words_name(flow, input->name);
+        cells[1] = setting_words(flow, chapter, i, &standard);
+        cells[2] = flow_escape(flow, input->meaning);
+        rows[count++].cells = cells;
+    }
+    if (count > 0)
+        inputs_table(flow, flow_print(flow, "%s-standards", model->name),
+                     flow_print(flow, "What else the model %s takes", model->name),
+                     pages_destination(flow, "standards", model->name), rows, count, false);
+}
+
+static void inputs(struct flow *flow) {
+    const struct study *study = flow->guideline->study;
+    flow_heading(flow, 0, "Inputs and tolerances", "part.inputs", 0.0);
+    flow_text(flow, THEME_BODY,
+              "Of each chapter, what is stated; all other inputs stand at the standard of the "
+              "chapter’s model, which follows at the end.");
+    for (size_t c = 0; c < study->chapter_count && !flow_failed(flow); c++)
+        chapter_inputs(flow, &study->chapters[c]);
+    for (size_t c = 0; c < study->chapter_count && !flow_failed(flow); c++) {
+        bool first = true;
+        for (size_t before = 0; before < c; before++)
+            first = first && study->chapters[before].model != study->chapters[c].model;
+        if (first)
+            model_standards(flow, &study->chapters[c]);
+    }
 }
 
 /* ---- methods ---- */
@@ -111,7 +176,8 @@ static void methods(struct flow *flow) {
     static const char *const paragraphs[] = {
         "<b>Sections.</b> First-kind Galerkin boundary elements on the faces of the copper, the "
         "grounded slab by its "
-        "image series; external inductance from the solution in air, L = "
+        "image series; with a coating, a plane above or a plane that ends, total charge on copper "
+        "and on the borders of the dielectrics; external inductance from the solution in air, L = "
         "µ<sub>0</sub>ε<sub>0</sub>C<sub>0</sub><sup>−1"
         "</sup>. Total-charge and image methods for multiconductor lines: Weeks 1970 (IEEE Trans. "
         "MTT-18, 35–43); Wei, "
@@ -125,10 +191,12 @@ static void methods(struct flow *flow) {
         "charge and zero net "
         "current. Tied at one end: zero potential and zero net current, valid below the strip’s "
         "resonance.",
-        "<b>Lines.</b> Lossless coupled lines by travelling modes between the real ends (Branin "
-        "1967 for one line; "
-        "modal decomposition as in Paul, Analysis of Multiconductor Transmission Lines, 2nd ed. "
-        "2008).",
+        "<b>Lines.</b> Coupled lines by travelling modes between the real ends (Branin 1967 for "
+        "one "
+        "line; modal decomposition as in Paul, Analysis of Multiconductor Transmission Lines, 2nd "
+        "ed. 2008); with loss by inversion of the Laplace transform (Wilcox 1978), skin effect by "
+        "the incremental-inductance rule (Wheeler 1942), the dielectric causal (Djordjevic, "
+        "Biljic, Likar-Smiljanic and Sarkar 2001).",
         "<b>Rules.</b> The region that a rule permits (the found input beyond its bound, stated "
         "ranges, tolerances, "
         "either receiver end) is scanned, every local maximum is refined by solving, and the value "
@@ -178,7 +246,6 @@ static void glossary(struct flow *flow) {
                         "fingerprints, equal "
                         "rules."},
     };
-    flow_heading(flow, 1, "Glossary", "part.glossary", 80.0);
     size_t count = sizeof terms / sizeof *terms;
     struct table_row *rows = arena_new(flow->arena, count, struct table_row, flow->error);
     for (size_t i = 0; rows != NULL && i < count; i++)
@@ -190,6 +257,7 @@ static void glossary(struct flow *flow) {
                           .rows = rows,
                           .row_count = count,
                           .stretch = true};
+    flow_heading(flow, 1, "Glossary", "part.glossary", flow_table_start(flow, &table));
     flow_table(flow, &table);
 }
 
@@ -207,16 +275,17 @@ static void cautions(struct flow *flow) {
         "they come first.",
         "Emission and immunity are shown by measurement to the standards that apply to the "
         "product.",
-        "Sections are lossless, with square copper and without solder mask; planes are infinite. "
-        "Cuts in the plane, "
-        "vias, connectors and bends are not in these numbers; over a cut plane none of these rules "
-        "holds.",
+        "Sections are as drawn: solder mask, tapered copper and loss are in the numbers only where "
+        "a "
+        "chapter states them; planes are infinite but for an edge that is stated. Cuts in the "
+        "plane, vias, connectors and bends are not in these numbers; over a cut plane none of "
+        "these rules holds.",
         "Edges are linear ramps. A rounder edge of the same 10–90 % time can give up to 28 % more "
         "at a matched far end. "
         "Peaks are for one edge unless a bit time is given; on a line that rings the edges of a "
         "sequence can add up to more.",
-        "Only one aggressor switches. Several neighbours that switch together add their "
-        "contributions.",
+        "One aggressor switches unless a chapter states more. Several neighbours that switch "
+        "together add their contributions.",
     };
     flow_heading(flow, 1, "Cautions", "part.cautions", 120.0);
     for (size_t i = 0; i < sizeof paragraphs / sizeof *paragraphs; i++) {
@@ -229,7 +298,5 @@ void pages_appendices(struct flow *flow) {
     methods(flow);
     glossary(flow);
     cautions(flow);
-    flow_heading(flow, 0, "Inputs and tolerances", "part.inputs", 0.0);
-    for (size_t i = 0; i < flow->guideline->study->chapter_count && !flow_failed(flow); i++)
-        chapter_inputs(flow, &flow->guideline->study->chapters[i]);
+    inputs(flow);
 }

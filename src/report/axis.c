@@ -226,6 +226,12 @@ static void make_logarithmic(const struct axis_request *request, size_t most, st
     decade_ticks(axis, request, &plan, shown_low, shown_high);
     if (count_major(axis) >= 3)
         return;
+    /* Rather closer labels than even steps on an axis that is none. */
+    axis->count = 0;
+    plan.fives = true;
+    decade_ticks(axis, request, &plan, shown_low, shown_high);
+    if (count_major(axis) >= 4)
+        return;
     axis->count = 0;
     linear_ticks(axis, shown_low, shown_high, choose_step(shown_low, shown_high, most, true, -30));
 }

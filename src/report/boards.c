@@ -34,6 +34,21 @@ static const char *fab_line(struct flow *flow, const struct study_stackup *stack
     return flow_print(flow, "%s.", text);
 }
 
+/* What is said beside the drawing, at the cursor; returns its height. */
+static double side_text(struct flow *flow, const struct study_stackup *stackup, double x,
+                        double width, bool draw) {
+    double height = 0.0;
+    const char *sheet = flow_shorten(flow, THEME_STRONG, flow_escape(flow, stackup->fab), width, 8);
+    const char *figures = fab_line(flow, stackup);
+    if (draw && stackup->fab != NULL)
+        flow_text_box(flow, THEME_STRONG, sheet, x, flow->y, width);
+    if (stackup->fab != NULL)
+        height = flow_text_height(flow, THEME_STRONG, sheet, width) + 3.0;
+    if (draw)
+        flow_text_box(flow, THEME_BODY, figures, x, flow->y + height, width);
+    return height + flow_text_height(flow, THEME_BODY, figures, width);
+}
+
 static void board(struct flow *flow, const struct study_stackup *stackup) {
     double width;
     double x = theme_column(&flow->page, 0, 4, &width);
@@ -47,20 +62,17 @@ static void board(struct flow *flow, const struct study_stackup *stackup) {
         drawing_stackup(stackup, &options, flow->setter, flow->arena, &report, flow->error);
     if (drawing == NULL)
         return;
+    double side;
+    double right = theme_column(&flow->page, 4, 2, &side);
     flow_heading(flow, 1, stackup->name, pages_destination(flow, "board", stackup->id),
-                 drawing->height + 20.0);
+                 fmax(drawing->height, side_text(flow, stackup, right, side, false)) + 12.0);
     double top = flow->y;
     flow_place(flow, drawing, x);
     flow_figure(flow, flow_print(flow, "board-%s", stackup->id), flow_escape(flow, stackup->name),
                 drawing);
-    double side, after = flow->y;
-    double right = theme_column(&flow->page, 4, 2, &side);
-    double y = top;
-    if (stackup->fab != NULL)
-        y += flow_text_box(flow, THEME_STRONG, flow_escape(flow, stackup->fab), right, y, side) +
-             3.0;
-    y += flow_text_box(flow, THEME_BODY, fab_line(flow, stackup), right, y, side);
-    flow->y = y > after ? y : after;
+    double after = flow->y;
+    flow->y = top;
+    flow->y = fmax(after, top + side_text(flow, stackup, right, side, true));
 }
 
 void pages_boards(struct flow *flow) {
@@ -127,7 +139,6 @@ void pages_signals(struct flow *flow) {
     const struct study *study = flow->guideline->study;
     if (study->signal_count == 0)
         return;
-    flow_heading(flow, 1, "Signal classes", "part.signals", 120.0);
     struct table_row *rows =
         arena_new(flow->arena, study->signal_count, struct table_row, flow->error);
     for (size_t i = 0; rows != NULL && i < study->signal_count; i++) {
@@ -158,5 +169,6 @@ void pages_signals(struct flow *flow) {
                           .notes = notes,
                           .note_count = 1,
                           .stretch = true};
+    flow_heading(flow, 1, "Signal classes", "part.signals", flow_table_start(flow, &table));
     flow_table(flow, &table);
 }

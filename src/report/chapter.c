@@ -39,7 +39,7 @@ static bool sketch_of(const struct study_chapter *chapter, size_t v, struct sket
 }
 
 static bool same_picture(const struct sketch *a, const struct sketch *b) {
-    if (a->solid_count != b->solid_count)
+    if (a->solid_count != b->solid_count || a->etch != b->etch)
         return false;
     for (size_t i = 0; i < a->solid_count; i++) {
         const struct sketch_solid *p = &a->solids[i], *q = &b->solids[i];
@@ -74,8 +74,10 @@ static size_t choose(const struct study_chapter *chapter, struct sketch *sketche
 }
 
 static const char *symbol(const char *input) {
-    static const char *const names[][2] = {
-        {"between_width", "strip"}, {"victim_width", "victim"}, {"edge_distance", "to the edge"}};
+    static const char *const names[][2] = {{"between_width", "strip"},
+                                           {"victim_width", "victim"},
+                                           {"edge_distance", "to the edge"},
+                                           {"mask", "solder mask"}};
     for (size_t i = 0; i < sizeof names / sizeof *names; i++)
         if (strcmp(input, names[i][0]) == 0)
             return names[i][1];
@@ -174,6 +176,9 @@ static bool judges_the_curves(const struct guideline_chapter *chapter,
     return true;
 }
 
+/* A rule whose marks would crowd the plot has none: its card and the table say it better. */
+enum { MOST_FLAGS = 6 };
+
 struct plot {
     struct chart_series series[CHART_MOST_SERIES];
     struct chart_limit limits[16];
@@ -204,6 +209,14 @@ static size_t board_index(const struct study *study, const struct study_stackup 
     return b;
 }
 
+/* Flags that only say what was solved leave the curve alone. */
+static bool casts_doubt(const struct model *model, unsigned flags) {
+    for (size_t i = 0; i < model->flag_count; i++)
+        if ((flags >> i & 1u) != 0 && !model->flags[i].informs)
+            return true;
+    return false;
+}
+
 static void add_series(struct flow *flow, const struct guideline_chapter *chapter,
                        const struct study_chart *asked, struct plot *plot) {
     const struct study_vary *vary = &chapter->chapter->vary;
@@ -227,7 +240,7 @@ static void add_series(struct flow *flow, const struct guideline_chapter *chapte
             bool band = has_band(curve, vary->point_count);
             bool *doubtful = arena_new(flow->arena, vary->point_count, bool, flow->error);
             for (size_t i = 0; doubtful != NULL && i < vary->point_count; i++)
-                doubtful[i] = curve->flags[i] != 0;
+                doubtful[i] = casts_doubt(chapter->chapter->model, curve->flags[i]);
             plot->series[plot->chart.series_count] = (struct chart_series){
                 .label = label,
                 .x = vary->points,
@@ -271,6 +284,8 @@ static void add_rule(struct flow *flow, const struct guideline_chapter *chapter,
     if (!draws(asked, rule->condition.output) || !judges_the_curves(chapter, rule))
         return;
     const struct model_output *output = &chapter->chapter->model->outputs[rule->condition.output];
+    bool marked = rule->find == chapter->chapter->vary.input &&
+                  plot->chart.mark_count + rule->variant_count <= MOST_FLAGS;
     for (size_t v = 0; v < rule->variant_count; v++) {
         const struct guideline_finding *finding = &result->findings[v];
         if (rule->condition.against != STUDY_REFERENCE) {
@@ -280,8 +295,7 @@ static void add_rule(struct flow *flow, const struct guideline_chapter *chapter,
                                  words_value(flow, limit, output->dimension)),
                       !rule->condition.at_most);
         }
-        if (rule->find != chapter->chapter->vary.input || finding->status != GUIDELINE_FOUND ||
-            plot->chart.mark_count == CHART_MOST_MARKS)
+        if (!marked || finding->status != GUIDELINE_FOUND)
             continue;
         if (is_marked(plot, finding->value))
             continue;
@@ -354,6 +368,8 @@ static bool anything_to_show(const struct guideline_chapter *chapter,
     return false;
 }
 
+enum { SENTENCE_LINES = 16 }; /* of names as long as a study may have them */
+
 static void charts(struct flow *flow, const struct guideline_chapter *chapter) {
     double width = flow->page.right - flow->page.left;
     for (size_t i = 0; i < chapter->chapter->chart_count && !flow_failed(flow); i++) {
@@ -369,7 +385,8 @@ static void charts(struct flow *flow, const struct guideline_chapter *chapter) {
         struct scene *scene = draw_chart(flow, chapter, asked, name, width);
         if (scene == NULL)
             return;
-        const char *sentence = sentence_of_chart(flow, chapter, asked);
+        const char *sentence = flow_shorten(
+            flow, THEME_BODY, sentence_of_chart(flow, chapter, asked), width, SENTENCE_LINES);
         flow_gap(flow, 10.0);
         flow_need(flow, scene->height + flow_text_height(flow, THEME_BODY, sentence, width) + 6.0);
         flow_place(flow, scene, flow->page.left);
@@ -437,7 +454,8 @@ static void method(struct flow *flow, const struct guideline_chapter *chapter) {
                           text, words_digits(flow, error, DIMENSION_RATIO, -1));
     for (size_t i = 0; i < model->flag_count; i++)
         if ((flags >> i & 1u) != 0)
-            text = flow_print(flow, "%s Flagged here: %s", text,
+            text = flow_print(flow, "%s %s: %s", text,
+                              model->flags[i].informs ? "Note" : "Flagged here",
                               flow_escape(flow, model->flags[i].meaning));
     double width = flow->page.right - flow->page.left;
     flow_gap(flow, 10.0);

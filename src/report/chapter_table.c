@@ -79,8 +79,7 @@ static void one_table(struct flow *flow, const struct guideline_chapter *chapter
         return;
     double scales[MOST_OUTPUTS];
     groups[0] = (struct table_head){"", 1};
-    names[0].text = flow_print(flow, "%c%s", words_name(flow, input->name)[0] - 32,
-                               words_name(flow, input->name) + 1);
+    names[0].text = words_capital(flow, input->name);
     for (size_t o = 0; o < output_count; o++) {
         const struct model_output *output = &asked->model->outputs[outputs[o]];
         const char *unit = quantity_axis_unit(typical_of(chapter, outputs[o]), output->dimension,
@@ -111,6 +110,7 @@ static void one_table(struct flow *flow, const struct guideline_chapter *chapter
     }
     struct table_head_row heads[2] = {{groups, 1 + output_count}, {names, columns}};
     struct table table = {.name = name,
+                          .leading = 1,
                           .columns = declared,
                           .column_count = columns,
                           .heads = heads,
@@ -119,7 +119,6 @@ static void one_table(struct flow *flow, const struct guideline_chapter *chapter
                           .row_count = asked->table_point_count,
                           .stretch = columns > 5};
     flow_gap(flow, 10.0);
-    flow_need(flow, 90.0);
     flow_table(flow, &table);
 }
 
@@ -142,6 +141,11 @@ void chapter_table(struct flow *flow, const struct guideline_chapter *chapter) {
 
 /* ---- a rule's table ---- */
 
+static const char *const row_note =
+    "Each cell is proven like a rule, over everything that its row permits.";
+static const char *const cells_note =
+    "Each cell is proven like a rule, over everything that its row and column permit.";
+
 static void board_table(struct flow *flow, const struct guideline_chapter *chapter,
                         const struct guideline_rule *rule, size_t v) {
     const struct study_rule *stated = rule->rule;
@@ -154,17 +158,17 @@ static void board_table(struct flow *flow, const struct guideline_chapter *chapt
         arena_new(flow->arena, column_count + 1, struct table_head, flow->error);
     if (rows == NULL || columns == NULL || heads == NULL)
         return;
-    heads[0].text = words_name(flow, stated->rows.name);
+    heads[0].text = words_capital(flow, stated->rows.name);
     for (size_t c = 0; c < column_count; c++) {
         columns[1 + c].align = TABLE_CENTRE;
         heads[1 + c].text =
             stated->columns.count == 0
-                ? words_name(flow, chapter->chapter->model->inputs[stated->find].name)
+                ? words_capital(flow, chapter->chapter->model->inputs[stated->find].name)
                 : flow_escape(flow, stated->columns.labels[c]);
     }
     bool grouped = stated->columns.count > 0;
     const struct table_head groups[2] = {
-        {"", 1}, {grouped ? words_name(flow, stated->columns.name) : "", column_count}};
+        {"", 1}, {grouped ? words_capital(flow, stated->columns.name) : "", column_count}};
     for (size_t r = 0; r < row_count; r++) {
         const char **cells = arena_new(flow->arena, column_count + 1, const char *, flow->error);
         if (cells == NULL)
@@ -177,22 +181,23 @@ static void board_table(struct flow *flow, const struct guideline_chapter *chapt
         rows[r].cells = cells;
     }
     const struct table_head_row head[2] = {{groups, 2}, {heads, column_count + 1}};
+    const char *label = stated->variants[v].label;
+    const char *found = words_name(flow, chapter->chapter->model->inputs[stated->find].name);
     struct table table = {.name = flow_print(flow, "%s-table-%zu", stated->id, v + 1),
+                          .caption =
+                              flow_print(flow, "%s: %s%s%s", flow_escape(flow, stated->id), found,
+                                         label != NULL ? " on " : "", flow_escape(flow, label)),
+                          .leading = 1,
                           .columns = columns,
                           .column_count = column_count + 1,
                           .heads = grouped ? head : &head[1],
                           .head_count = grouped ? 2 : 1,
                           .rows = rows,
                           .row_count = row_count,
+                          .notes = &cells_note,
+                          .note_count = v + 1 == stated->variant_count ? 1 : 0,
                           .stretch = column_count > 4};
-    const char *label = stated->variants[v].label;
     flow_gap(flow, 8.0);
-    flow_need(flow, 40.0 + 14.0 * (double)row_count);
-    flow_text(flow, THEME_STRONG,
-              flow_print(flow, "%s: %s%s%s", flow_escape(flow, stated->id),
-                         words_name(flow, chapter->chapter->model->inputs[stated->find].name),
-                         label != NULL ? " on " : "", flow_escape(flow, label)));
-    flow_gap(flow, 2.0);
     flow_table(flow, &table);
 }
 
@@ -207,7 +212,7 @@ static void boards_table(struct flow *flow, const struct guideline_chapter *chap
     struct table_head *heads = arena_new(flow->arena, variants + 1, struct table_head, flow->error);
     if (rows == NULL || columns == NULL || heads == NULL)
         return;
-    heads[0].text = words_name(flow, stated->rows.name);
+    heads[0].text = words_capital(flow, stated->rows.name);
     for (size_t v = 0; v < variants; v++) {
         columns[1 + v].align = TABLE_CENTRE;
         heads[1 + v].text = flow_escape(flow, stated->variants[v].label);
@@ -223,21 +228,23 @@ static void boards_table(struct flow *flow, const struct guideline_chapter *chap
         rows[r].cells = cells;
     }
     const struct table_head_row head = {heads, variants + 1};
+    const struct study_chapter *asked = chapter->chapter;
     struct table table = {.name = flow_print(flow, "%s-table", stated->id),
+                          .caption =
+                              flow_print(flow, "%s: %s against %s", flow_escape(flow, stated->id),
+                                         words_name(flow, asked->model->inputs[stated->find].name),
+                                         words_name(flow, stated->rows.name)),
                           .columns = columns,
                           .column_count = variants + 1,
                           .heads = &head,
                           .head_count = 1,
                           .rows = rows,
                           .row_count = row_count,
+                          .notes = &row_note,
+                          .note_count = 1,
+                          .leading = 1,
                           .stretch = variants > 3};
     flow_gap(flow, 8.0);
-    flow_need(flow, 40.0 + 14.0 * (double)row_count);
-    flow_text(flow, THEME_STRONG,
-              flow_print(flow, "%s: %s against %s", flow_escape(flow, stated->id),
-                         words_name(flow, chapter->chapter->model->inputs[stated->find].name),
-                         words_name(flow, stated->rows.name)));
-    flow_gap(flow, 2.0);
     flow_table(flow, &table);
 }
 
@@ -250,10 +257,4 @@ void chapter_rule_table(struct flow *flow, const struct guideline_chapter *chapt
         boards_table(flow, chapter, rule);
     for (size_t v = 0; v < rule->rule->variant_count && !side_by_side && !flow_failed(flow); v++)
         board_table(flow, chapter, rule, v);
-    flow_gap(flow, 3.0);
-    flow_text(flow, THEME_NOTE,
-              side_by_side
-                  ? "Each cell is proven like a rule, over everything that its row permits."
-                  : "Each cell is proven like a rule, over everything that its row and column "
-                    "permit.");
 }

@@ -5,8 +5,10 @@
 #include <string.h>
 
 static const double LEAST_WIDTH = 120, LEAST_HEIGHT = 90;
+static const double TICK_ROW = 8.5; /* least distance of the y axis's numbers */
 static const double TICK = 3.2, MINOR_TICK = 1.8;
-static const double TITLE_HEIGHT = 15, AXIS_TITLE_HEIGHT = 12;
+static const double TITLE_LEADING = 12, TITLE_GAP = 3, AXIS_TITLE_HEIGHT = 12;
+enum { TITLE_LINES = 3 };
 static const double BELOW = 27; /* tick numbers and the title of the x axis */
 
 double chart_x(const struct chart_frame *frame, double value) {
@@ -139,6 +141,35 @@ static double widest_tick(struct chart_frame *frame, const struct axis *axis) {
     return widest;
 }
 
+static struct scene_text title_text(const struct chart_frame *frame, double width) {
+    return (struct scene_text){.markup = frame->title,
+                               .style = theme_style(THEME_FIGURE),
+                               .y = 9,
+                               .width = width,
+                               .leading = TITLE_LEADING};
+}
+
+static void plan_title(struct chart_frame *frame, double width) {
+    struct text_size size = {0};
+    if (frame->chart->title == NULL)
+        return;
+    frame->title = frame->chart->title;
+    struct scene_text text = title_text(frame, width);
+    frame->title = text_shorten(frame->setter, &text, TITLE_LINES, frame->arena, frame->error);
+    text = title_text(frame, width);
+    if (text_measure(frame->setter, &text, &size, frame->error))
+        frame->title_height = (double)size.lines * TITLE_LEADING + TITLE_GAP;
+}
+
+/* What stands above the plot does not take more than half of the height from it. */
+static void grow(struct chart_frame *frame, double height) {
+    double missing = 0.5 * height - (frame->bottom - frame->top);
+    if (missing <= 0 || height < 2 * LEAST_HEIGHT)
+        return;
+    frame->bottom += missing;
+    frame->scene->height += missing;
+}
+
 /* The plot's edges depend on the tick numbers and these on the edges: two rounds settle it. */
 static bool layout(struct chart_frame *frame, double width, double height) {
     const struct chart *chart = frame->chart;
@@ -148,7 +179,8 @@ static bool layout(struct chart_frame *frame, double width, double height) {
     struct range y = range_of_y(chart, x);
     if (!(y.low <= y.high))
         return error_set(frame->error, ERROR_INPUT, "nothing in the chart is finite");
-    double head = (chart->title == NULL ? 0 : TITLE_HEIGHT) + AXIS_TITLE_HEIGHT + 2;
+    plan_title(frame, width);
+    double head = frame->title_height + AXIS_TITLE_HEIGHT + 2;
     frame->bottom = height - BELOW;
     frame->top = head;
     frame->left = 30;
@@ -161,6 +193,7 @@ static bool layout(struct chart_frame *frame, double width, double height) {
         frame->left = TICK + 3 + widest_tick(frame, &frame->y);
         frame->top = head + CHART_MARK_ROW * (double)chart_mark_rows(frame, width);
     }
+    grow(frame, height);
     if (frame->right - frame->left < 40 || frame->bottom - frame->top < 30)
         return error_set(frame->error, ERROR_INPUT, "a chart of %g x %g pt is too small", width,
                          height);
@@ -188,6 +221,35 @@ static void draw_grid(struct chart_frame *frame) {
         }
 }
 
+static bool is_decade(const struct axis *axis, double value) {
+    double exponent = log10(fabs(value * axis->scale));
+    return fabs(exponent - round(exponent)) < 1e-9;
+}
+
+/* Numbers beside the y axis that keep clear of each other: on a logarithmic axis powers of ten come
+ * first, then the others from the bottom up. */
+static void label_y(struct chart_frame *frame) {
+    double taken[AXIS_MOST_TICKS];
+    size_t count = 0;
+    for (int round = 0; round < 2; round++)
+        for (size_t i = 0; i < frame->y.count; i++) {
+            const struct axis_tick *tick = &frame->y.ticks[i];
+            double y = chart_y(frame, tick->value);
+            bool first = !frame->y.logarithmic || is_decade(&frame->y, tick->value);
+            bool free = tick->major && first == (round == 0);
+            for (size_t t = 0; t < count; t++)
+                free = free && fabs(taken[t] - y) >= TICK_ROW;
+            if (!free)
+                continue;
+            taken[count++] = y;
+            scene_text(frame->scene, &(struct scene_text){.markup = tick->label,
+                                                          .style = theme_style(THEME_TICK),
+                                                          .x = frame->left - TICK - 2.5,
+                                                          .y = y + 2.7,
+                                                          .align = SCENE_RIGHT});
+        }
+}
+
 static void draw_axes(struct chart_frame *frame) {
     struct scene_colour ink = theme_colour(THEME_QUIET);
     double left = frame->left, bottom = frame->bottom, free_from = -INFINITY;
@@ -197,13 +259,8 @@ static void draw_axes(struct chart_frame *frame) {
         const struct axis_tick *tick = &frame->y.ticks[i];
         double y = chart_y(frame, tick->value);
         scene_line(frame->scene, left - (tick->major ? TICK : MINOR_TICK), y, left, y, 0.5, ink);
-        if (tick->major)
-            scene_text(frame->scene, &(struct scene_text){.markup = tick->label,
-                                                          .style = theme_style(THEME_TICK),
-                                                          .x = left - TICK - 2.5,
-                                                          .y = y + 2.7,
-                                                          .align = SCENE_RIGHT});
     }
+    label_y(frame);
     for (size_t i = 0; i < frame->x.count; i++) {
         const struct axis_tick *tick = &frame->x.ticks[i];
         double x = chart_x(frame, tick->value);
@@ -234,11 +291,10 @@ static const char *axis_title(struct chart_frame *frame, const char *label, cons
 static void draw_titles(struct chart_frame *frame, double width) {
     const struct chart *chart = frame->chart;
     double y = 0;
-    if (chart->title != NULL) {
-        scene_text(frame->scene, &(struct scene_text){.markup = chart->title,
-                                                      .style = theme_style(THEME_FIGURE),
-                                                      .y = 9});
-        y = TITLE_HEIGHT;
+    if (frame->title != NULL) {
+        struct scene_text title = title_text(frame, width);
+        scene_text(frame->scene, &title);
+        y = frame->title_height;
     }
     if (frame->report.legend) {
         chart_draw_legend(frame, width, y);
@@ -270,6 +326,7 @@ static void draw(struct chart_frame *frame, double width) {
     chart_draw_limits(frame);
     chart_draw_curves(frame);
     chart_draw_marks(frame, width);
+    chart_name_limits(frame);
     if (!frame->report.legend)
         chart_draw_ends(frame);
     draw_titles(frame, width);

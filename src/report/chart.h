@@ -54,7 +54,11 @@ struct chart {
     size_t mark_count;
 };
 
-enum { CHART_MOST_SERIES = 32, CHART_MOST_MARKS = 32 };
+enum {
+    CHART_MOST_SERIES = 32,
+    CHART_MOST_MARKS = 32,
+    CHART_MOST_ENDS = 10 /* named at their ends; beyond that leaders are a thicket */
+};
 
 /* What the layout did, for captions and tests. */
 struct chart_report {
@@ -68,7 +72,8 @@ struct chart_report {
     size_t label_count;
 };
 
-/* NAN in y is a gap.  `report` may be NULL.  Returns a scene of the size given, owned by the arena.
+/* NAN in y is a gap.  `report` may be NULL.  Returns a scene of the size given, higher where title,
+ * legend and flags would leave the plot less than half of it; owned by the arena.
  * Fails: ERROR_INPUT when nothing is finite or the size is too small (below 120 x 90 pt);
  * ERROR_MEMORY; NULL then. */
 struct scene *chart_draw(const struct chart *chart, double width, double height,

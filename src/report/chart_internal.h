@@ -29,7 +29,9 @@ struct chart_frame {
     struct axis x, y;
     struct chart_end ends[CHART_MOST_SERIES];
     size_t end_count;
-    double end_width; /* the labels are wrapped to it */
+    double end_width;    /* the labels are wrapped to it */
+    const char *title;   /* cut to what the chart has room for */
+    double title_height; /* 0 without a title */
     struct chart_report report;
 };
 
@@ -42,7 +44,6 @@ struct scene_colour chart_text_colour(struct scene_colour colour);
 /* ---- chart_plot.c ---- */
 
 void chart_draw_bands(struct chart_frame *frame);
-void chart_draw_limits(struct chart_frame *frame);
 void chart_draw_curves(struct chart_frame *frame);
 void chart_draw_marker(struct scene *scene, const struct theme_curve *style, double x, double y);
 
@@ -51,7 +52,13 @@ bool chart_clip(const struct chart_frame *frame, double *x0, double *y0, double 
 /* Where the series is seen last; false when nothing of it is in the plot. */
 bool chart_last_seen(const struct chart_frame *frame, const struct chart_series *series, double *x,
                      double *y);
+/* Whether a curve, a mark's stem or a limit's line runs through the box. */
 bool chart_crosses(const struct chart_frame *frame, struct chart_box box);
+
+/* ---- chart_limits.c ---- */
+
+void chart_draw_limits(struct chart_frame *frame); /* below the curves */
+void chart_name_limits(struct chart_frame *frame); /* above them */
 
 /* ---- chart_labels.c ---- */
 

@@ -6,11 +6,11 @@
 #include <stdlib.h>
 #include <string.h>
 
-enum { MOST_ENDS = 10 };           /* beyond that leaders are a thicket */
 static const double END_GAP = 11;  /* from the plot to the labels */
 static const double WIDE_GAP = 18; /* the same when many leaders need flatter slopes */
 static const double END_LEADING = 9.4;
 static const double BARE_GUTTER = 14; /* right of a plot without labels */
+enum { LEGEND_LINES = 4 };
 static const double SAMPLE = 20, SAMPLE_GAP = 4, ENTRY_GAP = 16;
 
 struct scene_colour chart_text_colour(struct scene_colour colour) {
@@ -54,7 +54,7 @@ double chart_plan_ends(struct chart_frame *frame, double width, double height) {
         widest = fmax(widest, size.width);
         total += end->height;
     }
-    frame->report.legend = total > height || frame->end_count > MOST_ENDS;
+    frame->report.legend = total > height || frame->end_count > CHART_MOST_ENDS;
     if (frame->report.legend || frame->end_count == 0)
         return BARE_GUTTER;
     return end_gap(frame) + widest + 1;
@@ -255,28 +255,63 @@ static void draw_sample(struct chart_frame *frame, const struct chart_series *se
         chart_draw_marker(frame->scene, &style, x + SAMPLE / 2, y);
 }
 
-/* Entries stand in columns of one width; draws them when `draw` is set; returns the height. */
-static double flow_legend(struct chart_frame *frame, double width, double y, bool draw) {
-    struct scene_style style = theme_style(THEME_LABEL);
-    double widest = 0;
+/* Entries stand in columns of one width, two at least where the chart has the room. */
+struct legend {
+    double text;   /* width of an entry's text */
+    double column; /* from one entry to the next */
+    size_t columns;
+};
+
+static struct legend plan_legend(struct chart_frame *frame, double width) {
+    double widest = 0, most = (width + ENTRY_GAP) / 2 - SAMPLE - SAMPLE_GAP - ENTRY_GAP;
     for (size_t i = 0; i < frame->end_count; i++)
         widest = fmax(widest,
                       text_width(frame->setter, frame->chart->series[frame->ends[i].series].label,
-                                 style, frame->error));
-    double column = SAMPLE + SAMPLE_GAP + widest + ENTRY_GAP;
-    size_t columns = (size_t)fmax(1, floor((width + ENTRY_GAP) / column));
-    for (size_t i = 0; i < frame->end_count && draw; i++) {
-        const struct chart_series *series = &frame->chart->series[frame->ends[i].series];
-        double x = (double)(i % columns) * column;
-        double baseline = y + CHART_LEGEND_ROW * (double)(i / columns + 1) - 3;
-        draw_sample(frame, series, x, baseline - 2.7);
-        scene_text(frame->scene, &(struct scene_text){.markup = series->label,
-                                                      .style = style,
-                                                      .x = x + SAMPLE + SAMPLE_GAP,
-                                                      .y = baseline});
+                                 theme_style(THEME_LABEL), frame->error));
+    struct legend legend = {.text = fmin(widest + 0.05, most - 0.05)};
+    legend.column = SAMPLE + SAMPLE_GAP + legend.text + ENTRY_GAP;
+    legend.columns = (size_t)fmax(1, floor((width + ENTRY_GAP) / legend.column));
+    return legend;
+}
+
+static struct scene_text entry_text(struct chart_frame *frame, const struct legend *legend,
+                                    size_t entry) {
+    struct scene_text text = {.markup = frame->chart->series[frame->ends[entry].series].label,
+                              .style = theme_style(THEME_LABEL),
+                              .width = legend->text,
+                              .leading = END_LEADING};
+    text.markup = text_shorten(frame->setter, &text, LEGEND_LINES, frame->arena, frame->error);
+    return text;
+}
+
+/* Draws the entry when `draw` is set; returns its height. */
+static double set_entry(struct chart_frame *frame, const struct legend *legend, size_t entry,
+                        double y, bool draw) {
+    struct scene_text text = entry_text(frame, legend, entry);
+    struct text_size size = {0};
+    if (!text_measure(frame->setter, &text, &size, frame->error))
+        return 0;
+    text.x = (double)(entry % legend->columns) * legend->column + SAMPLE + SAMPLE_GAP;
+    text.y = y + CHART_LEGEND_ROW - 3;
+    if (draw) {
+        draw_sample(frame, &frame->chart->series[frame->ends[entry].series],
+                    text.x - SAMPLE - SAMPLE_GAP, text.y - 2.7);
+        scene_text(frame->scene, &text);
     }
-    size_t rows = (frame->end_count + columns - 1) / columns;
-    return frame->end_count == 0 ? 0 : CHART_LEGEND_ROW * (double)rows + 4;
+    return CHART_LEGEND_ROW + (double)(size.lines - 1) * END_LEADING;
+}
+
+/* Returns the height. */
+static double flow_legend(struct chart_frame *frame, double width, double y, bool draw) {
+    struct legend legend = plan_legend(frame, width);
+    double top = y;
+    for (size_t first = 0; first < frame->end_count; first += legend.columns) {
+        double tallest = 0;
+        for (size_t i = first; i < frame->end_count && i < first + legend.columns; i++)
+            tallest = fmax(tallest, set_entry(frame, &legend, i, y, draw));
+        y += tallest;
+    }
+    return frame->end_count == 0 ? 0 : y - top + 4;
 }
 
 double chart_legend_height(struct chart_frame *frame, double width) {

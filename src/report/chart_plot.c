@@ -3,8 +3,6 @@
 #include <math.h>
 #include <string.h>
 
-static const double HATCH_STEP = 4.5, HATCH_LENGTH = 5;
-
 /* Liang and Barsky (1984). */
 static bool clip_side(double direction, double distance, double *from, double *to) {
     if (direction == 0)
@@ -72,7 +70,24 @@ static bool segment_meets_box(double x0, double y0, double x1, double y1, struct
            clip_side(dy, box.y + box.height - y0, &from, &to);
 }
 
+/* The stems of marks and the lines of limits. */
+static bool crosses_straight(const struct chart_frame *frame, struct chart_box box) {
+    for (size_t m = 0; m < frame->chart->mark_count; m++) {
+        double x = chart_x(frame, frame->chart->marks[m].x);
+        if (x > box.x - 1 && x < box.x + box.width + 1)
+            return true;
+    }
+    for (size_t i = 0; i < frame->chart->limit_count; i++) {
+        double y = chart_y(frame, frame->chart->limits[i].value);
+        if (y > box.y - 1 && y < box.y + box.height + 1)
+            return true;
+    }
+    return false;
+}
+
 bool chart_crosses(const struct chart_frame *frame, struct chart_box box) {
+    if (crosses_straight(frame, box))
+        return true;
     for (size_t s = 0; s < frame->chart->series_count; s++) {
         const struct chart_series *series = &frame->chart->series[s];
         for (size_t i = 0; i < series->count; i++) {
@@ -283,101 +298,5 @@ void chart_draw_curves(struct chart_frame *frame) {
             draw_line(frame, series, true, segments);
         }
         draw_points(frame, series);
-    }
-}
-
-/* ---- limits ---- */
-
-static void draw_hatch(struct chart_frame *frame, double y, bool below) {
-    struct scene_segment segments[512];
-    size_t count = 0;
-    double side = below ? HATCH_LENGTH : -HATCH_LENGTH;
-    for (double x = frame->left; x + HATCH_LENGTH <= frame->right && count + 2 <= 512;
-         x += HATCH_STEP) {
-        segments[count++] = corner(SCENE_MOVE, x, y);
-        segments[count++] = corner(SCENE_LINE, x + HATCH_LENGTH, y + side);
-    }
-    if (count > 0)
-        scene_path(frame->scene, &(struct scene_path){.segments = segments,
-                                                      .count = count,
-                                                      .stroked = true,
-                                                      .stroke = theme_colour(THEME_ALARM),
-                                                      .width = 0.35});
-}
-
-static bool overlap(struct chart_box a, struct chart_box b) {
-    return a.x < b.x + b.width && b.x < a.x + a.width && a.y < b.y + b.height &&
-           b.y < a.y + a.height;
-}
-
-/* Of a few places along the line, on its allowed or forbidden side, the first that no curve and no
- * earlier label touches; else the first of all, on a white ground. */
-static void draw_limit_label(struct chart_frame *frame, const char *label, double y, bool below,
-                             struct chart_box *taken, size_t *taken_count) {
-    struct scene_style style = theme_style(THEME_LABEL);
-    style.colour = theme_colour(THEME_ALARM);
-    double width = text_width(frame->setter, label, style, frame->error);
-    double height = style.size;
-    double allowed = below ? y - 2.5 - height : y + 2.5;
-    double forbidden = below ? y + HATCH_LENGTH + 1.5 : y - HATCH_LENGTH - 1.5 - height;
-    double room = frame->right - frame->left - width - 10;
-    struct chart_box chosen = {0};
-    bool found = false;
-    for (int k = 0; k < 10 && !found; k++) {
-        struct chart_box box = {frame->left + 5 + room * (k / 2) / 4,
-                                k % 2 == 0 ? forbidden : allowed, width, height};
-        bool inside = box.y >= frame->top && box.y + height <= frame->bottom;
-        bool free = inside && !chart_crosses(frame, box);
-        for (size_t t = 0; t < *taken_count; t++)
-            free = free && !overlap(box, taken[t]);
-        if (k == 0 || (inside && chosen.y < frame->top) || free)
-            chosen = box;
-        found = free;
-    }
-    if (!found) {
-        struct scene_colour ground = theme_colour(THEME_PAPER);
-        ground.alpha = 0.85;
-        scene_rectangle(frame->scene, chosen.x - 1.5, chosen.y, width + 3, height, ground);
-    }
-    if (*taken_count < CHART_MOST_MARKS)
-        taken[(*taken_count)++] = chosen;
-    scene_text(frame->scene,
-               &(struct scene_text){
-                   .markup = label, .style = style, .x = chosen.x, .y = chosen.y + 0.82 * height});
-}
-
-/* A limit beyond the plot is named at the edge that it lies behind. */
-static void draw_limit_beyond(struct chart_frame *frame, const char *label, bool above) {
-    char *markup =
-        arena_print(frame->arena, frame->error, "%s %s", above ? "\u2191" : "\u2193", label);
-    if (markup == NULL)
-        return;
-    struct scene_style style = theme_style(THEME_LABEL);
-    style.colour = theme_colour(THEME_ALARM);
-    scene_text(frame->scene, &(struct scene_text){.markup = markup,
-                                                  .style = style,
-                                                  .x = frame->left + 5,
-                                                  .y = above ? frame->top + 9 : frame->bottom - 4});
-}
-
-void chart_draw_limits(struct chart_frame *frame) {
-    struct chart_box taken[CHART_MOST_MARKS];
-    size_t count = 0;
-    for (size_t i = 0; i < frame->chart->limit_count; i++) {
-        const struct chart_limit *limit = &frame->chart->limits[i];
-        const char *label = limit->label == NULL ? "limit" : limit->label;
-        double y = chart_y(frame, limit->value);
-        if (!isfinite(y))
-            continue;
-        if (y < frame->top - 0.01 || y > frame->bottom + 0.01) {
-            draw_limit_beyond(frame, label, y < frame->top);
-            continue;
-        }
-        scene_line(frame->scene, frame->left, y, frame->right, y, 0.9, theme_colour(THEME_ALARM));
-        scene_clip(frame->scene, frame->left, frame->top, frame->right - frame->left,
-                   frame->bottom - frame->top);
-        draw_hatch(frame, y, limit->below);
-        scene_end(frame->scene);
-        draw_limit_label(frame, label, y, limit->below, taken, &count);
     }
 }

@@ -11,6 +11,7 @@ static void lay_out(struct flow *flow) {
     pages_changes(flow);
     pages_glance(flow);
     pages_boards(flow);
+    pages_products(flow);
     pages_signals(flow);
     for (size_t i = 0; i < flow->guideline->study->chapter_count && !flow_failed(flow); i++)
         pages_chapter(flow, i);
@@ -47,11 +48,16 @@ static struct paint_entry *outline(struct flow *flow) {
     return entries;
 }
 
+size_t pages_all(struct flow *flow, struct scene ***pages) {
+    lay_out(flow);
+    return flow_failed(flow) ? 0 : bind(flow, pages);
+}
+
 static bool paint(struct flow *flow, const struct document_options *options,
                   struct guideline_file *file) {
     const struct study_document *document = &flow->guideline->study->document;
     struct scene **pages = NULL;
-    size_t count = bind(flow, &pages);
+    size_t count = pages_all(flow, &pages);
     struct paint_entry *entries = outline(flow);
     if (flow_failed(flow))
         return false;
@@ -105,14 +111,13 @@ bool document_render(const struct guideline *guideline, const struct document_op
     if (setter == NULL)
         return false;
     struct guideline_file *made = NULL;
-    if (!flow_start(&flow, guideline, setter, arena, error))
-        goto out;
-    lay_out(&flow);
-    if (flow_failed(&flow))
+    struct guideline_file pdf = {0};
+    if (!flow_start(&flow, guideline, setter, arena, error) || !paint(&flow, options, &pdf))
         goto out;
     made = arena_new(arena, flow.figure_count + 1, struct guideline_file, error);
-    if (made == NULL || !paint(&flow, options, &made[0]) || !paint_figures(&flow, made + 1))
+    if (made == NULL || !paint_figures(&flow, made + 1))
         goto out;
+    made[0] = pdf;
     *files = made;
     *count = flow.figure_count + 1;
     ok = true;

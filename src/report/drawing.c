@@ -6,8 +6,8 @@
 #include <string.h>
 
 static const double STANDARD_HEIGHT = 240;
-static const double LEAST_COPPER = 2.4, LEAST_PLANE = 4; /* pt */
-static const double BELOW = 20;                          /* under the plane: scale bar, note */
+static const double LEAST_COPPER = 2.4, LEAST_PLANE = 4, LEAST_MASK = 1; /* pt */
+static const double BELOW = 20;      /* under the plane: scale bar, note */
 static const double LABEL_ROOM = 20; /* pt of dielectric that labels under the copper need */
 static const double LEGEND_ROW = 12;
 static const double LEAST_NAMED = 11; /* pt of dielectric that hold its own name */
@@ -50,25 +50,39 @@ static void hatch(struct drawing_frame *frame, const struct theme_solid *solid, 
 
 void drawing_solid(struct drawing_frame *frame, const struct theme_solid *solid, double x, double y,
                    double width, double height) {
-    scene_rectangle(frame->scene, x, y, width, height, solid->fill);
-    if (solid->hatch > 0)
-        hatch(frame, solid, x, y, width, height);
-    if (!(solid->edge_width > 0))
-        return;
+    drawing_trapezoid(frame, solid, x, y, width, height, 0);
+}
+
+/* Hatches stay between the corners of the top. */
+void drawing_trapezoid(struct drawing_frame *frame, const struct theme_solid *solid, double x,
+                       double y, double width, double height, double etch) {
     struct scene_segment segments[] = {
-        {SCENE_MOVE, {x}, {y}},
-        {SCENE_LINE, {x + width}, {y}},
+        {SCENE_MOVE, {x + etch}, {y}},
+        {SCENE_LINE, {x + width - etch}, {y}},
         {SCENE_LINE, {x + width}, {y + height}},
         {SCENE_LINE, {x}, {y + height}},
         {SCENE_CLOSE, {0}, {0}},
     };
-    scene_path(frame->scene, &(struct scene_path){.segments = segments,
-                                                  .count = 5,
-                                                  .stroked = true,
-                                                  .stroke = solid->edge,
-                                                  .width = solid->edge_width,
-                                                  .dashes = {2, 1.4},
-                                                  .dash_count = solid->dashed ? 2 : 0});
+    struct scene_path path = {.segments = segments, .count = 5};
+    if (etch > 0) {
+        path.filled = true;
+        path.fill = solid->fill;
+        scene_path(frame->scene, &path);
+        path.filled = false;
+    } else {
+        scene_rectangle(frame->scene, x, y, width, height, solid->fill);
+    }
+    if (solid->hatch > 0)
+        hatch(frame, solid, x + etch, y, width - 2 * etch, height);
+    if (!(solid->edge_width > 0))
+        return;
+    path.stroked = true;
+    path.stroke = solid->edge;
+    path.width = solid->edge_width;
+    path.dashes[0] = 2;
+    path.dashes[1] = 1.4;
+    path.dash_count = solid->dashed ? 2 : 0;
+    scene_path(frame->scene, &path);
 }
 
 /* ---- extent and scale ---- */
@@ -77,25 +91,31 @@ struct extent {
     double left, right;     /* m, of the finite copper */
     double top, bottom;     /* m, of everything */
     double height;          /* m, of the dielectric */
+    double foot;            /* m, of the copper */
     double thinnest, plane; /* m */
+    double end;             /* m, x where a plane ends; INFINITY */
 };
 
 static bool is_copper(const struct sketch_solid *solid) {
-    return solid->role != SKETCH_PLANE && solid->role != SKETCH_DIELECTRIC;
+    return solid->role != SKETCH_PLANE && solid->role != SKETCH_DIELECTRIC &&
+           solid->role != SKETCH_MASK && solid->role != SKETCH_COVER;
 }
 
 static bool extent_of(const struct sketch *sketch, struct extent *extent, struct error *error) {
-    *extent = (struct extent){INFINITY, -INFINITY, 0, 0, 0, INFINITY, INFINITY};
+    *extent = (struct extent){INFINITY, -INFINITY, 0, 0, 0, INFINITY, INFINITY, INFINITY, INFINITY};
     for (size_t i = 0; i < sketch->solid_count; i++) {
         const struct sketch_solid *solid = &sketch->solids[i];
         extent->top = fmax(extent->top, solid->top);
         extent->bottom = fmin(extent->bottom, solid->bottom);
         if (solid->role == SKETCH_DIELECTRIC)
             extent->height = fmax(extent->height, solid->top);
-        if (solid->role == SKETCH_PLANE)
+        if (solid->role == SKETCH_PLANE || solid->role == SKETCH_COVER)
             extent->plane = fmin(extent->plane, solid->top - solid->bottom);
+        if (solid->role == SKETCH_PLANE)
+            extent->end = solid->right;
         if (!is_copper(solid))
             continue;
+        extent->foot = fmin(extent->foot, solid->bottom);
         extent->thinnest = fmin(extent->thinnest, solid->top - solid->bottom);
         if (isfinite(solid->left))
             extent->left = fmin(extent->left, solid->left);
@@ -104,6 +124,10 @@ static bool extent_of(const struct sketch *sketch, struct extent *extent, struct
     }
     if (!(extent->left < extent->right))
         return error_set(error, ERROR_INPUT, "nothing to draw: no copper of finite width");
+    if (isfinite(extent->end)) {
+        extent->left = fmin(extent->left, extent->end);
+        extent->right = fmax(extent->right, extent->end);
+    }
     if (!(extent->height > 0))
         extent->height = fmax(extent->top, extent->right - extent->left);
     return true;
@@ -121,7 +145,24 @@ static bool labels_fit(const struct drawing_frame *frame, const struct sketch *s
     for (size_t i = 0; i < sketch->solid_count; i++)
         if (is_copper(&sketch->solids[i]) && sketch->solids[i].label != NULL)
             wide += drawing_width(frame, sketch->solids[i].label) + 8;
-    return extent->height * frame->scale >= LABEL_ROOM && wide <= frame->right - frame->left;
+    return extent->foot * frame->scale >= LABEL_ROOM && wide <= frame->right - frame->left;
+}
+
+/* pt that a coating is drawn with, 0 without one. */
+static double mask_room(const struct drawing_frame *frame, const struct sketch *sketch) {
+    for (size_t i = 0; i < sketch->solid_count; i++) {
+        const struct sketch_solid *solid = &sketch->solids[i];
+        if (solid->role == SKETCH_MASK)
+            return fmax((solid->top - solid->bottom) * frame->scale, LEAST_MASK);
+    }
+    return 0;
+}
+
+static bool covered(const struct sketch *sketch) {
+    for (size_t i = 0; i < sketch->solid_count; i++)
+        if (sketch->solids[i].role == SKETCH_COVER)
+            return true;
+    return false;
 }
 
 static void set_scale(struct drawing_frame *frame, const struct sketch *sketch,
@@ -147,7 +188,10 @@ static void set_scale(struct drawing_frame *frame, const struct sketch *sketch,
     frame->copper = LEAST_COPPER;
     double surface = extent->top * frame->scale;
     if (frame->report.copper_enlarged)
-        surface = fmax(surface, extent->height * frame->scale + LEAST_COPPER);
+        surface =
+            fmax(surface, extent->foot * frame->scale + LEAST_COPPER + mask_room(frame, sketch));
+    if (covered(sketch))
+        surface = fmax(surface, extent->height * frame->scale + LEAST_PLANE);
     frame->top = HEADROOM + rows * DRAWING_DIMENSION_ROW + (rows > 0 ? 4 : 0);
     frame->y0 = frame->top + surface;
     double plane = isfinite(extent->plane) ? extent->plane * frame->scale : 0;
@@ -156,26 +200,54 @@ static void set_scale(struct drawing_frame *frame, const struct sketch *sketch,
 
 /* ---- solids and their names ---- */
 
-static void draw_solid(struct drawing_frame *frame, const struct sketch_solid *solid) {
+/* `etch`: m, of copper. */
+static void draw_solid(struct drawing_frame *frame, const struct sketch_solid *solid, double etch) {
     double left = fmax(drawing_x(frame, solid->left), frame->left);
     double right = fmin(drawing_x(frame, solid->right), frame->right);
     double top = drawing_y(frame, solid->top), bottom = drawing_y(frame, solid->bottom);
     if (solid->role == SKETCH_PLANE)
         bottom = fmax(bottom, top + LEAST_PLANE);
+    else if (solid->role == SKETCH_COVER)
+        top = fmin(top, bottom - LEAST_PLANE);
+    else if (solid->role == SKETCH_MASK)
+        top = fmin(top, bottom - LEAST_MASK);
     else if (solid->role != SKETCH_DIELECTRIC)
         top = fmin(top, bottom - frame->copper);
     struct theme_solid look = theme_solid(solid->role);
     if (left < right)
-        drawing_solid(frame, &look, left, top, right - left, bottom - top);
+        drawing_trapezoid(frame, &look, left, top, right - left, bottom - top,
+                          is_copper(solid) ? etch * frame->scale : 0);
+}
+
+/* The coating over one piece of copper as that is drawn, square at its corners. */
+static void draw_coat(struct drawing_frame *frame, const struct sketch_solid *copper, double etch,
+                      double thickness) {
+    double left = fmax(drawing_x(frame, copper->left) - thickness, frame->left);
+    double right = fmin(drawing_x(frame, copper->right) + thickness, frame->right);
+    double bottom = drawing_y(frame, copper->bottom);
+    double top = fmin(drawing_y(frame, copper->top), bottom - frame->copper) - thickness;
+    struct theme_solid look = theme_solid(SKETCH_MASK);
+    if (left < right)
+        drawing_trapezoid(frame, &look, left, top, right - left, bottom - top, etch * frame->scale);
+}
+
+static int layer_of(const struct sketch_solid *solid) {
+    if (solid->role == SKETCH_DIELECTRIC)
+        return 0;
+    if (solid->role == SKETCH_MASK)
+        return 1;
+    return is_copper(solid) ? 3 : 2;
 }
 
 static void draw_solids(struct drawing_frame *frame, const struct sketch *sketch) {
-    for (int layer = 0; layer < 3; layer++)
+    double coat = mask_room(frame, sketch);
+    for (int layer = 0; layer < 4; layer++)
         for (size_t i = 0; i < sketch->solid_count; i++) {
             const struct sketch_solid *solid = &sketch->solids[i];
-            int of = solid->role == SKETCH_DIELECTRIC ? 0 : is_copper(solid) ? 2 : 1;
-            if (of == layer)
-                draw_solid(frame, solid);
+            if (layer_of(solid) == layer)
+                draw_solid(frame, solid, sketch->etch);
+            if (layer == 1 && coat > 0 && is_copper(solid))
+                draw_coat(frame, solid, sketch->etch, coat);
         }
 }
 
@@ -223,24 +295,64 @@ static bool named_before(const struct sketch *sketch, size_t index) {
     return false;
 }
 
-/* Rows of swatches; the baseline of the last one. */
-static double draw_legend(struct drawing_frame *frame, const struct sketch *sketch, double y) {
-    double x = frame->left;
+/* Where the next entry of the legend goes. */
+struct legend {
+    double x, y;
+    bool any;
+};
+
+/* look NULL: text alone. */
+static void add_entry(struct drawing_frame *frame, struct legend *legend,
+                      const struct theme_solid *look, const char *text) {
+    double swatch = look == NULL ? 0 : 16, wide = swatch + drawing_width(frame, text);
+    if (legend->any && legend->x + wide > frame->options->width) {
+        legend->x = frame->left;
+        legend->y += LEGEND_ROW;
+    }
+    if (look != NULL)
+        drawing_solid(frame, look, legend->x + 0.5, legend->y - 5.5, 12, 5.5);
+    drawing_label(frame, text, legend->x + swatch, legend->y, SCENE_LEFT);
+    legend->x += wide + 14;
+    legend->any = true;
+}
+
+static void add_solids(struct drawing_frame *frame, const struct sketch *sketch, bool copper,
+                       struct legend *legend) {
     for (size_t i = 0; i < sketch->solid_count; i++) {
         const struct sketch_solid *solid = &sketch->solids[i];
-        if (solid->label == NULL || named_elsewhere(frame, solid) || named_before(sketch, i))
+        if (solid->label == NULL || named_elsewhere(frame, solid) || named_before(sketch, i) ||
+            (is_copper(solid) && !copper))
             continue;
-        double wide = 16 + drawing_width(frame, solid->label);
-        if (x > frame->left && x + wide > frame->options->width) {
-            x = frame->left;
-            y += LEGEND_ROW;
-        }
         struct theme_solid look = theme_solid(solid->role);
-        drawing_solid(frame, &look, x + 0.5, y - 5.5, 12, 5.5);
-        drawing_label(frame, solid->label, x + 16, y, SCENE_LEFT);
-        x += wide + 14;
+        add_entry(frame, legend, &look, solid->label);
     }
-    return y;
+}
+
+/* Dimensions that found no room beside the picture. */
+static void add_notes(struct drawing_frame *frame, const struct sketch *sketch,
+                      struct legend *legend) {
+    struct theme_solid mask = theme_solid(SKETCH_MASK);
+    for (size_t i = 0; i < sketch->dimension_count; i++) {
+        const struct sketch_dimension *dimension = &sketch->dimensions[i];
+        if (!dimension->vertical || !drawing_dimension_noted(frame, sketch, i))
+            continue;
+        bool of_mask = false;
+        for (size_t k = 0; k < sketch->solid_count; k++)
+            of_mask = of_mask || (sketch->solids[k].role == SKETCH_MASK &&
+                                  sketch->solids[k].bottom == dimension->from &&
+                                  sketch->solids[k].top == dimension->to);
+        add_entry(frame, legend, of_mask ? &mask : NULL, drawing_dimension_text(frame, dimension));
+    }
+}
+
+/* Rows of swatches, copper among them where it is not named in the picture; the baseline of the
+ * last one, or of the row above when there is nothing to say. */
+static double draw_legend(struct drawing_frame *frame, const struct sketch *sketch, bool copper,
+                          double y) {
+    struct legend legend = {.x = frame->left, .y = y + LEGEND_ROW};
+    add_solids(frame, sketch, copper, &legend);
+    add_notes(frame, sketch, &legend);
+    return legend.any ? legend.y : y;
 }
 
 /* The dielectric's and the plane's own names. */
@@ -264,9 +376,7 @@ static double draw_below(struct drawing_frame *frame, const struct sketch *sketc
     bool narrow = frame->right - frame->left < 150;
     drawing_scale_bar(frame, narrow ? frame->options->width : frame->right, y - 2.8,
                       0.3 * (frame->right - frame->left));
-    if (legend) {
-        y = draw_legend(frame, sketch, y + LEGEND_ROW);
-    }
+    y = draw_legend(frame, sketch, legend, y);
     if (frame->report.copper_enlarged || frame->report.plane_enlarged) {
         y += LEGEND_ROW;
         scene_text(frame->scene,

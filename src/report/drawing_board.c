@@ -13,7 +13,25 @@ enum { MOST_LAYERS = SPREAD_MOST };
 static const double STANDARD_HEIGHT = 200, LEAST_COPPER = 2.6, LEAST_DIELECTRIC = 5;
 static const double STRIP = 0.30;    /* share of the width that the board takes */
 static const double TOTAL_ROOM = 62; /* left of it, for the total thickness */
-static const double LABEL_ROW = 11, LEADER = 16;
+static const double LABEL_ROW = 11, LABEL_LEADING = 9.4, LEADER = 16;
+enum { NAME_LINES = 2 };
+
+/* A layer's name and figures beside the board. */
+struct layer_label {
+    const char *text;
+    double height;
+};
+
+static double label_left(const struct drawing_frame *frame) {
+    return frame->right + LEADER + 3;
+}
+
+static struct scene_text label_text(const struct drawing_frame *frame, const char *markup) {
+    return (struct scene_text){.markup = markup,
+                               .style = theme_style(THEME_LABEL),
+                               .width = frame->options->width - label_left(frame),
+                               .leading = LABEL_LEADING};
+}
 
 static double drawn(const struct study_layer *layer, double scale) {
     double least = layer->kind == STUDY_LAYER_COPPER ? LEAST_COPPER : LEAST_DIELECTRIC;
@@ -35,24 +53,35 @@ static void print_tolerance(char *text, size_t size, const struct quantity *quan
         snprintf(text, size, " +%s \u2212%s", plus, minus);
 }
 
+static const char *layer_name(struct drawing_frame *frame, const struct study_layer *layer) {
+    if (layer->name == NULL)
+        return "";
+    const char *name = text_escape(frame->arena, layer->name, frame->error);
+    struct scene_text text = label_text(frame, name);
+    if (layer->kind == STUDY_LAYER_COPPER)
+        text.style.weight = SCENE_BOLD;
+    if (name == NULL)
+        return "";
+    return text_shorten(frame->setter, &text, NAME_LINES, frame->arena, frame->error);
+}
+
 static const char *layer_text(struct drawing_frame *frame, const struct study_layer *layer) {
     char thickness[64], tolerance[96], dk[32], dk_tolerance[96];
     bool copper = layer->kind == STUDY_LAYER_COPPER;
     quantity_print(thickness, sizeof thickness, layer->thickness.value, DIMENSION_LENGTH, -4,
                    QUANTITY_TYPOGRAPHIC, frame->options->lengths);
     print_tolerance(tolerance, sizeof tolerance, &layer->thickness);
-    const char *name =
-        layer->name == NULL ? "" : text_escape(frame->arena, layer->name, frame->error);
-    const char *gap = name == NULL || *name == '\0' ? "" : "  ";
+    const char *name = layer_name(frame, layer);
+    const char *gap = *name == '\0' ? "" : "  ";
     const char *kind = copper ? layer->plane ? "ground plane" : "copper" : "";
     if (copper)
-        return arena_print(frame->arena, frame->error, "<b>%s</b>%s%s %s%s",
-                           name == NULL ? "" : name, gap, kind, thickness, tolerance);
+        return arena_print(frame->arena, frame->error, "<b>%s</b>%s%s %s%s", name, gap, kind,
+                           thickness, tolerance);
     quantity_print(dk, sizeof dk, layer->dk.value, DIMENSION_NUMBER, -4, QUANTITY_TYPOGRAPHIC,
                    frame->options->lengths);
     print_tolerance(dk_tolerance, sizeof dk_tolerance, &layer->dk);
-    return arena_print(frame->arena, frame->error, "%s%s%s%s, dk %s%s", name == NULL ? "" : name,
-                       gap, thickness, tolerance, dk, dk_tolerance);
+    return arena_print(frame->arena, frame->error, "%s%s%s%s, dk %s%s", name, gap, thickness,
+                       tolerance, dk, dk_tolerance);
 }
 
 static void draw_copper(struct drawing_frame *frame, const struct study_layer *layer, double y,
@@ -91,14 +120,28 @@ static void draw_layers(struct drawing_frame *frame, const struct study_stackup 
     frame->bottom = y;
 }
 
+static double measure_labels(struct drawing_frame *frame, const struct study_stackup *stackup,
+                             struct layer_label *labels) {
+    double tall = 0;
+    for (size_t i = 0; i < stackup->layer_count; i++) {
+        labels[i].text = layer_text(frame, &stackup->layers[i]);
+        struct scene_text text = label_text(frame, labels[i].text);
+        struct text_size size = {0};
+        if (labels[i].text == NULL || !text_measure(frame->setter, &text, &size, frame->error))
+            return 0;
+        labels[i].height = LABEL_ROW + (double)(size.lines - 1) * LABEL_LEADING;
+        tall += labels[i].height;
+    }
+    return tall;
+}
+
 static void draw_labels(struct drawing_frame *frame, const struct study_stackup *stackup,
-                        const double *middles) {
+                        const struct layer_label *labels, double tall, const double *middles) {
     double centres[MOST_LAYERS], heights[MOST_LAYERS];
     for (size_t i = 0; i < stackup->layer_count; i++) {
         centres[i] = middles[i];
-        heights[i] = LABEL_ROW;
+        heights[i] = labels[i].height;
     }
-    double tall = LABEL_ROW * (double)stackup->layer_count;
     double low = fmin(frame->top - 4, (frame->top + frame->bottom - tall) / 2);
     double high = fmax(frame->bottom + 4, (frame->top + frame->bottom + tall) / 2);
     spread_apart(centres, heights, stackup->layer_count, low, high);
@@ -114,9 +157,10 @@ static void draw_labels(struct drawing_frame *frame, const struct study_stackup 
                                                       .stroked = true,
                                                       .stroke = theme_colour(THEME_QUIET),
                                                       .width = 0.4});
-        const char *text = layer_text(frame, &stackup->layers[i]);
-        if (text != NULL)
-            drawing_label(frame, text, frame->right + LEADER + 3, centres[i] + 2.8, SCENE_LEFT);
+        struct scene_text text = label_text(frame, labels[i].text);
+        text.x = label_left(frame);
+        text.y = centres[i] - (heights[i] - LABEL_ROW) / 2 + 2.8;
+        scene_text(frame->scene, &text);
     }
 }
 
@@ -139,12 +183,10 @@ static void draw_total(struct drawing_frame *frame, const struct study_stackup *
     drawing_label(frame, value, x - 5, (frame->top + frame->bottom) / 2 + 2.8, SCENE_RIGHT);
 }
 
-static void set_scale(struct drawing_frame *frame, const struct study_stackup *stackup) {
+static void set_scale(struct drawing_frame *frame, const struct study_stackup *stackup,
+                      double labels) {
     const struct drawing_options *options = frame->options;
     double most = options->most_height > 0 ? options->most_height : STANDARD_HEIGHT;
-    double rows = LABEL_ROW * (double)stackup->layer_count;
-    frame->left = TOTAL_ROOM;
-    frame->right = frame->left + STRIP * options->width;
     frame->scale = (most - 36) / total_thickness(stackup);
     for (size_t i = 0; i < stackup->layer_count; i++) {
         const struct study_layer *layer = &stackup->layers[i];
@@ -158,17 +200,24 @@ static void set_scale(struct drawing_frame *frame, const struct study_stackup *s
     double tall = 0;
     for (size_t i = 0; i < stackup->layer_count; i++)
         tall += drawn(&stackup->layers[i], frame->scale);
-    frame->top = 6 + fmax(0, (rows - tall) / 2);
+    frame->top = 6 + fmax(0, (labels - tall) / 2);
 }
 
 static void draw(struct drawing_frame *frame, const struct study_stackup *stackup) {
     double middles[MOST_LAYERS];
+    struct layer_label labels[MOST_LAYERS];
+    frame->left = TOTAL_ROOM;
+    frame->right = frame->left + STRIP * frame->options->width;
+    double tall = measure_labels(frame, stackup, labels);
+    if (frame->error->kind != ERROR_NONE)
+        return;
+    set_scale(frame, stackup, tall);
     const char *name = frame->options->name;
     scene_group(frame->scene, name == NULL ? "board" : name);
     draw_layers(frame, stackup, middles);
-    draw_labels(frame, stackup, middles);
+    draw_labels(frame, stackup, labels, tall, middles);
     draw_total(frame, stackup);
-    double y = fmax(frame->bottom, frame->top + LABEL_ROW * (double)stackup->layer_count / 2) + 12;
+    double y = fmax(frame->bottom, (frame->top + frame->bottom + tall) / 2) + 12;
     bool enlarged = frame->report.copper_enlarged || frame->report.plane_enlarged;
     scene_text(frame->scene,
                &(struct scene_text){.markup = enlarged ? "Heights to scale; copper drawn thicker."
@@ -216,7 +265,6 @@ struct scene *drawing_stackup(const struct study_stackup *stackup,
         struct study_layer layers[MOST_LAYERS];
         struct study_stackup coated;
         coat(stackup, layers, &coated);
-        set_scale(&frame, &coated);
         draw(&frame, &coated);
     }
     if (kept->kind != ERROR_NONE) {

@@ -123,12 +123,43 @@ size_t drawing_dimension_rows(struct drawing_frame *frame, const struct sketch *
     return place_spans(frame, sketch, spans, &count);
 }
 
+static double column_of(struct drawing_frame *frame, const struct sketch_dimension *dimension) {
+    return 16 + drawing_width(frame, drawing_dimension_text(frame, dimension));
+}
+
+static double tallest_vertical(const struct sketch *sketch) {
+    double tallest = 0;
+    for (size_t i = 0; i < sketch->dimension_count; i++)
+        if (sketch->dimensions[i].vertical)
+            tallest = fmax(tallest, sketch->dimensions[i].value);
+    return tallest;
+}
+
+/* The first one stands beside the picture always; further ones that are thin against the tallest,
+ * or for which the picture would have to give way, are told under it. */
+bool drawing_dimension_noted(struct drawing_frame *frame, const struct sketch *sketch,
+                             size_t index) {
+    const double thin = 0.2, share = 0.45;
+    double room = 0, tallest = tallest_vertical(sketch);
+    for (size_t i = 0; i <= index; i++) {
+        const struct sketch_dimension *dimension = &sketch->dimensions[i];
+        if (!dimension->vertical)
+            continue;
+        double wide = column_of(frame, dimension);
+        bool noted = room > 0 && (dimension->value < thin * tallest ||
+                                  room + wide > share * frame->options->width);
+        if (i == index)
+            return noted;
+        room += noted ? 0 : wide;
+    }
+    return false;
+}
+
 double drawing_dimension_room(struct drawing_frame *frame, const struct sketch *sketch) {
     double room = 0;
     for (size_t i = 0; i < sketch->dimension_count; i++)
-        if (sketch->dimensions[i].vertical)
-            room +=
-                16 + drawing_width(frame, drawing_dimension_text(frame, &sketch->dimensions[i]));
+        if (sketch->dimensions[i].vertical && !drawing_dimension_noted(frame, sketch, i))
+            room += column_of(frame, &sketch->dimensions[i]);
     return room;
 }
 
@@ -164,10 +195,10 @@ void drawing_dimensions(struct drawing_frame *frame, const struct sketch *sketch
         draw_span(frame, &spans[i], surface);
     double x = frame->right + 8;
     for (size_t i = 0; i < sketch->dimension_count; i++) {
-        if (!sketch->dimensions[i].vertical)
+        if (!sketch->dimensions[i].vertical || drawing_dimension_noted(frame, sketch, i))
             continue;
         draw_vertical(frame, &sketch->dimensions[i], x);
-        x += 16 + drawing_width(frame, drawing_dimension_text(frame, &sketch->dimensions[i]));
+        x += column_of(frame, &sketch->dimensions[i]);
     }
 }
 

@@ -33,6 +33,10 @@ void drawing_label(struct drawing_frame *frame, const char *markup, double x, do
 void drawing_solid(struct drawing_frame *frame, const struct theme_solid *solid, double x, double y,
                    double width, double height);
 
+/* The same with its top narrower by `etch` pt on either side. */
+void drawing_trapezoid(struct drawing_frame *frame, const struct theme_solid *solid, double x,
+                       double y, double width, double height, double etch);
+
 /* ---- drawing_dimension.c ---- */
 
 #define DRAWING_DIMENSION_ROW 13.0
@@ -45,6 +49,9 @@ const char *drawing_dimension_text(struct drawing_frame *frame,
  * vertical ones. */
 size_t drawing_dimension_rows(struct drawing_frame *frame, const struct sketch *sketch);
 double drawing_dimension_room(struct drawing_frame *frame, const struct sketch *sketch);
+/* Whether a vertical dimension is told under the picture instead of drawn beside it. */
+bool drawing_dimension_noted(struct drawing_frame *frame, const struct sketch *sketch,
+                             size_t index);
 /* `surface`: y in pt of what lies highest; rows stand above it. */
 void drawing_dimensions(struct drawing_frame *frame, const struct sketch *sketch, double surface);
 

@@ -1,9 +1,16 @@
 #include "flow.h"
 
+#include "groundrules/text.h"
+
+#include <ctype.h>
 #include <math.h>
 #include <stdarg.h>
 #include <stdio.h>
 #include <string.h>
+
+static const double HARDLY_USED = 0.15; /* of a page */
+static const double KEPT_WHOLE = 0.5;   /* of a page: a table up to that height is not parted */
+enum { TITLE_LINES = 8 };               /* a title of more is cut; nobody names a chapter so */
 
 bool flow_failed(const struct flow *flow) {
     return flow->error->kind != ERROR_NONE;
@@ -116,13 +123,21 @@ void flow_entry(struct flow *flow, unsigned level, const char *title, const char
     scene_destination(flow->scene, destination, flow->page.left, flow->y);
 }
 
+static double full_page(const struct flow *flow) {
+    return flow->page.bottom - flow->page.top;
+}
+
 void flow_heading(struct flow *flow, unsigned level, const char *title, const char *destination,
                   double keep) {
     enum theme_text style = level == 0 ? THEME_CHAPTER : THEME_SECTION;
     double width = flow->page.right - flow->page.left;
-    const char *markup = flow_escape(flow, title);
+    const char *markup = flow_shorten(flow, style, flow_escape(flow, title), width, TITLE_LINES);
     double height = flow_text_height(flow, style, markup, width);
-    if (level == 0)
+    double used = flow->y - flow->page.top;
+    if (level == 0 && used > 0 && used < HARDLY_USED * full_page(flow)) {
+        flow_gap(flow, 28.0); /* what runs over from the chapter before has no page of its own */
+        flow->running = title;
+    } else if (level == 0)
         flow_new_page(flow, title);
     else {
         flow_gap(flow, 14.0);
@@ -148,16 +163,32 @@ void flow_place(struct flow *flow, const struct scene *scene, double x) {
     flow->y += scene->height;
 }
 
-void flow_table(struct flow *flow, const struct table *table) {
-    if (flow_failed(flow))
-        return;
+/* Where the next part ends.  What is kept together goes to a new page when it does not fit here,
+ * and is parted when no page holds it. */
+static size_t part(struct flow *flow, const struct table_layout *layout, size_t first) {
+    size_t end = table_fit(layout, first, flow_room(flow));
+    bool kept = table_fit(layout, first, full_page(flow)) > first;
+    if (end == first && !kept)
+        end = table_fit_anyhow(layout, first, flow_room(flow));
+    return end;
+}
+
+/* What the page must have room for before the table begins on it. */
+static double start_of(const struct flow *flow, const struct table_layout *layout) {
+    double whole = table_height(layout, 0, table_rows(layout));
+    return whole <= KEPT_WHOLE * full_page(flow) ? whole
+                                                 : fmin(table_start(layout), full_page(flow));
+}
+
+static void table_block(struct flow *flow, const struct table *table) {
     struct table_layout *layout = table_layout(table, flow->page.right - flow->page.left,
                                                flow->setter, flow->arena, flow->error);
     if (layout == NULL)
         return;
+    flow_need(flow, start_of(flow, layout));
     size_t first = 0;
     while (first < table->row_count && !flow_failed(flow)) {
-        size_t end = table_fit(layout, first, flow_room(flow));
+        size_t end = part(flow, layout, first);
         if (end == first && flow->y > flow->page.top) {
             flow_new_page(flow, flow->running);
             continue;
@@ -171,6 +202,41 @@ void flow_table(struct flow *flow, const struct table *table) {
         flow->y += table_height(layout, first, end);
         first = end;
     }
+}
+
+static struct table *blocks_of(struct flow *flow, const struct table *table, size_t *count) {
+    if (flow_failed(flow))
+        return NULL;
+    return table_split(table, flow->page.right - flow->page.left, flow->setter, flow->arena, count,
+                       flow->error);
+}
+
+void flow_table(struct flow *flow, const struct table *table) {
+    size_t count = 0;
+    struct table *blocks = blocks_of(flow, table, &count);
+    for (size_t i = 0; blocks != NULL && i < count && !flow_failed(flow); i++) {
+        if (i > 0)
+            flow_gap(flow, 8.0);
+        table_block(flow, &blocks[i]);
+    }
+}
+
+double flow_table_start(struct flow *flow, const struct table *table) {
+    size_t count = 0;
+    struct table *blocks = blocks_of(flow, table, &count);
+    struct table_layout *layout = blocks == NULL
+                                      ? NULL
+                                      : table_layout(&blocks[0], flow->page.right - flow->page.left,
+                                                     flow->setter, flow->arena, flow->error);
+    return layout == NULL ? 0.0 : start_of(flow, layout);
+}
+
+const char *flow_shorten(struct flow *flow, enum theme_text style, const char *markup, double width,
+                         size_t lines) {
+    struct scene_text text = set(style, markup, width);
+    if (flow_failed(flow))
+        return "";
+    return text_shorten(flow->setter, &text, lines, flow->arena, flow->error);
 }
 
 const char *flow_print(struct flow *flow, const char *format, ...) {
@@ -188,9 +254,37 @@ const char *flow_print(struct flow *flow, const char *format, ...) {
     return text != NULL ? text : "";
 }
 
+/* Whether a number and its unit, or a name and its number at the end, meet at this space. */
+static bool binds(const char *text, const char *space) {
+    static const char *const units[] = {"mm",  "um", "\xC2\xB5m", "mil", "m",        "ns",
+                                        "ps",  "V",  "mV",        "ohm", "\xCE\xA9", "MHz",
+                                        "GHz", "dB", "pF",        "nH",  "%"};
+    bool after_digit = space > text && isdigit((unsigned char)space[-1]);
+    bool after_letter = space > text && isalpha((unsigned char)space[-1]);
+    for (size_t i = 0; after_digit && i < sizeof units / sizeof *units; i++) {
+        size_t length = strlen(units[i]);
+        if (strncmp(space + 1, units[i], length) == 0 && !isalnum((unsigned char)space[1 + length]))
+            return true;
+    }
+    size_t digits = strspn(space + 1, "0123456789");
+    return after_letter && digits > 0 && space[1 + digits] == '\0';
+}
+
+/* Numbers stay with their units. */
+static const char *bind(struct flow *flow, const char *text) {
+    struct text bound = text_start(flow->arena, flow->error);
+    for (const char *at = text; *at != '\0'; at++)
+        if (*at == ' ' && binds(text, at))
+            text_add(&bound, "\xC2\xA0");
+        else
+            text_add_length(&bound, at, 1);
+    const char *made = text_end(&bound);
+    return made != NULL ? made : "";
+}
+
 const char *flow_escape(struct flow *flow, const char *plain) {
     if (plain == NULL || flow_failed(flow))
         return "";
     const char *markup = text_escape(flow->arena, plain, flow->error);
-    return markup != NULL ? markup : "";
+    return markup != NULL ? bind(flow, markup) : "";
 }

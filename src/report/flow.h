@@ -44,6 +44,7 @@ struct flow {
     size_t figure_count;
     const char *running; /* what the running head says; NULL = none on this page */
     const char **heads;  /* [page] */
+    bool products_set;   /* the cover had room for the products */
 };
 
 bool flow_start(struct flow *flow, const struct guideline *guideline, struct text_setter *setter,
@@ -76,12 +77,17 @@ void flow_entry(struct flow *flow, unsigned level, const char *title, const char
 
 /* A scene with its left edge at x, at the cursor. */
 void flow_place(struct flow *flow, const struct scene *scene, double x);
-/* A table over the full width, broken over pages. */
+/* A table over the full width, broken over pages; one that is too wide becomes several. */
 void flow_table(struct flow *flow, const struct table *table);
+/* What must stay together with the heading above a table. */
+double flow_table_start(struct flow *flow, const struct table *table);
 
 /* printf into the flow's arena; "" after a failure. */
 const char *flow_print(struct flow *flow, const char *format, ...)
     __attribute__((format(printf, 2, 3)));
+/* `markup` cut with an ellipsis to what takes `lines` lines of `width`. */
+const char *flow_shorten(struct flow *flow, enum theme_text style, const char *markup, double width,
+                         size_t lines);
 /* Markup-safe copy of an author's text; "" for NULL. */
 const char *flow_escape(struct flow *flow, const char *plain);
 

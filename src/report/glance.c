@@ -64,6 +64,8 @@ static void add_rows(struct glance *glance, const struct guideline_chapter *chap
             first++;
         if (first != v || glance->row_count == MOST_ROWS)
             continue;
+        if (v > 0) /* the rows of one rule stay together */
+            glance->rows[glance->row_count - 1].keep = true;
         const char **cells = arena_new(flow->arena, TABLE_MOST_COLUMNS, const char *, flow->error);
         if (cells == NULL)
             return;
@@ -79,8 +81,7 @@ static void add_rows(struct glance *glance, const struct guideline_chapter *chap
                                        &stated->variants[other]))
                 cells[board_column(glance, stated->variants[other].stackup)] =
                     words_finding_short(flow, stated, chapter->chapter, &rule->findings[other]);
-        glance->rows[glance->row_count++] = (struct table_row){
-            .cells = cells, .rule = v == 0, .keep = v + 1 < stated->variant_count};
+        glance->rows[glance->row_count++] = (struct table_row){.cells = cells, .rule = v == 0};
     }
 }
 
@@ -108,6 +109,7 @@ static void draw(struct glance *glance) {
     const struct study *study = flow->guideline->study;
     struct table_column columns[TABLE_MOST_COLUMNS] = {0};
     struct table_head heads[TABLE_MOST_COLUMNS] = {{"Rule", 1}, {"What", 1}, {"Strength", 1}};
+    columns[1].least = 84.0;
     columns[1].most = 170.0;
     for (size_t i = 0; i < study->stackup_count; i++)
         heads[LEADING_COLUMNS + i].text = flow_escape(flow, study->stackups[i].name);
@@ -118,6 +120,7 @@ static void draw(struct glance *glance) {
         "≥ at least, ≤ at most. A rule holds for everything that it permits; its card says for "
         "which lengths, edges, drivers and tolerances."};
     struct table table = {.name = "glance",
+                          .leading = 2,
                           .columns = columns,
                           .column_count = glance->columns,
                           .heads = &head,

@@ -99,14 +99,13 @@ static struct table_layout *findings(struct flow *flow, const struct study_chapt
     struct table *table = arena_new(flow->arena, 1, struct table, flow->error);
     if (rows == NULL || columns == NULL || heads == NULL || head == NULL || table == NULL)
         return NULL;
-    const char *found = words_name(flow, chapter->model->inputs[rule->rule->find].name);
     const char *titles[CARD_COLUMNS] = {
-        "Board or case", flow_print(flow, "%c%s", found[0] - 32, found + 1),
+        "Board or case", words_capital(flow, chapter->model->inputs[rule->rule->find].name),
         "Worst",         "Limit",
         "Worst where",   "Solutions"};
     for (size_t i = 0; i < CARD_COLUMNS; i++)
         heads[i].text = titles[i];
-    columns[0].most = 90.0;
+    columns[0].most = 130.0;
     columns[1].most = 110.0;
     columns[4].most = 165.0;
     columns[5].align = TABLE_RIGHT;
@@ -135,7 +134,7 @@ struct line {
     const char *name, *text;
 };
 
-enum { MOST_LINES = 7 };
+enum { MOST_LINES = 7, REMEDY_LINES = 40 };
 
 /* "gap at least 3.2 mm" */
 static const char *bound_words(struct flow *flow, const struct model_input *input, bool at_least,
@@ -159,7 +158,7 @@ static const char *remedy_words(struct flow *flow, const struct study_chapter *c
     if (remedy->kind == GUIDELINE_OTHER_BOARD)
         return flow_print(flow, "on the board “%s” %s", flow_escape(flow, remedy->stackup->name),
                           bound);
-    return flow_print(flow, "%s at a %s of %s", bound, words_name(flow, found->name),
+    return flow_print(flow, "%s at %s of %s", bound, words_article(flow, found->name),
                       words_value(flow, rule->find_smallest ? rule->within.to : rule->within.from,
                                   found->dimension));
 }
@@ -210,14 +209,15 @@ static const char *would_do(struct flow *flow, const struct study_chapter *chapt
 }
 
 static size_t lines_of(struct flow *flow, const struct study_chapter *chapter,
-                       const struct guideline_rule *result, struct line *lines) {
+                       const struct guideline_rule *result, double width, struct line *lines) {
     const struct study_rule *rule = result->rule;
     const char *remedies = would_do(flow, chapter, result);
     size_t count = 0;
     lines[count++] =
         (struct line){"So that", words_condition(flow, rule, chapter, &rule->variants[0])};
     if (*remedies != '\0')
-        lines[count++] = (struct line){"Would do", remedies};
+        lines[count++] = (struct line){
+            "Would do", flow_shorten(flow, THEME_BODY, remedies, width, REMEDY_LINES)};
     if (rule->applies_to != NULL)
         lines[count++] = (struct line){"Applies to", flow_escape(flow, rule->applies_to)};
     lines[count++] = (struct line){"Proven over", proven_over(flow, chapter, rule)};
@@ -229,67 +229,153 @@ static size_t lines_of(struct flow *flow, const struct study_chapter *chapter,
     return count;
 }
 
-static const double INSET = 10.0, NAME_WIDTH = 58.0, PAD = 8.0;
+static const double INSET = 10.0, NAME_WIDTH = 58.0, PAD = 8.0, STRENGTH_ROOM = 60.0;
+enum { TITLE_LINES = 8 };
 
-static double head_height(void) {
-    return theme_leading(THEME_SECTION) + 2.0;
+/* A card as it is set, in one piece when a page holds it. */
+struct card {
+    struct flow *flow;
+    const struct study_rule *rule;
+    const char *title; /* markup, identifier and title */
+    const struct table_layout *table;
+    const struct line *lines;
+    size_t line_count;
+    double x, width;
+    double top; /* of its part on this page */
+};
+
+static const char *card_title(struct flow *flow, const struct study_chapter *chapter,
+                              const struct study_rule *rule, double width) {
+    const char *title = rule->title != NULL ? rule->title : chapter->title;
+    const char *markup =
+        flow_print(flow, "%s   %s", flow_escape(flow, rule->id), flow_escape(flow, title));
+    return flow_shorten(flow, THEME_SECTION, markup, width, TITLE_LINES);
 }
 
-static void card_head(struct flow *flow, const struct study_chapter *chapter,
-                      const struct study_rule *rule, double x, double y, double width) {
-    const char *title = rule->title != NULL ? rule->title : chapter->title;
-    const char *left =
-        flow_print(flow, "%s   %s", flow_escape(flow, rule->id), flow_escape(flow, title));
-    flow_text_box(flow, THEME_SECTION, left, x, y, width - 60.0);
-    const char *strength = words_strength(rule->strength);
+static double title_height(const struct card *card, const char *title) {
+    return flow_text_height(card->flow, THEME_SECTION, title, card->width - STRENGTH_ROOM) + 2.0;
+}
+
+static void draw_head(struct card *card, bool again) {
+    struct flow *flow = card->flow;
+    const char *title =
+        again ? flow_print(flow, "%s, continued", flow_escape(flow, card->rule->id)) : card->title;
+    const char *strength = words_strength(card->rule->strength);
     double strength_width =
         text_width(flow->setter, strength, theme_style(THEME_STRONG), flow->error);
-    flow_text_box(flow, THEME_STRONG, strength, x + width - strength_width, y + 2.0, 0.0);
+    card->top = flow->y;
+    flow->y += PAD;
+    flow_text_box(flow, THEME_SECTION, title, card->x, flow->y, card->width - STRENGTH_ROOM);
+    flow_text_box(flow, THEME_STRONG, strength, card->x + card->width - strength_width,
+                  flow->y + 2.0, 0.0);
+    flow->y += title_height(card, title);
 }
 
-static double lines_height(struct flow *flow, const struct line *lines, size_t count,
-                           double width) {
-    double height = 0.0;
-    for (size_t i = 0; i < count; i++)
-        height +=
-            flow_text_height(flow, i + 1 == count ? THEME_NOTE : THEME_BODY, lines[i].text, width) +
-            2.0;
-    return height;
+/* The bar beside what of the card stands on this page. */
+static void draw_bar(struct card *card) {
+    struct flow *flow = card->flow;
+    if (!flow_failed(flow))
+        scene_rectangle(flow->scene, flow->page.left, card->top, 3.0, flow->y - card->top,
+                        theme_colour(THEME_ACCENT));
+}
+
+static void need_in_card(struct card *card, double height) {
+    struct flow *flow = card->flow;
+    if (flow_failed(flow) || flow_room(flow) >= height)
+        return;
+    draw_bar(card);
+    flow_new_page(flow, flow->running);
+    if (!flow_failed(flow))
+        draw_head(card, true);
+}
+
+/* The row after the last that stands on this page. */
+static size_t part(const struct card *card, size_t first, bool fresh) {
+    double room = flow_room(card->flow) - PAD;
+    size_t end = table_fit(card->table, first, room);
+    return end == first && fresh ? table_fit_anyhow(card->table, first, room) : end;
+}
+
+static void draw_findings(struct card *card) {
+    struct flow *flow = card->flow;
+    size_t first = 0, count = card->rule->variant_count;
+    for (bool fresh = false; first < count && !flow_failed(flow); fresh = true) {
+        size_t end = part(card, first, fresh);
+        if (end == first && fresh)
+            error_set(flow->error, ERROR_INPUT, "rule %s: a row is higher than a page",
+                      card->rule->id);
+        if (end > first) {
+            table_draw(card->table, first, end, flow->scene, card->x, flow->y);
+            flow->y += table_height(card->table, first, end) + 6.0;
+            first = end;
+        }
+        if (first < count)
+            need_in_card(card, flow->page.bottom - flow->page.top);
+    }
+}
+
+static enum theme_text line_style(const struct card *card, size_t i) {
+    return i + 1 == card->line_count ? THEME_NOTE : THEME_BODY;
+}
+
+static double line_height(const struct card *card, size_t i) {
+    return flow_text_height(card->flow, line_style(card, i), card->lines[i].text,
+                            card->width - NAME_WIDTH) +
+           2.0;
+}
+
+static void draw_line(struct card *card, size_t i) {
+    struct flow *flow = card->flow;
+    enum theme_text style = line_style(card, i);
+    need_in_card(card, line_height(card, i));
+    flow_text_box(flow, THEME_NOTE, card->lines[i].name, card->x,
+                  flow->y + (style == THEME_BODY ? 1.0 : 0.0), NAME_WIDTH);
+    flow->y += flow_text_box(flow, style, card->lines[i].text, card->x + NAME_WIDTH, flow->y,
+                             card->width - NAME_WIDTH) +
+               2.0;
+}
+
+/* The whole card; only its head and the start of its table when no page holds the whole. */
+static double wanted(const struct card *card) {
+    const struct theme_page *page = &card->flow->page;
+    double head = 2.0 * PAD + title_height(card, card->title), whole = head + 6.0;
+    whole += table_height(card->table, 0, card->rule->variant_count);
+    for (size_t i = 0; i < card->line_count; i++)
+        whole += line_height(card, i);
+    return whole <= page->bottom - page->top ? whole : head + table_start(card->table);
+}
+
+static void draw_card(struct card *card) {
+    struct flow *flow = card->flow;
+    flow_gap(flow, 14.0);
+    flow_need(flow, wanted(card));
+    if (flow_failed(flow))
+        return;
+    flow_entry(flow, 1,
+               flow_print(flow, "%s %s", card->rule->id,
+                          card->rule->title != NULL ? card->rule->title : ""),
+               pages_destination(flow, "rule", card->rule->id));
+    draw_head(card, false);
+    draw_findings(card);
+    for (size_t i = 0; i < card->line_count; i++)
+        draw_line(card, i);
+    flow->y += PAD;
+    draw_bar(card);
 }
 
 void pages_rule_card(struct flow *flow, const struct guideline_chapter *chapter,
                      const struct guideline_rule *rule) {
     double x = flow->page.left + INSET, width = flow->page.right - x;
     struct line lines[MOST_LINES];
-    size_t line_count = lines_of(flow, chapter->chapter, rule, lines);
-    struct table_layout *layout = findings(flow, chapter->chapter, rule, width);
-    if (layout == NULL || flow_failed(flow))
-        return;
-    double table = table_height(layout, 0, rule->rule->variant_count);
-    double height = 2.0 * PAD + head_height() + table + 6.0 +
-                    lines_height(flow, lines, line_count, width - NAME_WIDTH);
-    flow_gap(flow, 14.0);
-    flow_need(flow, height);
-    if (flow_failed(flow))
-        return;
-    flow_entry(flow, 1,
-               flow_print(flow, "%s %s", rule->rule->id,
-                          rule->rule->title != NULL ? rule->rule->title : ""),
-               pages_destination(flow, "rule", rule->rule->id));
-    double top = flow->y;
-    scene_rectangle(flow->scene, flow->page.left, top, 3.0, height, theme_colour(THEME_ACCENT));
-    flow->y += PAD;
-    card_head(flow, chapter->chapter, rule->rule, x, flow->y, width);
-    flow->y += head_height();
-    table_draw(layout, 0, rule->rule->variant_count, flow->scene, x, flow->y);
-    flow->y += table + 6.0;
-    for (size_t i = 0; i < line_count; i++) {
-        enum theme_text style = i + 1 == line_count ? THEME_NOTE : THEME_BODY;
-        flow_text_box(flow, THEME_NOTE, lines[i].name, x,
-                      flow->y + (style == THEME_BODY ? 1.0 : 0.0), NAME_WIDTH);
-        flow->y +=
-            flow_text_box(flow, style, lines[i].text, x + NAME_WIDTH, flow->y, width - NAME_WIDTH) +
-            2.0;
-    }
-    flow->y = top + height;
+    struct card card = {
+        .flow = flow,
+        .rule = rule->rule,
+        .title = card_title(flow, chapter->chapter, rule->rule, width - STRENGTH_ROOM),
+        .table = findings(flow, chapter->chapter, rule, width),
+        .lines = lines,
+        .line_count = lines_of(flow, chapter->chapter, rule, width - NAME_WIDTH, lines),
+        .x = x,
+        .width = width};
+    if (card.table != NULL && !flow_failed(flow))
+        draw_card(&card);
 }

@@ -56,7 +56,7 @@ static const char *factor(struct flow *flow, double ratio) {
 
 static const char *at_words(struct flow *flow, const struct study_chapter *chapter, size_t point) {
     const struct model_input *input = &chapter->model->inputs[chapter->vary.input];
-    return flow_print(flow, "At a %s of %s", words_name(flow, input->name),
+    return flow_print(flow, "At %s of %s", words_article(flow, input->name),
                       words_value(flow, chapter->vary.points[point], input->dimension));
 }
 

@@ -5,7 +5,13 @@
 #include <math.h>
 #include <string.h>
 
-static const double NOTES_GAP = 4;
+static const double NOTES_GAP = 4, CAPTION_GAP = 2;
+static const double PAD = 5, NARROW_PAD = 3; /* the second where many columns share the width */
+enum { MANY_COLUMNS = 8 };
+static const double LONGEST_WORD = 84;     /* pt; what is longer may be parted anywhere */
+enum { HEAD_LINES = 12, CELL_LINES = 32 }; /* more would not leave a page room for a row */
+static const double MOST_HEAD = 90;        /* pt that a head asks for; it takes more lines then */
+static const double READABLE = 60;         /* pt that running text gets where the page has them */
 
 /* ---- texts ---- */
 
@@ -26,13 +32,28 @@ struct scene_text table_cell_text(const struct table *table, size_t row, size_t 
     return text;
 }
 
+struct scene_text table_caption_text(const struct table *table, const char *more) {
+    return (struct scene_text){.markup = more != NULL ? more : table->caption,
+                               .style = theme_style(THEME_STRONG),
+                               .leading = theme_leading(THEME_STRONG)};
+}
+
+struct scene_text table_heading_text(const struct table_layout *layout, size_t row, bool again) {
+    struct scene_text text = table_cell_text(layout->table, row, 0);
+    char *more =
+        again ? arena_print(layout->arena, layout->error, "%s, continued", text.markup) : NULL;
+    if (more != NULL)
+        text.markup = more;
+    return text;
+}
+
 struct scene_text table_note_text(const char *markup) {
     return (struct scene_text){
         .markup = markup, .style = theme_style(THEME_NOTE), .leading = theme_leading(THEME_NOTE)};
 }
 
 double table_span(const struct table_layout *layout, size_t first, size_t span) {
-    double width = 2 * TABLE_PAD_X * (double)(span - 1);
+    double width = 2 * layout->pad * (double)(span - 1);
     for (size_t i = first; i < first + span; i++)
         width += layout->width[i];
     return width;
@@ -80,9 +101,10 @@ bool table_before_point(const struct table_layout *layout, const struct scene_te
 
 /* ---- widths ---- */
 
-/* What a column needs: unbroken, and at the least (its longest word). */
+/* What a column needs: with its head in one line, unbroken otherwise, to be read with ease, and at
+ * the least (its longest word). */
 struct need {
-    double natural, least;
+    double wide, natural, decent, least;
     double before, after; /* the decimal point */
 };
 
@@ -102,8 +124,26 @@ static double longest_word(struct table_layout *layout, const struct scene_text 
 static void need_text(struct table_layout *layout, const struct scene_text *text, bool breakable,
                       struct need *need) {
     double width = text_width(layout->setter, text->markup, text->style, layout->error);
+    double word = breakable ? longest_word(layout, text) : width;
     need->natural = fmax(need->natural, width);
-    need->least = fmax(need->least, breakable ? longest_word(layout, text) : width);
+    need->least = fmax(need->least, breakable ? fmin(word, LONGEST_WORD) : width);
+}
+
+/* A head may take several lines: it must not widen its column much. */
+static void need_head(struct table_layout *layout, const struct scene_text *text,
+                      struct need *need) {
+    struct need own = {0};
+    need_text(layout, text, true, &own);
+    need->wide = fmax(need->wide, own.natural);
+    need->natural = fmax(need->natural, fmin(own.natural, fmax(own.least, MOST_HEAD)));
+    need->least = fmax(need->least, own.least);
+}
+
+static void need_prose(struct table_layout *layout, const struct scene_text *text,
+                       struct need *need) {
+    double width = text_width(layout->setter, text->markup, text->style, layout->error);
+    need_text(layout, text, true, need);
+    need->decent = fmax(need->decent, fmin(READABLE, width));
 }
 
 static void need_decimal(struct table_layout *layout, const struct scene_text *text,
@@ -126,7 +166,7 @@ static void measure_columns(struct table_layout *layout, struct need *needs) {
             const struct table_head *head = &table->heads[h].cells[i];
             struct scene_text text = table_head_text(head);
             if (head->span <= 1)
-                need_text(layout, &text, true, &needs[column]);
+                need_head(layout, &text, &needs[column]);
             column += head->span > 1 ? head->span : 1;
         }
     for (size_t r = 0; r < table->row_count; r++)
@@ -134,16 +174,20 @@ static void measure_columns(struct table_layout *layout, struct need *needs) {
             struct scene_text text = table_cell_text(table, r, c);
             if (table->columns[c].align == TABLE_DECIMAL)
                 need_decimal(layout, &text, &needs[c]);
+            else if (table->columns[c].align == TABLE_LEFT)
+                need_prose(layout, &text, &needs[c]);
             else
-                need_text(layout, &text, table->columns[c].align == TABLE_LEFT, &needs[c]);
+                need_text(layout, &text, table->columns[c].align == TABLE_CENTRE, &needs[c]);
         }
     for (size_t c = 0; c < table->column_count; c++) {
         const struct table_column *column = &table->columns[c];
         double number = needs[c].before + needs[c].after;
         needs[c].natural = fmax(fmax(needs[c].natural, number), column->least);
         needs[c].least = fmax(fmax(needs[c].least, number), column->least);
+        needs[c].decent = fmax(needs[c].decent, needs[c].least);
         if (column->most > 0)
-            needs[c].natural = fmax(needs[c].least, fmin(needs[c].natural, column->most));
+            needs[c].natural = fmax(needs[c].decent, fmin(needs[c].natural, column->most));
+        needs[c].natural = fmax(needs[c].natural, needs[c].decent);
     }
 }
 
@@ -156,9 +200,11 @@ static void widen_for_spans(struct table_layout *layout, struct need *needs) {
             size_t span = head->span > 1 ? head->span : 1;
             struct scene_text text = table_head_text(head);
             struct need need = {0};
-            double natural = 2 * TABLE_PAD_X * (double)(span - 1), least = natural;
+            double natural = 2 * layout->pad * (double)(span - 1), least = natural,
+                   decent = natural;
             for (size_t c = column; c < column + span; c++) {
                 natural += needs[c].natural;
+                decent += needs[c].decent;
                 least += needs[c].least;
             }
             if (span > 1)
@@ -166,7 +212,8 @@ static void widen_for_spans(struct table_layout *layout, struct need *needs) {
             for (size_t c = column; c < column + span && span > 1; c++) {
                 needs[c].natural += fmax(0, need.natural - natural) / (double)span;
                 needs[c].least += fmax(0, need.least - least) / (double)span;
-                needs[c].natural = fmax(needs[c].natural, needs[c].least);
+                needs[c].decent += fmax(0, need.least - decent) / (double)span;
+                needs[c].natural = fmax(needs[c].natural, needs[c].decent);
             }
             column += span;
         }
@@ -182,10 +229,33 @@ static void stretch(struct table_layout *layout, double room) {
             layout->width[c] += room / (double)(takers == 0 ? table->column_count : takers);
 }
 
-static bool fit_columns(struct table_layout *layout, const struct need *needs, double width) {
+/* What reads well is the least where the page has the room. */
+static void prefer_decent(struct need *needs, size_t count, double inner) {
+    double decent = 0;
+    for (size_t c = 0; c < count; c++)
+        decent += needs[c].decent;
+    for (size_t c = 0; c < count && decent <= inner; c++)
+        needs[c].least = needs[c].decent;
+}
+
+/* Room that is left goes to the heads that are broken for want of it.  Returns what they took. */
+static double widen_for_heads(struct table_layout *layout, const struct need *needs, double room) {
+    double wish = 0, taken = 0;
+    for (size_t c = 0; c < layout->table->column_count; c++)
+        wish += fmax(0, needs[c].wide - needs[c].natural);
+    for (size_t c = 0; c < layout->table->column_count && wish > 0; c++) {
+        double more = fmax(0, needs[c].wide - needs[c].natural) * fmin(1, room / wish);
+        layout->width[c] += more;
+        taken += more;
+    }
+    return taken;
+}
+
+static bool fit_columns(struct table_layout *layout, struct need *needs, double width) {
     const struct table *table = layout->table;
     double natural = 0, least = 0;
-    double inner = width - 2 * TABLE_PAD_X * (double)table->column_count;
+    double inner = width - 2 * layout->pad * (double)table->column_count;
+    prefer_decent(needs, table->column_count, inner);
     for (size_t c = 0; c < table->column_count; c++) {
         natural += needs[c].natural;
         least += needs[c].least;
@@ -197,12 +267,14 @@ static bool fit_columns(struct table_layout *layout, const struct need *needs, d
     double share = natural > inner ? (inner - least) / fmax(natural - least, 1e-9) : 1;
     for (size_t c = 0; c < table->column_count; c++)
         layout->width[c] = needs[c].least + share * (needs[c].natural - needs[c].least);
+    if (natural < inner)
+        natural += widen_for_heads(layout, needs, inner - natural);
     if (table->stretch && natural < inner)
         stretch(layout, inner - natural);
     double x = 0;
     for (size_t c = 0; c < table->column_count; c++) {
-        layout->left[c] = x + TABLE_PAD_X;
-        x += layout->width[c] + 2 * TABLE_PAD_X;
+        layout->left[c] = x + layout->pad;
+        x += layout->width[c] + 2 * layout->pad;
         layout->point[c] =
             (layout->width[c] - needs[c].before - needs[c].after) / 2 + needs[c].before;
     }
@@ -212,10 +284,19 @@ static bool fit_columns(struct table_layout *layout, const struct need *needs, d
 
 /* ---- heights ---- */
 
-static double height_of(struct table_layout *layout, struct scene_text text, double width) {
-    struct text_size size = {0};
+struct scene_text table_wrapped(const struct table_layout *layout, struct scene_text text,
+                                double width) {
+    bool head = text.style.weight != SCENE_REGULAR;
     /* A hair of room keeps a text of exactly the column's width on its line. */
     text.width = width + 0.05;
+    text.markup = text_shorten(layout->setter, &text, head ? HEAD_LINES : CELL_LINES, layout->arena,
+                               layout->error);
+    return text;
+}
+
+static double height_of(struct table_layout *layout, struct scene_text text, double width) {
+    struct text_size size = {0};
+    text = table_wrapped(layout, text, width);
     if (!text_measure(layout->setter, &text, &size, layout->error))
         return 0;
     return (double)size.lines * text.leading;
@@ -224,9 +305,9 @@ static double height_of(struct table_layout *layout, struct scene_text text, dou
 static double row_height(struct table_layout *layout, size_t row) {
     const struct table *table = layout->table;
     double most = theme_leading(THEME_TABLE);
-    if (table->rows[row].heading)
-        return 2 * TABLE_PAD_Y +
-               height_of(layout, table_cell_text(table, row, 0), layout->total - 2 * TABLE_PAD_X);
+    if (table->rows[row].heading) /* with the room that it needs where its group goes on */
+        return 2 * TABLE_PAD_Y + height_of(layout, table_heading_text(layout, row, true),
+                                           layout->total - 2 * layout->pad);
     for (size_t c = 0; c < table->column_count; c++)
         most = fmax(most, height_of(layout, table_cell_text(table, row, c), layout->width[c]));
     return most + 2 * TABLE_PAD_Y;
@@ -251,13 +332,21 @@ static bool measure_heights(struct table_layout *layout) {
     layout->note_heights = arena_new(layout->arena, table->note_count, double, layout->error);
     if (layout->error->kind != ERROR_NONE)
         return false;
+    if (table->caption != NULL) { /* with the room that it needs where the table goes on */
+        const char *longest =
+            arena_print(layout->arena, layout->error, "%s, continued", table->caption);
+        if (longest != NULL)
+            layout->caption =
+                CAPTION_GAP + height_of(layout, table_caption_text(table, longest), layout->room);
+    }
+    layout->heads = layout->caption;
     for (size_t h = 0; h < table->head_count; h++)
         layout->heads += layout->head_heights[h] = head_height(layout, h);
     for (size_t r = 0; r < table->row_count; r++)
         layout->row_heights[r] = row_height(layout, r);
     for (size_t n = 0; n < table->note_count; n++)
         layout->notes += layout->note_heights[n] =
-            height_of(layout, table_note_text(table->notes[n]), layout->total - 2 * TABLE_PAD_X);
+            height_of(layout, table_note_text(table->notes[n]), layout->total - 2 * layout->pad);
     if (table->note_count > 0)
         layout->notes += NOTES_GAP;
     return layout->error->kind == ERROR_NONE;
@@ -278,6 +367,23 @@ static bool check_spans(const struct table *table, struct error *error) {
     return true;
 }
 
+static double pad_of(const struct table *table) {
+    return table->column_count > MANY_COLUMNS ? NARROW_PAD : PAD;
+}
+
+bool table_least(const struct table *table, struct text_setter *setter, struct arena *arena,
+                 double *least, struct error *error) {
+    struct need needs[TABLE_MOST_COLUMNS] = {0};
+    struct table_layout layout = {
+        .table = table, .setter = setter, .arena = arena, .error = error, .pad = pad_of(table)};
+    if (!check_spans(table, error))
+        return false;
+    measure_columns(&layout, needs);
+    for (size_t c = 0; c < table->column_count; c++)
+        least[c] = needs[c].decent + 2 * layout.pad;
+    return error->kind == ERROR_NONE;
+}
+
 struct table_layout *table_layout(const struct table *table, double width,
                                   struct text_setter *setter, struct arena *arena,
                                   struct error *error) {
@@ -287,8 +393,12 @@ struct table_layout *table_layout(const struct table *table, double width,
         kept == NULL ? NULL : arena_new(arena, 1, struct table_layout, error);
     if (layout == NULL)
         return NULL;
-    *layout =
-        (struct table_layout){.table = table, .setter = setter, .arena = arena, .error = kept};
+    *layout = (struct table_layout){.table = table,
+                                    .setter = setter,
+                                    .arena = arena,
+                                    .error = kept,
+                                    .pad = pad_of(table),
+                                    .room = width};
     if (check_spans(table, kept)) {
         measure_columns(layout, needs);
         widen_for_spans(layout, needs);
@@ -308,9 +418,22 @@ double table_width(const struct table_layout *layout) {
     return layout->total;
 }
 
+size_t table_group(const struct table_layout *layout, size_t first) {
+    const struct table_row *rows = layout->table->rows;
+    for (size_t r = first + 1; r-- > 0;)
+        if (r < layout->table->row_count && rows[r].heading)
+            return r;
+    return first;
+}
+
+size_t table_rows(const struct table_layout *layout) {
+    return layout->table->row_count;
+}
+
 double table_height(const struct table_layout *layout, size_t first, size_t end) {
     assert(first <= end && end <= layout->table->row_count);
-    double height = layout->heads;
+    size_t group = table_group(layout, first);
+    double height = layout->heads + (group < first ? layout->row_heights[group] : 0);
     for (size_t r = first; r < end; r++)
         height += layout->row_heights[r];
     return height + (end == layout->table->row_count ? layout->notes : 0);
@@ -320,11 +443,30 @@ static bool keeps(const struct table_layout *layout, size_t row) {
     return layout->table->rows[row].heading || layout->table->rows[row].keep;
 }
 
-size_t table_fit(const struct table_layout *layout, size_t first, double height) {
+static bool may_part(const struct table_layout *layout, size_t end) {
+    return end == layout->table->row_count || !keeps(layout, end - 1);
+}
+
+size_t table_fit_anyhow(const struct table_layout *layout, size_t first, double height) {
     size_t end = layout->table->row_count;
     while (end > first && table_height(layout, first, end) > height + 0.01)
         end--;
-    while (end > first && end < layout->table->row_count && keeps(layout, end - 1))
+    return end;
+}
+
+size_t table_fit(const struct table_layout *layout, size_t first, double height) {
+    size_t rows = layout->table->row_count, end = table_fit_anyhow(layout, first, height);
+    bool lonely = end + 1 == rows && end > first + 2;
+    if (lonely)
+        end--;
+    while (end > first && !may_part(layout, end))
         end--;
     return end;
+}
+
+double table_start(const struct table_layout *layout) {
+    size_t rows = layout->table->row_count, end = rows < 2 ? rows : 2;
+    while (end < rows && !may_part(layout, end))
+        end++;
+    return table_height(layout, 0, end);
 }

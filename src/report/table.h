@@ -34,7 +34,9 @@ struct table_row {
 };
 
 struct table {
-    const char *name; /* of the scene's group */
+    const char *name;    /* of the scene's group */
+    const char *caption; /* markup, above the heads of every part; NULL = none */
+    size_t leading;      /* columns repeated in every block of table_split; 0 = never split */
     const struct table_column *columns;
     size_t column_count;
     const struct table_head_row *heads;
@@ -46,7 +48,7 @@ struct table {
     bool stretch; /* to the full width; else as wide as the content asks */
 };
 
-enum { TABLE_MOST_COLUMNS = 24 };
+enum { TABLE_MOST_COLUMNS = 64 };
 
 struct table_layout;
 
@@ -57,12 +59,25 @@ struct table_layout *table_layout(const struct table *table, double width,
                                   struct text_setter *setter, struct arena *arena,
                                   struct error *error);
 
+/* A table whose columns do not go side by side into `width` as blocks that do, the leading columns
+ * in each, as few and as even as possible; one when it fits or has no leading columns.  [count],
+ * owned by the arena; shares the texts.  Fails as table_layout. */
+struct table *table_split(const struct table *table, double width, struct text_setter *setter,
+                          struct arena *arena, size_t *count, struct error *error);
+
 double table_width(const struct table_layout *layout);
-/* Height of rows first .. end-1 with heads, and with the notes if end is the last. */
+size_t table_rows(const struct table_layout *layout);
+/* Height of rows first .. end-1 with caption and heads, and with the notes if end is the last. */
 double table_height(const struct table_layout *layout, size_t first, size_t end);
 /* The row after the last that fits into `height` with heads when starting at `first` (and notes
- * must fit with the last row); `first` itself when not even one row fits. */
+ * must fit with the last row); `first` itself when not even one row fits, or not all that is kept
+ * together.  No single row is left over for the next page where two can go. */
 size_t table_fit(const struct table_layout *layout, size_t first, double height);
+/* The same without regard to what is kept together: for a page that cannot hold it. */
+size_t table_fit_anyhow(const struct table_layout *layout, size_t first, double height);
+/* The least that a page must hold of the table's start: caption, heads and two rows, or all up to a
+ * place where the table may part. */
+double table_start(const struct table_layout *layout);
 /* Draws rows first .. end-1 with heads (and notes when end is the last) with the top left at
  * (x, y). */
 bool table_draw(const struct table_layout *layout, size_t first, size_t end, struct scene *scene,

@@ -49,6 +49,12 @@ double text_width(struct text_setter *setter, const char *markup, struct scene_s
 bool text_missing(struct text_setter *setter, const char *markup, struct scene_style style,
                   size_t *missing, struct error *error);
 
+/* text->markup itself when it takes at most `lines` lines of text->width; else as much of its plain
+ * text as does, with an ellipsis.  For running heads and other places of fixed size.  Owned by the
+ * arena; the markup itself after a failure. */
+const char *text_shorten(struct text_setter *setter, const struct scene_text *text, size_t lines,
+                         struct arena *arena, struct error *error);
+
 /* Plain text as markup: & < > become entities; a hyphen directly before a digit at the start or
  * after a space becomes a real minus; owned by the arena; NULL after a failure. */
 char *text_escape(struct arena *arena, const char *plain, struct error *error);

@@ -156,6 +156,10 @@ struct theme_solid theme_solid(enum sketch_role role) {
         return (struct theme_solid){.fill = slate};
     case SKETCH_DIELECTRIC:
         return (struct theme_solid){.fill = rgb(0xF5F1E4), .hatch = 7, .hatching = rgb(0xE3DCC6)};
+    case SKETCH_MASK:
+        return (struct theme_solid){.fill = rgb(0xB9CDBB)};
+    case SKETCH_COVER:
+        return (struct theme_solid){.fill = slate};
     case SKETCH_TRACE:
         return (struct theme_solid){.fill = bronze, .edge = rgb(0x5F431A), .edge_width = 0.5};
     case SKETCH_AGGRESSOR:
@@ -180,6 +184,8 @@ const char *theme_role_name(enum sketch_role role) {
     static const char *const NAMES[] = {
         [SKETCH_PLANE] = "ground plane",
         [SKETCH_DIELECTRIC] = "dielectric",
+        [SKETCH_MASK] = "solder mask",
+        [SKETCH_COVER] = "plane above",
         [SKETCH_TRACE] = "trace",
         [SKETCH_AGGRESSOR] = "aggressor",
         [SKETCH_VICTIM] = "victim",

@@ -65,6 +65,18 @@ const char *words_name(struct flow *flow, const char *name) {
     return text != NULL ? text : "";
 }
 
+const char *words_article(struct flow *flow, const char *name) {
+    return flow_print(flow, "%s %s", strchr("aeio", name[0]) != NULL ? "an" : "a",
+                      words_name(flow, name));
+}
+
+const char *words_capital(struct flow *flow, const char *name) {
+    const char *text = words_name(flow, name);
+    if (*text < 'a' || *text > 'z')
+        return text;
+    return flow_print(flow, "%c%s", *text - 'a' + 'A', text + 1);
+}
+
 const char *words_strength(enum study_strength strength) {
     switch (strength) {
     case STUDY_MUST:
@@ -106,7 +118,7 @@ const char *words_finding_short(struct flow *flow, const struct study_rule *rule
     const char *value = words_grid(flow, finding->value, rule->grid, dimension);
     switch (finding->status) {
     case GUIDELINE_FOUND:
-        return flow_print(flow, "%s %s", rule->find_smallest ? "≥" : "≤", value);
+        return flow_print(flow, "%s\u00a0%s", rule->find_smallest ? "≥" : "≤", value);
     case GUIDELINE_MET_EVERYWHERE:
         return flow_print(flow, "any %s %s", rule->find_smallest ? "from" : "to", value);
     case GUIDELINE_CANNOT_BE_MET:

@@ -19,6 +19,10 @@ const char *words_quantity(struct flow *flow, const struct quantity *quantity);
 const char *words_input(struct flow *flow, const struct model_input *input, double value);
 /* "between_width" -> "between width". */
 const char *words_name(struct flow *flow, const char *name);
+/* The same with a capital first letter, for heads. */
+/* "a gap", "an edge distance" */
+const char *words_article(struct flow *flow, const char *name);
+const char *words_capital(struct flow *flow, const char *name);
 const char *words_strength(enum study_strength strength); /* "MUST" */
 
 /* "at least 1.85 mm", "met everywhere from 0.15 mm", "cannot be met", "below the fab's capability".

@@ -19,7 +19,8 @@
 enum { MOST_SAMPLES = 64, MOST_WITNESSES = 16 };
 /* Badness above which a hump is climbed, a sample beyond the bound proven, a case kept as witness.
  */
-static const double NEAR_HUMP = -0.25, NEAR_PROOF = -0.15, NEAR_WITNESS = -0.5;
+static const double NEAR_HUMP = -0.25, NEAR_PROOF = -0.15, NEAR_WITNESS = -0.5, QUITE_FAR = -0.8,
+                    VERY_FAR = -0.96;
 /* What lies on the limit holds; rounding must not decide. */
 static const double ROUNDING = 1e-9;
 
@@ -32,6 +33,7 @@ struct finder {
     long samples[MOST_SAMPLES]; /* from first to last */
     struct worst worst[MOST_SAMPLES];
     bool proven[MOST_SAMPLES];
+    bool wavy;            /* the found input makes resonances */
     size_t count, judged; /* judged: samples up to the first that fails */
     struct worst witnesses[MOST_WITNESSES];
     size_t witness_count, oldest;
@@ -139,6 +141,7 @@ static bool probe_at(struct finder *finder, long multiple, struct worst *worst,
 static void place_samples(struct finder *finder) {
     const char *name = finder->judge->solver->model->inputs[finder->rule->find].name;
     bool wavy = strcmp(name, "length") == 0 || strcmp(name, "edge") == 0;
+    finder->wavy = wavy;
     double from = (double)finder->first, to = (double)finder->last;
     double spread = fabs(log(fmax(from, to) / fmax(1.0, fmin(from, to))));
     size_t wanted = spread > 1.0 ? 5 + (size_t)((wavy ? 10.0 : 4.0) * spread) : wavy ? 15 : 8;
@@ -200,6 +203,20 @@ static bool hump_fails(struct finder *finder, size_t i, long *bad, struct error 
     return true;
 }
 
+/* Far from the limit, where what is found makes no resonances, every second sample is left out, and
+ * very far three of four. */
+static void thin_out(struct finder *finder, size_t i) {
+    double badness = finder->worst[i].verdict.badness;
+    size_t out = badness < VERY_FAR ? 3 : badness < QUITE_FAR ? 1 : 0;
+    if (finder->wavy || i == 0 || !(badness >= finder->worst[i - 1].verdict.badness))
+        return;
+    while (out > 0 && i + 1 + out >= finder->count)
+        out--;
+    memmove(&finder->samples[i + 1], &finder->samples[i + 1 + out],
+            (finder->count - i - 1 - out) * sizeof finder->samples[0]);
+    finder->count -= out;
+}
+
 /* *bad: the first multiple seen to fail; unchanged when none does. */
 static bool first_failure(struct finder *finder, long *bad, struct error *error) {
     const long none = *bad;
@@ -207,6 +224,7 @@ static bool first_failure(struct finder *finder, long *bad, struct error *error)
         if (!probe_at(finder, finder->samples[i], &finder->worst[i], error))
             return false;
         finder->judged = i + 1;
+        thin_out(finder, i);
         if (i > 0 && !hump_fails(finder, i - 1, bad, error))
             return false;
         if (*bad == none && i + 1 == finder->count && !hump_fails(finder, i, bad, error))
@@ -314,12 +332,15 @@ static bool prove_nearby(struct finder *finder, long candidate, long next, struc
 static bool prove(struct finder *finder, long candidate, struct proof *proof, struct error *error) {
     *proof = (struct proof){.held = true, .worst = {.verdict = {.badness = -INFINITY}}};
     struct worst worst;
-    if (!search_at(finder, candidate, WORST_FULL, &worst, error))
-        return false;
-    note(proof, candidate, &worst);
     size_t beyond = 0;
     while (beyond < finder->judged && is_beyond(finder, finder->samples[beyond], candidate))
         beyond++;
+    bool probed = beyond < finder->judged && finder->samples[beyond] == candidate;
+    bool far = probed && finder->judge->reference == NULL &&
+               finder->worst[beyond].verdict.badness < WORST_IS_FAR;
+    if (!search_at(finder, candidate, far ? WORST_FAR : WORST_FULL, &worst, error))
+        return false;
+    note(proof, candidate, &worst);
     if (proof->held && beyond > 0 &&
         !prove_nearby(finder, candidate, finder->samples[beyond - 1], proof, error))
         return false;
@@ -420,6 +441,17 @@ static bool answer(struct finder *finder, struct guideline_finding *finding, str
     return true;
 }
 
+static double shortest_edge(const struct study_rule *rule, const struct region *region) {
+    size_t edge = model_input_index(region->model, "edge");
+    if (edge >= region->model->input_count)
+        return 0.0;
+    double shortest = rule->find == edge ? rule->within.from : region->base[edge];
+    for (size_t i = 0; i < region->axis_count; i++)
+        if (region->axes[i].input == edge)
+            shortest = region->axes[i].low;
+    return shortest;
+}
+
 bool find_bound(const struct study_rule *rule, const struct study_variant *variant,
                 struct judge *judge, const struct region *region, struct guideline_finding *finding,
                 struct error *error) {
@@ -429,6 +461,7 @@ bool find_bound(const struct study_rule *rule, const struct study_variant *varia
     if (finder == NULL)
         return error_set(error, ERROR_MEMORY, "out of memory");
     *finder = (struct finder){.rule = rule, .judge = judge, .region = region};
+    solver_expect(judge->solver, shortest_edge(rule, region));
     made.fab_smallest = find_fab_smallest(judge->solver->model, rule->find, variant->stackup);
     double from = rule->within.from, to = rule->within.to;
     if (made.fab_smallest > from)

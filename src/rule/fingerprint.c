@@ -30,7 +30,7 @@ struct lines {
 };
 
 /* Raised when the search may answer the same question differently. */
-enum { SEARCH_REVISION = 2 };
+enum { SEARCH_REVISION = 3 };
 
 static void add(struct lines *lines, const char *line) {
     if (line == NULL)

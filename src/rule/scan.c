@@ -33,13 +33,29 @@ double scan_scale(const struct judge *judge, double badness) {
 
 /* ---- the plan ---- */
 
-/* A run a twelfth as long couples at most about a twelfth as much while it is short against the
- * edge, and costs the most to solve (its bounces are the finest): a probe leaves such runs to the
- * proof. */
+/* Runs up to this one are short against the fastest edge and couple steadily more the longer they
+ * are. Against a reference it is the ratio that counts, and no run is short. */
+static double short_run(const struct scan *scan) {
+    const struct region *region = scan->region;
+    double inputs[MODEL_MOST_INPUTS];
+    struct error ignored = {0}; /* what does not resolve is refused where it is solved */
+    if (scan->judge->reference != NULL || region->model->steady_length == NULL)
+        return 0.0;
+    memcpy(inputs, region->base, sizeof inputs);
+    for (size_t i = 0; i < region->range_count; i++)
+        inputs[region->axes[i].input] = region->axes[i].low;
+    return model_resolve(region->model, inputs, &ignored) ? region->model->steady_length(inputs)
+                                                          : 0.0;
+}
+
+/* Short runs cost the most to solve (their bounces are the finest) and couple in proportion to
+ * their length: below a quarter of the longest none is the worst.  A probe leaves all runs below a
+ * twelfth to the proof. */
 static double sample_from(const struct scan *scan, const struct region_axis *axis) {
-    if (scan->full || !is_named(scan->region, axis, "length"))
+    if (!is_named(scan->region, axis, "length"))
         return axis->low;
-    return fmax(axis->low, axis->high / 12.0);
+    double steady = fmin(axis->high / 4.0, short_run(scan));
+    return fmax(axis->low, scan->full ? steady : fmax(steady, axis->high / 12.0));
 }
 
 static size_t samples_for(const struct scan *scan, const struct region_axis *axis, double low) {

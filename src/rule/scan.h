@@ -16,7 +16,8 @@ struct scan_start {
 struct scan {
     const struct judge *judge;
     const struct region *region;
-    bool full;
+    bool full;                         /* as finely as a proof needs */
+    bool thorough;                     /* what is found is climbed on all axes */
     size_t samples[MODEL_MOST_INPUTS]; /* per range axis; 0 = stays where it is */
     double low[MODEL_MOST_INPUTS];     /* where sampling starts */
     size_t line;                       /* the axis that is refined; SIZE_MAX = none */

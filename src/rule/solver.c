@@ -31,6 +31,11 @@ void solver_end(struct solver *solver) {
     *solver = (struct solver){0};
 }
 
+void solver_expect(struct solver *solver, double shortest_edge) {
+    for (size_t i = 0; i < SOLVER_BENCHES; i++)
+        model_worker_expect(solver->benches[i].worker, shortest_edge);
+}
+
 /* -0 and 0 are one value. */
 static uint64_t bits_of(double value) {
     uint64_t bits;

@@ -38,6 +38,9 @@ struct solver_case {
 
 bool solver_start(struct solver *solver, const struct model *model, struct model_memo *memo,
                   struct error *error);
+/* The shortest edge of the region that is to be searched, s: cases are prepared for it.  0 = not
+ * known. Changes answers within their errors. */
+void solver_expect(struct solver *solver, double shortest_edge);
 /* Takes a solver that was zeroed and never started, too. */
 void solver_end(struct solver *solver);
 

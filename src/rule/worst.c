@@ -75,15 +75,15 @@ static bool corners(const struct scan *scan, struct worst *worst, struct error *
 
 static bool climb_axes(const struct scan *scan, struct worst *worst, struct error *error) {
     const struct region *region = scan->region;
-    for (size_t i = 0; i < (scan->full ? region->axis_count : region->range_count); i++) {
+    for (size_t i = 0; i < (scan->thorough ? region->axis_count : region->range_count); i++) {
         const struct region_axis *axis = &region->axes[i];
         bool sampled = i < region->range_count && scan->samples[i] > 1;
-        if (axis->kind == REGION_CHOICE || (!scan->full && !sampled))
+        if (axis->kind == REGION_CHOICE || (!scan->thorough && !sampled))
             continue;
         double low = i < region->range_count ? scan->low[i] : axis->low;
         double cell = climb_cell(axis, low, sampled ? scan->samples[i] : 2);
-        struct climb how = {.cell = cell / (scan->full && i == scan->line ? 4.0 : 2.0),
-                            .levels = scan->full ? 3 : 2,
+        struct climb how = {.cell = cell / (scan->thorough && i == scan->line ? 4.0 : 2.0),
+                            .levels = scan->thorough ? 3 : 2,
                             .patience = 2};
         if (!climb_axis(scan->judge, axis, how, worst, error))
             return false;
@@ -94,9 +94,9 @@ static bool climb_axes(const struct scan *scan, struct worst *worst, struct erro
 /* A probe climbs what it has sampled, once; a proof everything, and looks at the corners again from
  * where it arrives. */
 static bool climb(const struct scan *scan, double gain, struct worst *worst, struct error *error) {
-    for (int round = 0; round < (scan->full ? ROUNDS : 1); round++) {
+    for (int round = 0; round < (scan->thorough ? ROUNDS : 1); round++) {
         double before = worst->verdict.badness;
-        if (!climb_axes(scan, worst, error) || (scan->full && !corners(scan, worst, error)))
+        if (!climb_axes(scan, worst, error) || (scan->thorough && !corners(scan, worst, error)))
             return false;
         if (!(worst->verdict.badness - before > gain * scan_scale(scan->judge, before)))
             break;
@@ -107,7 +107,7 @@ static bool climb(const struct scan *scan, double gain, struct worst *worst, str
 static bool finish(const struct scan *scan, struct worst *worst, struct error *error) {
     if (!corners(scan, worst, error))
         return false;
-    if (!scan->full && !scan->judge->curve && worst->verdict.badness < FAR)
+    if (!scan->thorough && !scan->judge->curve && worst->verdict.badness < FAR)
         return true;
     return climb(scan, COARSE_GAIN, worst, error);
 }
@@ -150,13 +150,20 @@ static bool follow_ridges(const struct scan *scan, struct worst_cases *found, st
 
 bool worst_of(const struct judge *judge, const struct region *region, enum worst_effort effort,
               const struct worst *hint, struct worst_cases *found, struct error *error) {
-    struct scan scan = {.judge = judge, .region = region, .full = effort == WORST_FULL};
+    struct scan scan = {.judge = judge,
+                        .region = region,
+                        .full = effort == WORST_FULL,
+                        .thorough = effort != WORST_PROBE};
     double from[MODEL_MOST_INPUTS];
     scan.most_starts = scan.full ? WORST_MOST_CASES : 4;
     start_from(&scan, hint, from);
     if (!scan_region(&scan, from, error))
         return false;
     double best = -INFINITY;
+    if (effort == WORST_PROBE && !judge->curve && hint != NULL && scan.best < WORST_IS_FAR) {
+        *found = (struct worst_cases){.cases = {scan.starts[0].worst}, .count = 1};
+        return true;
+    }
     for (size_t i = 0; i < scan.start_count; i++) {
         if (!ends(&scan, &scan.starts[i].worst, error))
             return false;
@@ -171,8 +178,9 @@ bool worst_of(const struct judge *judge, const struct region *region, enum worst
             return false;
         insert(found, &worst);
     }
-    if (scan.full && !climb(&scan, FINE_GAIN, &found->cases[0], error))
+    if (scan.thorough && !climb(&scan, FINE_GAIN, &found->cases[0], error))
         return false;
-    bool settled = judge->reference == NULL || !scan.full || found->cases[0].verdict.badness > 0.0;
+    bool settled =
+        judge->reference == NULL || !scan.thorough || found->cases[0].verdict.badness > 0.0;
     return settled || follow_ridges(&scan, found, error);
 }

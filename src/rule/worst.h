@@ -10,6 +10,8 @@
 
 enum worst_effort {
     WORST_PROBE, /* to see where a bound may lie, and for curves */
+    WORST_FAR,   /* to prove what a probe has found to be far from the limit: its scan, a full climb
+                  */
     WORST_FULL,  /* to prove it */
 };
 
@@ -17,6 +19,10 @@ struct worst {
     struct verdict verdict;
     double inputs[MODEL_MOST_INPUTS];
 };
+
+/* What is so far from the limit, in badness, is as good as proven by a probe: what may hide between
+ * its samples does not make a quarter of the limit the whole of it. */
+#define WORST_IS_FAR (-0.75)
 
 enum { WORST_MOST_CASES = 6 };
 

@@ -1,6 +1,7 @@
 #include "draft.h"
 #include "groundrules/text.h"
 
+#include <ctype.h>
 #include <stdint.h>
 #include <string.h>
 
@@ -39,16 +40,37 @@ static bool stands_alone(const struct reader *reader, const struct draft *draft,
     return true;
 }
 
-/* "gap 0.3 mm"; a word such as "floating" speaks for itself. */
+/* The unit at `at` as it is printed, and how much it takes; NULL: no unit that is written
+ * otherwise. */
+static const char *printed_unit(const char *text, const char *at, size_t *length) {
+    static const char *const units[][2] = {{"um", "\xC2\xB5m"}, {"ohm", "\xCE\xA9"}};
+    bool starts = at > text && (at[-1] == ' ' || isdigit((unsigned char)at[-1]));
+    for (size_t i = 0; starts && i < sizeof units / sizeof *units; i++) {
+        *length = strlen(units[i][0]);
+        if (strncmp(at, units[i][0], *length) == 0 && !isalpha((unsigned char)at[*length]))
+            return units[i][1];
+    }
+    return NULL;
+}
+
+/* "gap 0.3 mm", "aggressors 2"; a word such as "floating" speaks for itself. */
 static const char *input_label(const struct reader *reader, const struct model_input *input,
                                const char *value) {
     struct text text = text_start(reader->arena, reader->error);
-    for (const char *at = input->name; input->words == NULL && *at != '\0'; at++)
+    bool named = input->words == NULL || isdigit((unsigned char)value[0]);
+    for (const char *at = input->name; named && *at != '\0'; at++)
         text_format(&text, "%c", *at == '_' ? ' ' : *at);
-    if (input->words == NULL)
+    if (named)
         text_add(&text, " ");
-    for (const char *at = value; *at != '\0'; at++)
-        text_format(&text, "%c", input->words != NULL && *at == '-' ? ' ' : *at);
+    for (const char *at = value; *at != '\0';) {
+        size_t length = 1;
+        const char *unit = input->words == NULL ? printed_unit(value, at, &length) : NULL;
+        if (unit != NULL)
+            text_add(&text, unit);
+        else
+            text_format(&text, "%c", input->words != NULL && *at == '-' ? ' ' : *at);
+        at += unit != NULL ? length : 1;
+    }
     return text_end(&text);
 }
 

@@ -7,11 +7,18 @@
 #include <stdio.h>
 #include <stdlib.h>
 #include <string.h>
+#include <sys/stat.h>
+
+/* A pipe would keep the reader waiting for a writer. */
+static bool is_file(const char *path) {
+    struct stat status;
+    return stat(path, &status) == 0 && S_ISREG(status.st_mode);
+}
 
 /* NULL when there is no such file, it cannot be read or is larger than any manifest. */
 static char *read_all(const char *path, size_t *length) {
     const size_t most = 64u << 20;
-    FILE *file = fopen(path, "rb");
+    FILE *file = is_file(path) ? fopen(path, "rb") : NULL;
     char *text = NULL;
     long size = -1;
     if (file == NULL)

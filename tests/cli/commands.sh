@@ -29,7 +29,7 @@ check "a point is answered" exits 0 "$program" evaluate coupled-traces $point
 check "an unknown input names the nearest" says "did you mean height" "$program" evaluate trace hieght=1mm
 check "a missing unit is refused" exits 3 "$program" evaluate trace height=1.6 width=0.3mm
 check "a wrong unit is refused" exits 3 "$program" evaluate trace height=1.6V width=0.3mm
-check "not yet is said" says "not yet" "$program" evaluate trace height=1.6mm width=0.3mm mask=25um
+check "not yet is said" says "not yet" "$program" evaluate coupled-traces height=1.6mm width=0.3mm gap=1mm frequency=2GHz
 check "an input given twice is refused" exits 3 "$program" evaluate trace height=1.6mm height=1mm width=0.3mm
 check "all wrong words are told in one run" says "'widht'" "$program" evaluate trace height=-1mm widht=2mm
 check "a board comes from a study" exits 0 "$program" evaluate --study "$root/studies/family.json" stackup=near trace width=0.35mm

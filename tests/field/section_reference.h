@@ -204,7 +204,7 @@ static inline struct section_problem reference_problem(const struct section_refe
         .height = reference->height * 1e-3, .dk = reference->dk, .count = reference->count};
     for (size_t i = 0; i < reference->count; i++)
         problem.conductors[i] = (struct section_conductor){
-            reference->left[i] * 1e-3, reference->width[i] * 1e-3, reference->thickness * 1e-3};
+            reference->left[i] * 1e-3, reference->width[i] * 1e-3, reference->thickness * 1e-3, 0};
     return problem;
 }
 
@@ -254,7 +254,6 @@ static inline void assert_reduced_references(section_solver *solver, double rela
     }
 }
 
-
 /* A. E. H. Love 1923, thin strip over a plane in air, exact: w/(2h) = (2/pi) [K E(phi,k) - E
  * F(phi,k)], sin^2 phi = (K - E)/(k^2 K), C = 2 eps0 K(k)/K(k'). */
 static inline void assert_love(section_solver *solver, double relative) {
@@ -266,7 +265,7 @@ static inline void assert_love(section_solver *solver, double relative) {
     struct error error = {0};
     for (size_t i = 0; i < sizeof love / sizeof *love; i++) {
         struct section_problem problem = {
-            .height = 1e-3, .dk = 1, .count = 1, .conductors = {{0, love[i][0] * 1e-3, 0}}};
+            .height = 1e-3, .dk = 1, .count = 1, .conductors = {{0, love[i][0] * 1e-3, 0, 0}}};
         struct section_solution solution;
         assert_ok(solver(&problem, &solution, &error));
         assert_close(solution.capacitance[0], love[i][1] * 1e-12, relative);

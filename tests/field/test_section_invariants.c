@@ -9,9 +9,9 @@ static struct section_problem three(double height, double dk, double gap) {
     return (struct section_problem){.height = height,
                                     .dk = dk,
                                     .count = 3,
-                                    .conductors = {{-gap / 2 - 0.5e-3, 0.3e-3, 35e-6},
-                                                   {-0.1e-3, 0.2e-3, 35e-6},
-                                                   {gap / 2 + 0.2e-3, 0.3e-3, 35e-6}}};
+                                    .conductors = {{-gap / 2 - 0.5e-3, 0.3e-3, 35e-6, 0},
+                                                   {-0.1e-3, 0.2e-3, 35e-6, 0},
+                                                   {gap / 2 + 0.2e-3, 0.3e-3, 35e-6, 0}}};
 }
 
 static const double heights[] = {0.15e-3, 0.7e-3, 1.6e-3}, gaps[] = {0.6e-3, 2e-3, 9e-3};
@@ -134,10 +134,10 @@ static void test_far_traces_are_single_traces(void **state) {
     (void)state;
     struct error error = {0};
     struct section_problem single = {
-        .height = 0.2e-3, .dk = 4.3, .count = 1, .conductors = {{0, 0.3e-3, 35e-6}}};
+        .height = 0.2e-3, .dk = 4.3, .count = 1, .conductors = {{0, 0.3e-3, 35e-6, 0}}};
     struct section_problem pair = single;
     pair.count = 2;
-    pair.conductors[1] = (struct section_conductor){0.2, 0.3e-3, 35e-6};
+    pair.conductors[1] = (struct section_conductor){0.2, 0.3e-3, 35e-6, 0};
     struct section_solution one, two;
     assert_ok(section_solve(&single, &one, &error));
     assert_ok(section_solve(&pair, &two, &error));

@@ -34,7 +34,7 @@ static void test_a_thin_microstrip_by_hammerstad_and_jensen(void **state) {
         for (size_t k = 0; k < 4; k++) {
             double u = widths[i], dk = permittivities[k];
             struct section_problem problem = {
-                .height = 1e-3, .dk = dk, .count = 1, .conductors = {{0, u * 1e-3, 0}}};
+                .height = 1e-3, .dk = dk, .count = 1, .conductors = {{0, u * 1e-3, 0, 0}}};
             struct section_solution s = solved(&problem);
             double impedance = sqrt(s.inductance[0] / s.capacitance[0]);
             double permittivity = s.capacitance[0] / s.vacuum_capacitance[0];
@@ -89,7 +89,7 @@ static void test_a_thin_pair_by_kirschning_and_jansen(void **state) {
                     .height = 1e-3,
                     .dk = dk,
                     .count = 2,
-                    .conductors = {{0, u * 1e-3, 0}, {(u + g) * 1e-3, u * 1e-3, 0}}};
+                    .conductors = {{0, u * 1e-3, 0, 0}, {(u + g) * 1e-3, u * 1e-3, 0, 0}}};
                 struct section_solution s = solved(&problem);
                 struct coupled want = kj(u, g, dk);
                 double even = s.capacitance[0] + s.capacitance[1];
@@ -110,8 +110,10 @@ static void test_a_thin_pair_by_kirschning_and_jansen(void **state) {
  * computed by independent pulse codes, good for three parts in ten thousand. */
 static void test_two_bars_of_weeks_and_of_wei(void **state) {
     (void)state;
-    struct section_problem problem = {
-        .height = 1e-3, .dk = 2, .count = 2, .conductors = {{0, 3e-3, 1e-3}, {5e-3, 3e-3, 1e-3}}};
+    struct section_problem problem = {.height = 1e-3,
+                                      .dk = 2,
+                                      .count = 2,
+                                      .conductors = {{0, 3e-3, 1e-3, 0}, {5e-3, 3e-3, 1e-3, 0}}};
     struct section_solution s = solved(&problem);
     assert_close(s.capacitance[0], 92.24e-12, 2e-2);
     assert_close(s.capacitance[1], -8.504e-12, 2e-2);
@@ -138,7 +140,7 @@ static void test_two_strips_without_a_plane(void **state) {
         struct section_problem problem = {.height = 400 * (2 * w + gap),
                                           .dk = 1,
                                           .count = 2,
-                                          .conductors = {{0, w, 0}, {w + gap, w, 0}}};
+                                          .conductors = {{0, w, 0, 0}, {w + gap, w, 0, 0}}};
         struct section_solution s = solved(&problem);
         double differential = (s.capacitance[0] - s.capacitance[1]) / 2;
         assert_close(differential, strips[i][2] * 1e-12, 2e-5);
@@ -151,7 +153,7 @@ static void test_a_square_bar_high_over_the_plane(void **state) {
     (void)state;
     const double side = 1e-3, radius = 0.590170299508 * side, axis = 2000 * side;
     struct section_problem problem = {
-        .height = axis - side / 2, .dk = 1, .count = 1, .conductors = {{0, side, side}}};
+        .height = axis - side / 2, .dk = 1, .count = 1, .conductors = {{0, side, side, 0}}};
     struct section_solution s = solved(&problem);
     assert_close(s.capacitance[0], 2 * pi * SECTION_EPSILON_0 / log(2 * axis / radius), 1e-6);
 }
@@ -164,14 +166,16 @@ static void test_five_and_two_unequal_thin_strips(void **state) {
     static const double five_l[5] = {414.05265, 114.44149, 44.714887, 21.680984, 12.410981};
     struct section_problem five = {.height = 1e-3, .dk = 4.3, .count = 5};
     for (size_t i = 0; i < 5; i++)
-        five.conductors[i] = (struct section_conductor){1.5e-3 * (double)i, 1e-3, 0};
+        five.conductors[i] = (struct section_conductor){1.5e-3 * (double)i, 1e-3, 0, 0};
     struct section_solution s = solved(&five);
     for (size_t j = 0; j < 5; j++) {
         assert_close(s.capacitance[j], five_c[j] * 1e-12, 1e-4);
         assert_close(s.inductance[j], five_l[j] * 1e-9, 1e-4);
     }
-    struct section_problem unequal = {
-        .height = 1e-3, .dk = 4.3, .count = 2, .conductors = {{0, 1e-3, 0}, {1.5e-3, 2e-3, 0}}};
+    struct section_problem unequal = {.height = 1e-3,
+                                      .dk = 4.3,
+                                      .count = 2,
+                                      .conductors = {{0, 1e-3, 0, 0}, {1.5e-3, 2e-3, 0, 0}}};
     s = solved(&unequal);
     assert_close(s.capacitance[0], 86.462625e-12, 2e-5);
     assert_close(s.capacitance[1], -17.649954e-12, 2e-5);

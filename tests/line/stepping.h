@@ -71,7 +71,7 @@ static inline void stepping_advance(const struct stepping_modes *modes, const st
         double conductance = end[i].resistance > 0 ? 1 / end[i].resistance : 1e9;
         double companion = 2 * end[i].capacitance / step;
         right[i] =
-            companion * state->voltage[i] + state->current[i] + (i == 0 ? conductance * emf : 0);
+            companion * state->voltage[i] + state->current[i] + conductance * emf * end[i].emf;
         for (int j = 0; j < 2; j++) {
             m[i][j] = modes->admittance[i][j] + (i == j ? conductance + companion : 0);
             right[i] += 2 * modes->admittance[i][j] * incident[j];

@@ -23,8 +23,8 @@ static struct line_problem chain(size_t count, uint64_t seed) {
             problem.capacitance[i * count + j] = problem.capacitance[j * count + i] = c;
         }
     for (size_t i = 0; i < count; i++) {
-        problem.near[i] = (struct line_end){10 + 90 * draw(&seed), 0};
-        problem.far[i] = (struct line_end){10 + 90 * draw(&seed), 10e-12 * draw(&seed)};
+        problem.near[i] = (struct line_end){10 + 90 * draw(&seed), 0, i == 0};
+        problem.far[i] = (struct line_end){10 + 90 * draw(&seed), 10e-12 * draw(&seed), 0};
     }
     return problem;
 }
@@ -60,7 +60,7 @@ static void test_power_balances(void **state) {
             double complex near[MOST], far[MOST];
             struct error error = {0};
             assert_ok(
-                line_frequency_response(&problem, 0, 1e6 * pow(10, 0.45 * k), near, far, &error));
+                line_frequency_response(&problem, 1e6 * pow(10, 0.45 * k), near, far, &error));
             double given = creal(1 - near[0]) / problem.near[0].resistance, taken = 0;
             for (size_t i = 0; i < count; i++) {
                 double complex across = i == 0 ? 1 - near[i] : near[i];
@@ -77,7 +77,8 @@ static struct line_problem homogeneous(double even, double odd, double slowness,
     struct line_problem problem = {
         .count = 2, .length = length, .inductance = {l, m, m, l}, .capacitance = {c, -cm, -cm, c}};
     for (size_t i = 0; i < 2; i++)
-        problem.near[i] = problem.far[i] = (struct line_end){sqrt(even * odd), 0};
+        problem.near[i] = problem.far[i] = (struct line_end){sqrt(even * odd), 0, 0};
+    problem.near[0].emf = 1;
     return problem;
 }
 
@@ -86,7 +87,7 @@ static void peaks_of(const struct line_problem *problem, double edge, struct lin
     struct error error = {0};
     struct arena *arena = arena_create(&error);
     assert_ok(arena != NULL);
-    struct line_response *response = line_response_create(problem, 0, edge, arena, &error);
+    struct line_response *response = line_response_create(problem, edge, arena, &error);
     assert_ok(response != NULL);
     assert_ok(line_response_peaks(response, 1, edge, near, far, &error));
     arena_free(arena);
@@ -135,7 +136,8 @@ static void test_far_end_of_a_weak_inhomogeneous_pair(void **state) {
                                    .inductance = {l, lm, lm, l},
                                    .capacitance = {c, -cm, -cm, c}};
     for (size_t i = 0; i < 2; i++)
-        problem.near[i] = problem.far[i] = (struct line_end){sqrt(l / c), 0};
+        problem.near[i] = problem.far[i] = (struct line_end){sqrt(l / c), 0, 0};
+    problem.near[0].emf = 1;
     struct line_peak near, far;
     peaks_of(&problem, edge, &near, &far);
     double even = sqrt((l + lm) * (c - cm)), odd = sqrt((l - lm) * (c + cm));
@@ -150,15 +152,15 @@ static void test_quarter_wave_of_an_open_line(void **state) {
                                    .length = 0.15,
                                    .inductance = {2.5e-7},
                                    .capacitance = {1e-10},
-                                   .near = {{50, 0}},
-                                   .far = {{INFINITY, 0}}};
+                                   .near = {{50, 0, 1}},
+                                   .far = {{INFINITY, 0, 0}}};
     double velocity = 2e8;
     double complex near[1], far[1];
     struct error error = {0};
-    assert_ok(line_frequency_response(&problem, 0, velocity / (4 * 0.15), near, far, &error));
+    assert_ok(line_frequency_response(&problem, velocity / (4 * 0.15), near, far, &error));
     assert_near(cabs(near[0]), 0, 1e-9);
     assert_close(cabs(far[0]), 1, 1e-9);
-    assert_ok(line_frequency_response(&problem, 0, velocity / (2 * 0.15), near, far, &error));
+    assert_ok(line_frequency_response(&problem, velocity / (2 * 0.15), near, far, &error));
     assert_close(cabs(near[0]), 1, 1e-9);
 }
 
@@ -178,13 +180,13 @@ static void test_capacitance_at_the_end_of_a_matched_line(void **state) {
                                        .length = 0.12,
                                        .inductance = {2.5e-7},
                                        .capacitance = {1e-10},
-                                       .near = {{50, 0}},
-                                       .far = {{INFINITY, capacitances[k]}}};
+                                       .near = {{50, 0, 1}},
+                                       .far = {{INFINITY, capacitances[k], 0}}};
         double edge = 0.7e-9, step = 0.05e-9, delay = 0.6e-9;
         struct error error = {0};
         struct arena *arena = arena_create(&error);
         assert_ok(arena != NULL);
-        struct line_response *response = line_response_create(&problem, 0, edge, arena, &error);
+        struct line_response *response = line_response_create(&problem, edge, arena, &error);
         assert_ok(response != NULL);
         double near[200], far[200];
         assert_ok(line_response_samples(response, 0, edge, step, 200, near, far, &error));
@@ -206,22 +208,100 @@ static void test_two_conductors_may_swap_roles(void **state) {
     (void)state;
     struct line_problem problem = chain(2, 5);
     for (size_t i = 0; i < 2; i++) {
-        problem.near[i] = (struct line_end){40, 0};
-        problem.far[i] = (struct line_end){INFINITY, 5e-12};
+        problem.near[i] = (struct line_end){40, 0, 0};
+        problem.far[i] = (struct line_end){INFINITY, 5e-12, 0};
     }
     struct line_peak near[2], far[2];
     for (size_t driven = 0; driven < 2; driven++) {
+        problem.near[driven].emf = 1;
+        problem.near[1 - driven].emf = 0;
         struct error error = {0};
         struct arena *arena = arena_create(&error);
         assert_ok(arena != NULL);
-        struct line_response *response =
-            line_response_create(&problem, driven, 1e-9, arena, &error);
+        struct line_response *response = line_response_create(&problem, 1e-9, arena, &error);
         assert_ok(response != NULL);
         assert_ok(
             line_response_peaks(response, 1 - driven, 1e-9, &near[driven], &far[driven], &error));
         arena_free(arena);
     }
     assert_close(near[0].highest, near[1].highest, 1e-3);
+}
+
+enum { SAMPLES = 400 };
+
+static void samples_of(const struct line_problem *problem, size_t victim, double *near,
+                       double *far) {
+    struct error error = {0};
+    struct arena *arena = arena_create(&error);
+    assert_ok(arena != NULL);
+    struct line_response *response = line_response_create(problem, 1e-9, arena, &error);
+    assert_ok(response != NULL);
+    assert_ok(line_response_samples(response, victim, 1e-9, 0.05e-9, SAMPLES, near, far, &error));
+    arena_free(arena);
+}
+
+/* Linear: driven together is the sum of driven one by one, in frequency and in time, with resistive
+ * ends (exact) and capacitive ones. */
+static void test_several_emfs_superpose(void **state) {
+    (void)state;
+    static const double emf[3] = {1, -0.4, 1.7};
+    for (int capacitive = 0; capacitive < 2; capacitive++) {
+        struct line_problem problem = chain(3, 91);
+        double near[2][SAMPLES], far[2][SAMPLES], sum[2][SAMPLES] = {{0}};
+        double complex at_near[3], at_far[3], sum_near = 0, sum_far = 0;
+        struct error error = {0};
+        for (size_t i = 0; i < 3 && !capacitive; i++)
+            problem.far[i].capacitance = 0;
+        for (size_t driven = 0; driven < 3; driven++) {
+            for (size_t i = 0; i < 3; i++)
+                problem.near[i].emf = i == driven ? emf[i] : 0;
+            samples_of(&problem, 1, near[0], far[0]);
+            for (size_t k = 0; k < SAMPLES; k++) {
+                sum[0][k] += near[0][k];
+                sum[1][k] += far[0][k];
+            }
+            assert_ok(line_frequency_response(&problem, 2e8, at_near, at_far, &error));
+            sum_near += at_near[1];
+            sum_far += at_far[1];
+        }
+        for (size_t i = 0; i < 3; i++)
+            problem.near[i].emf = emf[i];
+        samples_of(&problem, 1, near[1], far[1]);
+        for (size_t k = 0; k < SAMPLES; k++) {
+            assert_near(near[1][k], sum[0][k], capacitive ? 5e-5 : 1e-7);
+            assert_near(far[1][k], sum[1][k], capacitive ? 5e-5 : 1e-7);
+        }
+        assert_ok(line_frequency_response(&problem, 2e8, at_near, at_far, &error));
+        assert_near(cabs(at_near[1] - sum_near), 0, 1e-12);
+        assert_near(cabs(at_far[1] - sum_far), 0, 1e-12);
+    }
+}
+
+/* Common and differential drive of an equal pair reach one mode each: a lone line of its impedance
+ * and delay (any textbook on coupled lines). */
+static void test_equal_and_opposite_emfs_see_one_mode(void **state) {
+    (void)state;
+    struct line_problem pair = homogeneous(60, 40, 6e-9, 0.1);
+    for (size_t i = 0; i < 2; i++) {
+        pair.near[i] = (struct line_end){30, 0, 1};
+        pair.far[i] = (struct line_end){200, 0, 0};
+    }
+    for (int mode = 0; mode < 2; mode++) {
+        double impedance = mode == 0 ? 60 : 40, near[2][SAMPLES], far[2][SAMPLES];
+        struct line_problem lone = {.count = 1,
+                                    .length = 0.1,
+                                    .inductance = {6e-9 * impedance},
+                                    .capacitance = {6e-9 / impedance},
+                                    .near = {{30, 0, 1}},
+                                    .far = {{200, 0, 0}}};
+        pair.near[0].emf = mode == 0 ? 1 : -1;
+        samples_of(&pair, 1, near[0], far[0]);
+        samples_of(&lone, 0, near[1], far[1]);
+        for (size_t k = 0; k < SAMPLES; k++) {
+            assert_near(near[0][k], near[1][k], 1e-9);
+            assert_near(far[0][k], far[1][k], 1e-9);
+        }
+    }
 }
 
 int main(void) {
@@ -233,6 +313,8 @@ int main(void) {
         cmocka_unit_test(test_quarter_wave_of_an_open_line),
         cmocka_unit_test(test_capacitance_at_the_end_of_a_matched_line),
         cmocka_unit_test(test_two_conductors_may_swap_roles),
+        cmocka_unit_test(test_several_emfs_superpose),
+        cmocka_unit_test(test_equal_and_opposite_emfs_see_one_mode),
     };
     return cmocka_run_group_tests(tests, NULL, NULL);
 }

@@ -6,21 +6,22 @@
 
 #include <string.h>
 
-static struct line_problem pair(const double *l, const double *c, double length) {
+static struct line_problem pair(const double *l, const double *c, double length, size_t driven) {
     struct line_problem problem = {.count = 2, .length = length};
     memcpy(problem.inductance, l, 4 * sizeof *l);
     memcpy(problem.capacitance, c, 4 * sizeof *c);
     for (size_t i = 0; i < 2; i++)
-        problem.near[i] = problem.far[i] = (struct line_end){50, 0};
+        problem.near[i] = problem.far[i] = (struct line_end){50, 0, 0};
+    problem.near[driven].emf = 1;
     return problem;
 }
 
-static void peaks_of(const struct line_problem *problem, size_t driven, size_t victim, double edge,
+static void peaks_of(const struct line_problem *problem, size_t victim, double edge,
                      struct line_peak *near, struct line_peak *far) {
     struct error error = {0};
     struct arena *arena = arena_create(&error);
     assert_ok(arena != NULL);
-    struct line_response *response = line_response_create(problem, driven, edge, arena, &error);
+    struct line_response *response = line_response_create(problem, edge, arena, &error);
     assert_ok(response != NULL);
     assert_ok(line_response_peaks(response, victim, edge, near, far, &error));
     arena_free(arena);
@@ -34,9 +35,9 @@ static void test_ribbon_cable(void **state) {
     (void)state;
     static const double l[] = {0.7485e-6, 0.5077e-6, 0.5077e-6, 1.0154e-6};
     static const double c[] = {37.432e-12, -18.716e-12, -18.716e-12, 24.982e-12};
-    struct line_problem problem = pair(l, c, 2);
+    struct line_problem problem = pair(l, c, 2, 1);
     struct line_peak near, far;
-    peaks_of(&problem, 1, 0, 20e-9, &near, &far);
+    peaks_of(&problem, 0, 20e-9, &near, &far);
     assert_close(near.highest, 112.92e-3, 5e-3);
     assert_close(far.highest, 108.93e-3, 5e-3);
     assert_near(near.time, 20.1e-9, 0.2e-9);
@@ -49,9 +50,9 @@ static void test_lands_of_a_bare_board(void **state) {
     (void)state;
     static const double l[] = {1.10515e-6, 0.690613e-6, 0.690613e-6, 1.38123e-6};
     static const double c[] = {40.5985e-12, -20.2992e-12, -20.2992e-12, 29.7378e-12};
-    struct line_problem problem = pair(l, c, 0.254);
+    struct line_problem problem = pair(l, c, 0.254, 1);
     struct line_peak near, far;
-    peaks_of(&problem, 1, 0, 6.25e-9, &near, &far);
+    peaks_of(&problem, 0, 6.25e-9, &near, &far);
     assert_close(near.highest, 95.64e-3, 5e-3);
     assert_close(far.highest, 88.77e-3, 5e-3);
     static const struct {
@@ -63,8 +64,7 @@ static void test_lands_of_a_bare_board(void **state) {
     for (size_t k = 0; k < sizeof values / sizeof *values; k++) {
         struct error error = {0};
         double complex at_near[2], at_far[2];
-        assert_ok(
-            line_frequency_response(&problem, 1, values[k].frequency, at_near, at_far, &error));
+        assert_ok(line_frequency_response(&problem, values[k].frequency, at_near, at_far, &error));
         assert_close(cabs(at_near[0]), values[k].near, 1e-5);
         assert_close(cabs(at_far[0]), values[k].far, 1e-5);
     }
@@ -86,9 +86,9 @@ static void test_both_by_fine_stepping(void **state) {
                   6.25e-9,
                   2e-12}};
     for (size_t k = 0; k < 2; k++) {
-        struct line_problem problem = pair(cases[k].l, cases[k].c, cases[k].length);
+        struct line_problem problem = pair(cases[k].l, cases[k].c, cases[k].length, 0);
         struct line_peak near, far;
-        peaks_of(&problem, 0, 1, cases[k].edge, &near, &far);
+        peaks_of(&problem, 1, cases[k].edge, &near, &far);
         struct stepping_peak want = stepping_peaks(&problem, cases[k].edge, cases[k].step,
                                                    (size_t)(100e-9 / cases[k].step));
         assert_close(near.highest, want.near, 2e-4);
@@ -102,12 +102,12 @@ static void test_low_frequencies_follow_the_inductive_capacitive_model(void **st
     (void)state;
     static const double l[] = {1.10418e-6, 0.690094e-6, 0.690094e-6, 1.38019e-6};
     static const double c[] = {40.628e-12, -20.314e-12, -20.314e-12, 29.7632e-12};
-    struct line_problem problem = pair(l, c, 0.254);
+    struct line_problem problem = pair(l, c, 0.254, 1);
     double inductive = l[1] * 0.254 / (4 * 50), capacitive = 50 * -c[1] * 0.254 / 4;
     double frequency = 1e4, omega = 2 * 3.14159265358979323846 * frequency;
     double complex near[2], far[2];
     struct error error = {0};
-    assert_ok(line_frequency_response(&problem, 1, frequency, near, far, &error));
+    assert_ok(line_frequency_response(&problem, frequency, near, far, &error));
     assert_close(cimag(near[0]), omega * (inductive + capacitive), 1e-5);
     assert_close(cimag(far[0]), -omega * (inductive - capacitive), 1e-5);
 }
@@ -120,13 +120,13 @@ static void test_bounces_of_a_shorted_line(void **state) {
                                    .length = 400,
                                    .inductance = {0.25e-6},
                                    .capacitance = {100e-12},
-                                   .near = {{150, 0}},
-                                   .far = {{0, 0}}};
+                                   .near = {{150, 0, 1}},
+                                   .far = {{0, 0, 0}}};
     struct error error = {0};
     struct arena *arena = arena_create(&error);
     assert_ok(arena != NULL);
     const double edge = 1e-9;
-    struct line_response *response = line_response_create(&problem, 0, edge, arena, &error);
+    struct line_response *response = line_response_create(&problem, edge, arena, &error);
     assert_ok(response != NULL);
     double near[21], far[21]; /* every us */
     assert_ok(line_response_samples(response, 0, edge, 1e-6, 21, near, far, &error));

@@ -9,9 +9,9 @@ static struct line_problem problem_of(const struct pair_reference *reference) {
                                    .inductance = {l[0], l[1], l[1], l[0]},
                                    .capacitance = {c[0], c[1], c[1], c[0]}};
     for (size_t i = 0; i < 2; i++) {
-        problem.near[i] = (struct line_end){reference->logic ? 30 : 50, 0};
+        problem.near[i] = (struct line_end){reference->logic ? 30 : 50, 0, i == 0};
         problem.far[i] =
-            reference->logic ? (struct line_end){INFINITY, 5e-12} : (struct line_end){50, 0};
+            reference->logic ? (struct line_end){INFINITY, 5e-12, 0} : (struct line_end){50, 0, 0};
     }
     return problem;
 }
@@ -25,7 +25,7 @@ static void test_frequency_responses_agree_with_nodal_admittances(void **state) 
         for (size_t f = 0; f < 5; f++) {
             const struct pair_frequency *want = &reference->frequency[f];
             double complex near[2], far[2];
-            assert_ok(line_frequency_response(&problem, 0, want->frequency, near, far, &error));
+            assert_ok(line_frequency_response(&problem, want->frequency, near, far, &error));
             const double complex got[4] = {near[0], near[1], far[0], far[1]};
             for (size_t i = 0; i < 4; i++) {
                 double complex value = want->real[i] + I * want->imaginary[i];
@@ -48,7 +48,7 @@ static void test_peaks_agree_with_exact_bounces_and_with_the_laplace_transform(v
         struct arena *arena = arena_create(&error);
         assert_ok(arena != NULL);
         struct line_response *response =
-            line_response_create(&problem, 0, reference->peak[0].edge, arena, &error);
+            line_response_create(&problem, reference->peak[0].edge, arena, &error);
         assert_ok(response != NULL);
         for (size_t p = 0; p < reference->peaks; p++) {
             const struct pair_peak *want = &reference->peak[p];

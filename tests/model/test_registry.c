@@ -41,8 +41,9 @@ static void test_an_input_of_a_later_version_is_refused_as_not_yet(void **state)
     (void)state;
     struct error error = {0};
     struct answer answer;
-    struct named_value values[] = {{"height", 1.6e-3}, {"width", 0.3e-3}, {"mask", 25e-6}};
-    assert_false(try_point("trace", values, 3, &answer, &error));
+    struct named_value values[] = {
+        {"height", 1.6e-3}, {"width", 0.3e-3}, {"gap", 1e-3}, {"frequency", 2e9}};
+    assert_false(try_point("coupled-traces", values, 4, &answer, &error));
     assert_int_equal(error.kind, ERROR_NOT_YET);
     assert_non_null(strstr(error.message, "not yet"));
 }

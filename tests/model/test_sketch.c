@@ -26,9 +26,9 @@ static void test_pictures_hold_what_the_inputs_say(void **state) {
         assert_close(dimension->to - dimension->from, dimension->value, 1e-12);
         assert_close(inputs[model_input_index(model, dimension->input)], dimension->value, 1e-12);
     }
-    struct section_problem problem;
+    struct section_problem problem = {.dk = 4.3};
     enum section_tie ties[SECTION_MOST_CONDUCTORS];
-    sketch_section(&sketch, 4.3, &problem, ties);
+    sketch_section(&sketch, &problem, ties);
     assert_int_equal(problem.count, 3);
     assert_int_equal(ties[0], SECTION_SIGNAL);
     assert_int_equal(ties[1], SECTION_TIED);

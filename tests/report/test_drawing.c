@@ -1,5 +1,6 @@
 #include "page.h"
 #include "report/drawing.h"
+#include "report/theme.h"
 
 #include <string.h>
 
@@ -97,11 +98,67 @@ static void test_nothing_to_draw_is_refused(void **state) {
     assert_int_equal(error.kind, ERROR_INPUT);
 }
 
+static bool says(const struct scene *scene, const char *words) {
+    for (size_t i = 0; i < scene->count; i++)
+        if (scene->items[i].kind == SCENE_TEXT &&
+            strstr(scene->items[i].text.markup, words) != NULL)
+            return true;
+    return false;
+}
+
+static size_t filled_with(const struct scene *scene, struct scene_colour colour) {
+    size_t found = 0;
+    for (size_t i = 0; i < scene->count; i++) {
+        const struct scene_path *path = &scene->items[i].path;
+        found += scene->items[i].kind == SCENE_PATH && path->filled &&
+                 path->fill.red == colour.red && path->fill.green == colour.green &&
+                 path->fill.blue == colour.blue;
+    }
+    return found;
+}
+
+/* Coating over board and copper, a plane above, a plane that ends, etched copper: all in the
+ * picture; what finds no room beside it is told under it, and a narrow drawing is no failure. */
+static void test_mask_cover_edge_and_etch_are_drawn(void **state) {
+    struct page *page = *state;
+    static const double widths[] = {420, 230, 150};
+    for (size_t k = 0; k < 3; k++) {
+        struct sketch sketch = pair_over(0.2e-3);
+        sketch.etch = 20e-6;
+        sketch.solids[0].right = 2e-3;
+        sketch_add_solid(&sketch, (struct sketch_solid){SKETCH_MASK, -INFINITY, INFINITY, 0.2e-3,
+                                                        0.225e-3, NULL});
+        sketch_add_solid(&sketch, (struct sketch_solid){SKETCH_COVER, -INFINITY, INFINITY, 0.5e-3,
+                                                        0.535e-3, "plane above"});
+        sketch_add_dimension(
+            &sketch, (struct sketch_dimension){true, 0.2e-3, 0.225e-3, 0.8e-3, "mask", 25e-6});
+        sketch_add_dimension(
+            &sketch, (struct sketch_dimension){true, 0.2e-3, 0.5e-3, 0.8e-3, "cover", 0.3e-3});
+        sketch_add_dimension(&sketch, (struct sketch_dimension){false, 0.65e-3, 2e-3, 0.2e-3,
+                                                                "edge_distance", 1.35e-3});
+        struct drawing_options options = {.name = "all", .width = widths[k]};
+        struct drawing_report report;
+        struct scene *scene =
+            drawing_sketch(&sketch, &options, page->setter, page->arena, &report, &page->error);
+        assert_non_null(scene);
+        assert_true(says(scene, "mask") && says(scene, "25") && says(scene, "cover"));
+        assert_true(says(scene, "plane above") && says(scene, "edge distance"));
+        /* The layer, its swatch in the legend where it is told there, one coat for each trace. */
+        size_t mask = filled_with(scene, theme_solid(SKETCH_MASK).fill);
+        assert_true(mask == 3 || mask == 4);
+        /* Both planes, and the swatch of the upper one. */
+        assert_int_equal(filled_with(scene, theme_solid(SKETCH_PLANE).fill), 3);
+        assert_true(has_rectangle(scene, 0.3e-3 * report.scale, 0.05));
+        assert_true(scene->width <= widths[k] + 1e-6);
+    }
+}
+
 int main(void) {
     const struct CMUnitTest tests[] = {
         page_test(test_widths_are_to_scale_and_thin_copper_is_said_to_be_thicker),
         page_test(test_a_narrow_drawing_keeps_its_texts_apart),
         page_test(test_nothing_to_draw_is_refused),
+        page_test(test_mask_cover_edge_and_etch_are_drawn),
     };
     return cmocka_run_group_tests(tests, NULL, NULL);
 }

@@ -4,7 +4,10 @@
 #include "report/chart.h"
 #include "report/drawing.h"
 #include "report/dump.h"
+#include "report/flow.h"
+#include "report/pages.h"
 #include "report/table.h"
+#include "stress.h"
 
 #include <stdlib.h>
 #include <string.h>
@@ -115,12 +118,26 @@ static void test_a_table_with_groups(void **state) {
     compare(page, scene, "table");
 }
 
+/* Rules of twelve boards with long names at a glance: the table in blocks. */
+static void test_the_glance_of_twelve_boards(void **state) {
+    struct page *page = *state;
+    const struct stress stress = {4, 2, 12, 1, 60, 40, false};
+    struct guideline *guideline = arena_new(page->arena, 1, struct guideline, &page->error);
+    static struct flow flow;
+    struct scene **pages = NULL;
+    assert_true(stress_make(&stress, page->arena, guideline, &page->error));
+    assert_true(flow_start(&flow, guideline, page->setter, page->arena, &page->error));
+    assert_true(pages_all(&flow, &pages) > 4);
+    compare(page, pages[2], "glance");
+}
+
 int main(int count, char **arguments) {
     folder = count > 1 ? arguments[1] : ".";
     const struct CMUnitTest tests[] = {
         page_test(test_a_chart_with_band_limit_and_mark),
         page_test(test_a_section_drawn_to_scale),
         page_test(test_a_table_with_groups),
+        page_test(test_the_glance_of_twelve_boards),
     };
     return cmocka_run_group_tests(tests, NULL, NULL);
 }

@@ -102,11 +102,168 @@ static void test_columns_that_cannot_be_squeezed_are_refused(void **state) {
     assert_int_equal(error.kind, ERROR_INPUT);
 }
 
+/* ---- tables wider than the page ---- */
+
+enum { WIDE = 30 };
+
+struct wide {
+    struct table_column columns[WIDE];
+    struct table_head names[WIDE], groups[4];
+    struct table_head_row heads[2];
+    const char *cells[2][WIDE];
+    struct table_row rows[3];
+    struct table table;
+};
+
+/* A leading column, then three groups of different size. */
+static void fill_wide(struct page *page, struct wide *wide) {
+    const size_t spans[4] = {1, 9, 15, 5};
+    const char *const titles[4] = {"", "first", "second", "third"};
+    *wide = (struct wide){0};
+    for (size_t g = 0; g < 4; g++)
+        wide->groups[g] = (struct table_head){titles[g], spans[g]};
+    for (size_t c = 0; c < WIDE; c++) {
+        wide->names[c].text = arena_print(page->arena, &page->error, "column %zu", c);
+        for (size_t r = 0; r < 2; r++)
+            wide->cells[r][c] = arena_print(page->arena, &page->error, "cell %zu of %zu", c, r);
+    }
+    wide->heads[0] = (struct table_head_row){wide->groups, 4};
+    wide->heads[1] = (struct table_head_row){wide->names, WIDE};
+    wide->rows[0] = (struct table_row){.cells = wide->cells[0], .heading = true};
+    wide->rows[1] = (struct table_row){.cells = wide->cells[0]};
+    wide->rows[2] = (struct table_row){.cells = wide->cells[1]};
+    wide->table = (struct table){.name = "wide",
+                                 .leading = 1,
+                                 .columns = wide->columns,
+                                 .column_count = WIDE,
+                                 .heads = wide->heads,
+                                 .head_count = 2,
+                                 .rows = wide->rows,
+                                 .row_count = 3};
+}
+
+/* Every column is in one block and one only, in its order, under its own group; the first in all.
+ */
+static void test_a_table_wider_than_the_page_becomes_blocks(void **state) {
+    struct page *page = *state;
+    static struct wide wide;
+    fill_wide(page, &wide);
+    size_t count = 0, next = 1;
+    struct table *blocks =
+        table_split(&wide.table, 480, page->setter, page->arena, &count, &page->error);
+    assert_non_null(blocks);
+    assert_true(count >= 3);
+    for (size_t b = 0; b < count; b++) {
+        const struct table *block = &blocks[b];
+        assert_non_null(table_layout(block, 480, page->setter, page->arena, &page->error));
+        assert_string_equal(block->heads[1].cells[0].text, "column 0");
+        assert_string_equal(block->rows[2].cells[0], "cell 0 of 1");
+        assert_string_equal(block->rows[0].cells[0], "cell 0 of 0");
+        size_t group = 0, left = 1;
+        for (size_t c = 0; c < block->column_count; c++, left--) {
+            if (left == 0)
+                left = block->heads[0].cells[++group].span;
+            if (c == 0)
+                continue;
+            assert_string_equal(block->heads[1].cells[c].text, wide.names[next].text);
+            assert_string_equal(block->rows[2].cells[c], wide.cells[1][next]);
+            assert_string_equal(block->heads[0].cells[group].text, next < 10   ? "first"
+                                                                   : next < 25 ? "second"
+                                                                               : "third");
+            next++;
+        }
+        assert_true(block->column_count + 1 >= blocks[0].column_count || b + 1 == count);
+    }
+    assert_int_equal(next, WIDE);
+}
+
+static void test_a_table_that_fits_is_one_block(void **state) {
+    struct page *page = *state;
+    struct table_row rows[ROWS];
+    const char *cells[ROWS][3];
+    fill(rows, cells);
+    struct table table = table_of(rows);
+    table.leading = 1;
+    size_t count = 0;
+    struct table *blocks =
+        table_split(&table, 480, page->setter, page->arena, &count, &page->error);
+    assert_non_null(blocks);
+    assert_int_equal(count, 1);
+    assert_int_equal(blocks[0].column_count, 3);
+}
+
+/* ---- what stays together ---- */
+
+static void test_no_single_row_is_left_for_the_next_page(void **state) {
+    struct page *page = *state;
+    struct table_row rows[ROWS];
+    const char *cells[ROWS][3];
+    fill(rows, cells);
+    struct table table = table_of(rows);
+    table.row_count = 6;
+    struct table_layout *layout =
+        table_layout(&table, 400, page->setter, page->arena, &page->error);
+    assert_non_null(layout);
+    double room = table_height(layout, 0, 5) + 1;
+    assert_int_equal(table_fit_anyhow(layout, 0, room), 5);
+    assert_int_equal(table_fit(layout, 0, room), 4);
+}
+
+static void test_a_group_that_goes_on_is_named_again(void **state) {
+    struct page *page = *state;
+    struct table_row rows[ROWS];
+    const char *cells[ROWS][3];
+    fill(rows, cells);
+    cells[0][0] = "the group";
+    rows[0].heading = true;
+    struct table table = table_of(rows);
+    table.caption = "the caption";
+    struct table_layout *layout =
+        table_layout(&table, 400, page->setter, page->arena, &page->error);
+    struct scene *scene = scene_create(400, 400, page->arena, &page->error);
+    assert_non_null(layout);
+    double alone = table_height(layout, 7, 9);
+    assert_true(table_draw(layout, 7, 9, scene, 0, 0));
+    size_t again = 0;
+    double lowest = 0;
+    for (size_t i = 0; i < scene->count; i++) {
+        if (scene->items[i].kind != SCENE_TEXT)
+            continue;
+        again += strcmp(scene->items[i].text.markup, "the group, continued") == 0;
+        again += strcmp(scene->items[i].text.markup, "the caption, continued") == 0;
+        lowest = fmax(lowest, scene->items[i].text.y);
+    }
+    assert_int_equal(again, 2);
+    assert_true(lowest < alone);
+}
+
+/* A word of two hundred letters is parted rather than refused. */
+static void test_a_word_as_wide_as_the_page_is_parted(void **state) {
+    struct page *page = *state;
+    struct table_row rows[ROWS];
+    const char *cells[ROWS][3];
+    char word[201] = "";
+    memset(word, 'm', 200);
+    fill(rows, cells);
+    cells[3][0] = word;
+    cells[4][2] = word;
+    struct table table = table_of(rows);
+    struct table_layout *layout =
+        table_layout(&table, 300, page->setter, page->arena, &page->error);
+    assert_non_null(layout);
+    assert_true(table_width(layout) <= 300.01);
+}
+
 int main(void) {
     const struct CMUnitTest tests[] = {
         page_test(test_a_table_breaks_over_pages_with_its_heads),
         page_test(test_numbers_stand_on_their_decimal_points),
         page_test(test_columns_that_cannot_be_squeezed_are_refused),
+        page_test(test_a_table_wider_than_the_page_becomes_blocks),
+        page_test(test_a_table_that_fits_is_one_block),
+        page_test(test_no_single_row_is_left_for_the_next_page),
+        page_test(test_a_group_that_goes_on_is_named_again),
+        page_test(test_a_word_as_wide_as_the_page_is_parted),
     };
     return cmocka_run_group_tests(tests, NULL, NULL);
 }

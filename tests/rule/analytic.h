@@ -101,7 +101,7 @@ static inline struct question smallest_gap(analytic *formula) {
                                         .find_smallest = true,
                                         .within = {0.1e-3, 20e-3},
                                         .grid = 0.1e-3,
-                                        .condition = {.at_most = true, .limit = 0.1, .text = ""}};
+                                        .condition = {.at_most = true, .limit = 0.1, .share = 1, .text = ""}};
     for (size_t i = 0; i < MODEL_MOST_INPUTS; i++)
         question.rule.reference.values[i] = NAN;
     return question;

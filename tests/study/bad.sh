@@ -49,5 +49,8 @@ check "a file of too many values is refused" exits 3 "$program" check "$scratch/
 check "and the limit is told" says "more than 100000 keys and values" "$program" check "$scratch/many.json"
 { echo '{'; seq -f '"key-%g": 1,' 40000; echo '"document": {}}'; } >"$scratch/keys.json"
 check "a file of forty thousand unknown keys is answered" exits 3 "$program" check --quiet "$scratch/keys.json"
+mkfifo "$scratch/pipe"
+sed 's|"document"|"previous": "pipe", "document"|' "$root/studies/minimal.json" >"$scratch/previous.json"
+check "an earlier issue that is a pipe is refused" says 'is no rules.json' "$program" check "$scratch/previous.json"
 check "a study that is a folder is a system error" exits 5 "$program" check "$scratch"
 finish
