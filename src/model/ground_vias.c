@@ -184,12 +184,16 @@ static bool respond(const double *values, const double *prepared, struct model_w
     return true;
 }
 
-/* Seen from the side; only a row shows all of its vias so. */
+/* Seen from the side: of a grid the front row.  The plan shows every group. */
 static bool sketch(const double *values, struct sketch *drawing, struct error *error) {
+    const size_t most = SKETCH_MOST_SOLIDS - 2; /* plane and dielectric */
     size_t count = (size_t)values[VIAS];
+    if (values[ARRANGEMENT] != GRID && count > most)
+        return error_set(error, ERROR_NOT_YET,
+                         "rows and rings are drawn from the side up to %zu vias", most);
+    double x[VIA_MOST], y[VIA_MOST];
+    place((enum arrangement)values[ARRANGEMENT], count, values[PITCH], x, y);
     *drawing = (struct sketch){0};
-    if (values[ARRANGEMENT] != ROW || count > 12)
-        return error_set(error, ERROR_NOT_YET, "only rows of up to 12 vias are drawn");
     double height = values[HEIGHT], radius = values[DIAMETER] / 2.0, pitch = values[PITCH];
     if (values[FAR_END] == FAR_PLANE)
         sketch_add_solid(drawing, (struct sketch_solid){SKETCH_PLANE, -INFINITY, INFINITY, -35e-6,
@@ -197,16 +201,39 @@ static bool sketch(const double *values, struct sketch *drawing, struct error *e
     sketch_add_solid(
         drawing, (struct sketch_solid){SKETCH_DIELECTRIC, -INFINITY, INFINITY, 0.0, height, NULL});
     for (size_t i = 0; i < count; i++)
-        sketch_add_solid(drawing,
-                         (struct sketch_solid){SKETCH_TIED, (double)i * pitch - radius,
-                                               (double)i * pitch + radius, 0.0, height, "via"});
-    sketch_add_dimension(drawing, (struct sketch_dimension){false, -radius, radius, height,
-                                                            "via_diameter", values[DIAMETER]});
-    if (count > 1)
+        if (values[ARRANGEMENT] != GRID || y[i] == 0.0)
+            sketch_add_solid(drawing, (struct sketch_solid){SKETCH_TIED, x[i] - radius,
+                                                            x[i] + radius, 0.0, height, "via"});
+    sketch_add_dimension(drawing,
+                         (struct sketch_dimension){false, x[0] - radius, x[0] + radius, height,
+                                                   "via_diameter", values[DIAMETER]});
+    if (count > 1 && values[ARRANGEMENT] != RING)
         sketch_add_dimension(
             drawing, (struct sketch_dimension){false, 0.0, pitch, height, "via_pitch", pitch});
     sketch_add_dimension(drawing,
                          (struct sketch_dimension){true, 0.0, height, -radius, "height", height});
+    return true;
+}
+
+static bool plan(const double *values, struct sketch *drawing, struct error *error) {
+    (void)error;
+    size_t count = (size_t)values[VIAS];
+    double x[VIA_MOST], y[VIA_MOST], pitch = values[PITCH], diameter = values[DIAMETER];
+    enum arrangement arrangement = (enum arrangement)values[ARRANGEMENT];
+    place(arrangement, count, pitch, x, y);
+    *drawing = (struct sketch){.plan = true};
+    for (size_t i = 0; i < count; i++)
+        sketch_add_disc(drawing, (struct sketch_disc){SKETCH_TIED, x[i], y[i], diameter, "via"});
+    sketch_add_dimension(drawing, (struct sketch_dimension){false, x[0] - diameter / 2.0,
+                                                            x[0] + diameter / 2.0, y[0],
+                                                            "via_diameter", diameter});
+    /* No two neighbours on a ring lie along an axis for every count. */
+    if (count > 1 && arrangement != RING)
+        sketch_add_dimension(drawing,
+                             (struct sketch_dimension){false, 0.0, pitch, 0.0, "via_pitch", pitch});
+    if (arrangement == GRID && y[count - 1] > 0.0)
+        sketch_add_dimension(drawing,
+                             (struct sketch_dimension){true, 0.0, pitch, x[0], "via_pitch", pitch});
     return true;
 }
 
@@ -236,4 +263,5 @@ const struct model model_ground_vias = {
     .prepare = prepare,
     .respond = respond,
     .sketch = sketch,
+    .plan = plan,
 };

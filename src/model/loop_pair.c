@@ -146,9 +146,14 @@ static bool sketch(const double *values, struct sketch *drawing, struct error *e
     }
     sketch_add_dimension(drawing, (struct sketch_dimension){false, 0.0, values[SEPARATION], top,
                                                             "separation", values[SEPARATION]});
-    sketch_add_dimension(
-        drawing,
-        (struct sketch_dimension){true, 0.0, height, values[SEPARATION] + half, "height", height});
+    loop_heights(height, values[BODY], values[SEPARATION] + half, drawing);
+    return true;
+}
+
+static bool plan(const double *values, struct sketch *drawing, struct error *error) {
+    (void)error;
+    struct loop_shape shape = shape_of(values);
+    loop_plan(&shape, 2, drawing);
     return true;
 }
 
@@ -172,4 +177,5 @@ const struct model model_loop_pair = {
     .prepare = prepare,
     .respond = respond,
     .sketch = sketch,
+    .plan = plan,
 };

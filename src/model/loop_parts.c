@@ -167,6 +167,43 @@ void loop_sketch(const struct loop_shape *shape, double body, struct sketch *ske
         sketch, (struct sketch_solid){SKETCH_TRACE, -radius, length + radius, foot, top, "trace"});
     sketch_add_dimension(sketch,
                          (struct sketch_dimension){false, 0.0, length, top, "length", length});
-    sketch_add_dimension(
-        sketch, (struct sketch_dimension){true, 0.0, board, length + radius, "height", board});
+    loop_heights(board, body, length + radius, sketch);
+}
+
+void loop_heights(double height, double body, double at, struct sketch *sketch) {
+    sketch_add_dimension(sketch,
+                         (struct sketch_dimension){true, 0.0, height, at, "height", height});
+    if (body > 0.0)
+        sketch_add_dimension(
+            sketch, (struct sketch_dimension){true, height, height + body, at, "body", body});
+}
+
+void loop_plan(const struct loop_shape *shape, size_t count, struct sketch *plan) {
+    static const enum sketch_role roles[] = {SKETCH_AGGRESSOR, SKETCH_VICTIM};
+    static const char *const names[] = {"loop", "other loop"};
+    double x[MOST_VIAS], y[MOST_VIAS], half = shape->width / 2.0;
+    double radius = shape->via_diameter / 2.0, length = shape->length;
+    size_t vias = place(shape, count, x, y);
+    *plan = (struct sketch){.plan = true};
+    for (size_t i = 0; i < count; i++) {
+        double across = (double)i * shape->separation;
+        sketch_add_solid(plan, (struct sketch_solid){count > 1 ? roles[i] : SKETCH_TRACE, -radius,
+                                                     length + radius, across - half, across + half,
+                                                     count > 1 ? names[i] : "trace"});
+    }
+    for (size_t i = 0; i < vias; i++)
+        sketch_add_disc(plan,
+                        (struct sketch_disc){SKETCH_TIED, x[i], y[i], shape->via_diameter, "via"});
+    double top = (double)(count - 1) * shape->separation + half;
+    sketch_add_dimension(plan,
+                         (struct sketch_dimension){false, 0.0, length, top, "length", length});
+    if (count > 1)
+        sketch_add_dimension(plan, (struct sketch_dimension){true, 0.0, shape->separation, length,
+                                                             "separation", shape->separation});
+    else
+        sketch_add_dimension(
+            plan, (struct sketch_dimension){true, -half, half, length, "width", shape->width});
+    if (shape->vias > 1)
+        sketch_add_dimension(plan, (struct sketch_dimension){true, y[0], y[1], length, "via_pitch",
+                                                             shape->via_pitch});
 }

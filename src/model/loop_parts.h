@@ -32,6 +32,10 @@ unsigned loop_flags(const struct loop_shape *shape, double frequency);
 
 /* Along the loop: trace, vias, plane. */
 void loop_sketch(const struct loop_shape *shape, double body, struct sketch *sketch);
+/* One or two loops from above, along x. */
+void loop_plan(const struct loop_shape *shape, size_t count, struct sketch *plan);
+/* The dimensions `height` and, over a part, `body`. */
+void loop_heights(double height, double body, double at, struct sketch *sketch);
 
 #define LOOP_HEIGHT                                                                                \
     {                                                                                              \

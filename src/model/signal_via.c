@@ -133,8 +133,8 @@ static bool sketch(const double *values, struct sketch *drawing, struct error *e
     }
     sketch_add_solid(
         drawing, (struct sketch_solid){SKETCH_DIELECTRIC, -INFINITY, INFINITY, 0.0, height, NULL});
-    sketch_add_solid(
-        drawing, (struct sketch_solid){SKETCH_TRACE, -radius, radius, 0.0, height, "signal via"});
+    sketch_add_solid(drawing, (struct sketch_solid){SKETCH_AGGRESSOR, -radius, radius, 0.0, height,
+                                                    "signal via"});
     for (int side = 1; side >= (fmod(values[RETURN_VIAS], 2.0) == 0.0 ? -1 : 1); side -= 2)
         sketch_add_solid(drawing,
                          (struct sketch_solid){SKETCH_TIED, side * distance - radius,
@@ -145,6 +145,25 @@ static bool sketch(const double *values, struct sketch *drawing, struct error *e
                                                             "via_diameter", values[DIAMETER]});
     sketch_add_dimension(
         drawing, (struct sketch_dimension){true, 0.0, height, distance + radius, "height", height});
+    return true;
+}
+
+static bool plan(const double *values, struct sketch *drawing, struct error *error) {
+    (void)error;
+    double diameter = values[DIAMETER], radius = diameter / 2.0;
+    double distance = values[RETURN_DISTANCE];
+    *drawing = (struct sketch){.plan = true};
+    sketch_add_disc(drawing,
+                    (struct sketch_disc){SKETCH_AGGRESSOR, 0.0, 0.0, diameter, "signal via"});
+    for (double i = 0.0; i < values[RETURN_VIAS]; i += 1.0) {
+        double turn = 2.0 * M_PI * i / values[RETURN_VIAS];
+        sketch_add_disc(drawing, (struct sketch_disc){SKETCH_TIED, distance * cos(turn),
+                                                      distance * sin(turn), diameter, "return"});
+    }
+    sketch_add_dimension(
+        drawing, (struct sketch_dimension){false, 0.0, distance, 0.0, "return_distance", distance});
+    sketch_add_dimension(
+        drawing, (struct sketch_dimension){false, -radius, radius, 0.0, "via_diameter", diameter});
     return true;
 }
 
@@ -170,4 +189,5 @@ const struct model model_signal_via = {
     .prepare = prepare,
     .respond = respond,
     .sketch = sketch,
+    .plan = plan,
 };

@@ -98,6 +98,13 @@ static bool sketch(const double *values, struct sketch *drawing, struct error *e
     return true;
 }
 
+static bool plan(const double *values, struct sketch *drawing, struct error *error) {
+    (void)error;
+    struct loop_shape shape = shape_of(values);
+    loop_plan(&shape, 1, drawing);
+    return true;
+}
+
 const struct model model_trace_loop = {
     .name = "trace-loop",
     .title = "A trace over a plane, closed through vias",
@@ -116,4 +123,5 @@ const struct model model_trace_loop = {
     .prepare = prepare,
     .respond = respond,
     .sketch = sketch,
+    .plan = plan,
 };
