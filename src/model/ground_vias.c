@@ -41,18 +41,19 @@ enum {
 };
 
 static const struct model_output outputs[OUTPUT_COUNT] = {
-    [BARREL_INDUCTANCE] = {"barrel_inductance", "barrel alone, by formula", "L<sub>barrel</sub>",
+    [BARREL_INDUCTANCE] = {"barrel_inductance", "inductance of the barrel alone",
+                           "L<sub>barrel</sub>",
                            "One barrel alone in free space by Rosa's formula, the trade's figure; "
                            "not what a circuit sees.",
                            DIMENSION_INDUCTANCE, MODEL_NEITHER, NULL},
-    [SINGLE_INDUCTANCE] = {"single_inductance", "one via", "L<sub>1</sub>",
+    [SINGLE_INDUCTANCE] = {"single_inductance", "inductance of one via", "L<sub>1</sub>",
                            "One via as placed: onto its plane, or free.", DIMENSION_INDUCTANCE,
                            MODEL_HIGHER_IS_WORSE, NULL},
-    [INDUCTANCE] = {"inductance", "group of vias", "L",
+    [INDUCTANCE] = {"inductance", "inductance of the group", "L",
                     "The group as placed: onto its plane, or free; currents find their shares "
                     "among the vias and around each barrel.",
                     DIMENSION_INDUCTANCE, MODEL_HIGHER_IS_WORSE, NULL},
-    [UNIFORM_INDUCTANCE] = {"uniform_inductance", "group, current even around each barrel",
+    [UNIFORM_INDUCTANCE] = {"uniform_inductance", "inductance of the group, current even",
                             "L<sub>u</sub>",
                             "The group with the current even around each barrel: an upper bound.",
                             DIMENSION_INDUCTANCE, MODEL_HIGHER_IS_WORSE, NULL},

@@ -249,6 +249,8 @@ static void add_series(struct flow *flow, const struct guideline_chapter *chapte
     const struct study_vary *vary = &chapter->chapter->vary;
     const struct study *study = flow->guideline->study;
     bool boards = asked->output_count == 1 && compares_boards_only(chapter->chapter);
+    /* One variant needs no name beside its outputs. */
+    bool lone = asked->output_count > 1 && chapter->chapter->variant_count == 1;
     plot->chart.style_count = boards ? study->stackup_count : 0;
     for (size_t o = 0; o < asked->output_count; o++)
         for (size_t v = 0; v < chapter->chapter->variant_count; v++) {
@@ -260,7 +262,7 @@ static void add_series(struct flow *flow, const struct guideline_chapter *chapte
                 &chapter->chapter->model->outputs[asked->outputs[o]];
             const char *name = chapter->chapter->variants[v].label;
             const char *what = output->symbol != NULL ? output->symbol : output->title;
-            const char *label = name == NULL ? output->title
+            const char *label = name == NULL || lone ? output->title
                                 : asked->output_count == 1
                                     ? flow_escape(flow, name)
                                     : flow_print(flow, "%s, %s", what, flow_escape(flow, name));
