@@ -78,6 +78,8 @@ struct model {
                     double *outputs, double *errors, unsigned *flags, struct error *error);
     /* The geometry of these inputs; NULL for a model without one. */
     bool (*sketch)(const double *inputs, struct sketch *sketch, struct error *error);
+    /* The same from above; NULL where a section says it all. */
+    bool (*plan)(const double *inputs, struct sketch *plan, struct error *error);
     /* The longest run, m, that is so short against these inputs' edge that all outputs which rules
      * limit grow steadily with the input `length`: searches need not look between shorter ones.
      * NULL: not known. */

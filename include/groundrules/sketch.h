@@ -35,17 +35,28 @@ struct sketch_dimension {
     double value;      /* m */
 };
 
-enum { SKETCH_MOST_SOLIDS = 32, SKETCH_MOST_DIMENSIONS = 16 };
+/* A barrel seen from above. */
+struct sketch_disc {
+    enum sketch_role role;
+    double x, y, diameter;
+    const char *label; /* as of a solid */
+};
+
+enum { SKETCH_MOST_SOLIDS = 32, SKETCH_MOST_DISCS = 64, SKETCH_MOST_DIMENSIONS = 16 };
 
 struct sketch {
+    bool plan;   /* seen from above: y runs across the board, solids are the outlines of traces */
     double etch; /* m: the top of all copper on the board is so much narrower on either side */
     size_t solid_count;
     struct sketch_solid solids[SKETCH_MOST_SOLIDS];
+    size_t disc_count; /* of a plan; drawn over the solids */
+    struct sketch_disc discs[SKETCH_MOST_DISCS];
     size_t dimension_count;
     struct sketch_dimension dimensions[SKETCH_MOST_DIMENSIONS];
 };
 
 void sketch_add_solid(struct sketch *sketch, struct sketch_solid solid);
+void sketch_add_disc(struct sketch *sketch, struct sketch_disc disc);
 void sketch_add_dimension(struct sketch *sketch, struct sketch_dimension dimension);
 
 /* The section problem that is drawn: conductors in the order in which they were added, from left to

@@ -7,6 +7,10 @@ static const struct model *const models[] = {
     &model_trace,
     &model_coupled_traces,
     &model_coupled_lines,
+    &model_ground_vias,
+    &model_signal_via,
+    &model_trace_loop,
+    &model_loop_pair,
 };
 
 size_t model_count(void) {

@@ -8,6 +8,11 @@ void sketch_add_solid(struct sketch *sketch, struct sketch_solid solid) {
     sketch->solids[sketch->solid_count++] = solid;
 }
 
+void sketch_add_disc(struct sketch *sketch, struct sketch_disc disc) {
+    assert(sketch->disc_count < SKETCH_MOST_DISCS);
+    sketch->discs[sketch->disc_count++] = disc;
+}
+
 void sketch_add_dimension(struct sketch *sketch, struct sketch_dimension dimension) {
     assert(sketch->dimension_count < SKETCH_MOST_DIMENSIONS);
     sketch->dimensions[sketch->dimension_count++] = dimension;

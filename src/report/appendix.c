@@ -267,7 +267,8 @@ static void glossary(struct flow *flow) {
 
 static void cautions(struct flow *flow) {
     static const char *const paragraphs[] = {
-        "These rules speak about crosstalk over an uncut ground plane, for the drivers, loads, "
+        "These rules speak about crosstalk and current loops over an uncut ground plane, for the "
+        "drivers, loads, "
         "lengths and boards stated. "
         "They promise nothing about emission, immunity, electrostatic discharge or insulation.",
         "<b>Distances here are not clearance or creepage distances.</b> Where mains, high voltage, "

@@ -27,7 +27,9 @@ static double shown_point(const struct study_chapter *chapter) {
     return isfinite(rounded) && rounded >= vary->points[0] ? rounded : middle;
 }
 
-static bool sketch_of(const struct study_chapter *chapter, size_t v, struct sketch *sketch) {
+static bool sketch_of(const struct study_chapter *chapter, bool plan, size_t v,
+                      struct sketch *sketch) {
+    const struct model *model = chapter->model;
     double inputs[MODEL_MOST_INPUTS];
     for (size_t i = 0; i < chapter->model->input_count; i++)
         inputs[i] = chapter->variants[v].settings[i].value;
@@ -35,12 +37,16 @@ static bool sketch_of(const struct study_chapter *chapter, size_t v, struct sket
     struct error ignored = {0};
     return model_resolve(chapter->model, inputs, &ignored) &&
            model_check(chapter->model, inputs, &ignored) &&
-           chapter->model->sketch(inputs, sketch, &ignored);
+           (plan ? model->plan : model->sketch)(inputs, sketch, &ignored);
 }
 
 static bool same_picture(const struct sketch *a, const struct sketch *b) {
-    if (a->solid_count != b->solid_count || a->etch != b->etch)
+    if (a->solid_count != b->solid_count || a->disc_count != b->disc_count || a->etch != b->etch)
         return false;
+    for (size_t i = 0; i < a->disc_count; i++)
+        if (a->discs[i].x != b->discs[i].x || a->discs[i].y != b->discs[i].y ||
+            a->discs[i].diameter != b->discs[i].diameter)
+            return false;
     for (size_t i = 0; i < a->solid_count; i++) {
         const struct sketch_solid *p = &a->solids[i], *q = &b->solids[i];
         if (p->role != q->role || p->left != q->left || p->right != q->right ||
@@ -52,7 +58,7 @@ static bool same_picture(const struct sketch *a, const struct sketch *b) {
 
 /* At most four: distinct pictures, and where boards and something else are compared, those of the
  * first board. */
-static size_t choose(const struct study_chapter *chapter, struct sketch *sketches,
+static size_t choose(const struct study_chapter *chapter, bool plan, struct sketch *sketches,
                      size_t *variants) {
     size_t count = 0;
     bool many = chapter->variant_count > 3;
@@ -60,7 +66,7 @@ static size_t choose(const struct study_chapter *chapter, struct sketch *sketche
         struct sketch sketch;
         if (many && chapter->variants[v].stackup != chapter->variants[0].stackup)
             continue;
-        if (!sketch_of(chapter, v, &sketch))
+        if (!sketch_of(chapter, plan, v, &sketch))
             continue;
         bool seen = false;
         for (size_t i = 0; i < count; i++)
@@ -77,32 +83,46 @@ static const char *symbol(const char *input) {
     static const char *const names[][2] = {{"between_width", "strip"},
                                            {"victim_width", "victim"},
                                            {"edge_distance", "to the edge"},
-                                           {"mask", "solder mask"}};
+                                           {"mask", "solder mask"},
+                                           {"via_pitch", "pitch"},
+                                           {"via_diameter", "via"},
+                                           {"return_distance", "to the return"},
+                                           {"separation", "apart"}};
     for (size_t i = 0; i < sizeof names / sizeof *names; i++)
         if (strcmp(input, names[i][0]) == 0)
             return names[i][1];
-    return input;
+    return NULL; /* its own, in words */
 }
 
-static void geometry_row(struct flow *flow, const struct study_chapter *chapter,
+/* A lone plan stands for every variant. */
+static const char *picture_label(struct flow *flow, const struct study_variant *variant, bool plan,
+                                 size_t count) {
+    const char *label = plan && count == 1 ? NULL : variant->label;
+    if (!plan)
+        return label;
+    return label == NULL ? "From above" : flow_print(flow, "%s, from above", label);
+}
+
+static void geometry_row(struct flow *flow, const struct study_chapter *chapter, bool plan,
                          const struct sketch *sketches, const size_t *variants, size_t count,
                          double width) {
     struct scene *drawings[MOST_SKETCHES];
     double tallest = 0.0, labels = 0.0;
     for (size_t i = 0; i < count; i++) {
-        struct drawing_options options = {
-            .name = flow_print(flow, "%s-geometry-%zu", chapter->id, variants[i] + 1),
-            .lengths = flow->guideline->study->document.lengths,
-            .width = width,
-            .most_height = 150.0,
-            .input_symbol = symbol};
+        struct drawing_options options = {.name = flow_print(flow, "%s-%s-%zu", chapter->id,
+                                                             plan ? "plan" : "geometry",
+                                                             variants[i] + 1),
+                                          .lengths = flow->guideline->study->document.lengths,
+                                          .width = width,
+                                          .most_height = plan ? 100.0 : 150.0,
+                                          .input_symbol = symbol};
         struct drawing_report report;
         drawings[i] =
             drawing_sketch(&sketches[i], &options, flow->setter, flow->arena, &report, flow->error);
         if (drawings[i] == NULL)
             return;
         tallest = fmax(tallest, drawings[i]->height);
-        const char *label = chapter->variants[variants[i]].label;
+        const char *label = picture_label(flow, &chapter->variants[variants[i]], plan, count);
         if (label != NULL)
             labels =
                 fmax(labels, flow_text_height(flow, THEME_LABEL, flow_escape(flow, label), width));
@@ -110,36 +130,43 @@ static void geometry_row(struct flow *flow, const struct study_chapter *chapter,
     flow_need(flow, tallest + labels + 4.0);
     for (size_t i = 0; i < count && !flow_failed(flow); i++) {
         double x = flow->page.left + (width + flow->page.gutter) * (double)i;
-        const char *label = chapter->variants[variants[i]].label;
+        const char *label = picture_label(flow, &chapter->variants[variants[i]], plan, count);
         if (label != NULL)
             flow_text_box(flow, THEME_LABEL,
                           flow_print(flow, "<b>%s</b>", flow_escape(flow, label)), x, flow->y,
                           width);
-        flow_figure(flow, flow_print(flow, "%s-geometry-%zu", chapter->id, variants[i] + 1),
-                    label != NULL ? flow_escape(flow, label) : "Geometry", drawings[i]);
+        flow_figure(
+            flow,
+            flow_print(flow, "%s-%s-%zu", chapter->id, plan ? "plan" : "geometry", variants[i] + 1),
+            label != NULL ? flow_escape(flow, label) : "Geometry", drawings[i]);
         scene_place(flow->scene, drawings[i], x,
                     flow->y + labels + 2.0 + tallest - drawings[i]->height);
     }
     flow->y += tallest + labels + 8.0;
 }
 
-static void geometry(struct flow *flow, const struct study_chapter *chapter) {
-    if (chapter->model->sketch == NULL || flow_failed(flow))
+static void pictures(struct flow *flow, const struct study_chapter *chapter, bool plan) {
+    if (flow_failed(flow) || (plan ? chapter->model->plan : chapter->model->sketch) == NULL)
         return;
     struct sketch *sketches = arena_new(flow->arena, MOST_SKETCHES, struct sketch, flow->error);
     size_t variants[MOST_SKETCHES];
-    size_t count = sketches == NULL ? 0 : choose(chapter, sketches, variants);
+    size_t count = sketches == NULL ? 0 : choose(chapter, plan, sketches, variants);
     if (count == 0)
         return;
     double gutter = flow->page.gutter, all = flow->page.right - flow->page.left;
     size_t columns = count > 3 ? 2 : count;
     double width = (all - gutter * (double)(columns - 1)) / (double)columns;
     if (count == 1)
-        width = 0.6 * all;
+        width = (plan ? 0.45 : 0.6) * all;
     flow_gap(flow, 8.0);
     for (size_t first = 0; first < count && !flow_failed(flow); first += columns)
-        geometry_row(flow, chapter, sketches + first, variants + first,
+        geometry_row(flow, chapter, plan, sketches + first, variants + first,
                      count - first < columns ? count - first : columns, width);
+}
+
+static void geometry(struct flow *flow, const struct study_chapter *chapter) {
+    pictures(flow, chapter, false);
+    pictures(flow, chapter, true);
 }
 
 /* ---- charts ---- */
@@ -222,6 +249,8 @@ static void add_series(struct flow *flow, const struct guideline_chapter *chapte
     const struct study_vary *vary = &chapter->chapter->vary;
     const struct study *study = flow->guideline->study;
     bool boards = asked->output_count == 1 && compares_boards_only(chapter->chapter);
+    /* One variant needs no name beside its outputs. */
+    bool lone = asked->output_count > 1 && chapter->chapter->variant_count == 1;
     plot->chart.style_count = boards ? study->stackup_count : 0;
     for (size_t o = 0; o < asked->output_count; o++)
         for (size_t v = 0; v < chapter->chapter->variant_count; v++) {
@@ -233,7 +262,7 @@ static void add_series(struct flow *flow, const struct guideline_chapter *chapte
                 &chapter->chapter->model->outputs[asked->outputs[o]];
             const char *name = chapter->chapter->variants[v].label;
             const char *what = output->symbol != NULL ? output->symbol : output->title;
-            const char *label = name == NULL ? output->title
+            const char *label = name == NULL || lone ? output->title
                                 : asked->output_count == 1
                                     ? flow_escape(flow, name)
                                     : flow_print(flow, "%s, %s", what, flow_escape(flow, name));

@@ -7,9 +7,8 @@
 
 static const double STANDARD_HEIGHT = 240;
 static const double LEAST_COPPER = 2.4, LEAST_PLANE = 4, LEAST_MASK = 1; /* pt */
-static const double BELOW = 20;      /* under the plane: scale bar, note */
-static const double LABEL_ROOM = 20; /* pt of dielectric that labels under the copper need */
-static const double LEGEND_ROW = 12;
+static const double BELOW = 20;       /* under the plane: scale bar, note */
+static const double LABEL_ROOM = 20;  /* pt of dielectric that labels under the copper need */
 static const double LEAST_NAMED = 11; /* pt of dielectric that hold its own name */
 static const double HEADROOM = 3;
 
@@ -176,7 +175,8 @@ static void set_scale(struct drawing_frame *frame, const struct sketch *sketch,
     double width = frame->right - frame->left;
     double rows = 4; /* a first guess; the scale needs the rows and the rows need the scale */
     for (int round = 0; round < 3; round++) {
-        double fixed = HEADROOM + rows * DRAWING_DIMENSION_ROW + BELOW + LEGEND_ROW + LEAST_PLANE;
+        double fixed =
+            HEADROOM + rows * DRAWING_DIMENSION_ROW + BELOW + DRAWING_LEGEND_ROW + LEAST_PLANE;
         frame->scale = fmin(width / lateral, fmax(20, most - fixed) / tall);
         frame->x0 =
             (frame->left + frame->right) / 2 - (extent->left + extent->right) / 2 * frame->scale;
@@ -295,19 +295,12 @@ static bool named_before(const struct sketch *sketch, size_t index) {
     return false;
 }
 
-/* Where the next entry of the legend goes. */
-struct legend {
-    double x, y;
-    bool any;
-};
-
-/* look NULL: text alone. */
-static void add_entry(struct drawing_frame *frame, struct legend *legend,
-                      const struct theme_solid *look, const char *text) {
+void drawing_legend_entry(struct drawing_frame *frame, struct drawing_legend *legend,
+                          const struct theme_solid *look, const char *text) {
     double swatch = look == NULL ? 0 : 16, wide = swatch + drawing_width(frame, text);
     if (legend->any && legend->x + wide > frame->options->width) {
         legend->x = frame->left;
-        legend->y += LEGEND_ROW;
+        legend->y += DRAWING_LEGEND_ROW;
     }
     if (look != NULL)
         drawing_solid(frame, look, legend->x + 0.5, legend->y - 5.5, 12, 5.5);
@@ -317,20 +310,19 @@ static void add_entry(struct drawing_frame *frame, struct legend *legend,
 }
 
 static void add_solids(struct drawing_frame *frame, const struct sketch *sketch, bool copper,
-                       struct legend *legend) {
+                       struct drawing_legend *legend) {
     for (size_t i = 0; i < sketch->solid_count; i++) {
         const struct sketch_solid *solid = &sketch->solids[i];
         if (solid->label == NULL || named_elsewhere(frame, solid) || named_before(sketch, i) ||
             (is_copper(solid) && !copper))
             continue;
         struct theme_solid look = theme_solid(solid->role);
-        add_entry(frame, legend, &look, solid->label);
+        drawing_legend_entry(frame, legend, &look, solid->label);
     }
 }
 
-/* Dimensions that found no room beside the picture. */
-static void add_notes(struct drawing_frame *frame, const struct sketch *sketch,
-                      struct legend *legend) {
+void drawing_legend_notes(struct drawing_frame *frame, const struct sketch *sketch,
+                          struct drawing_legend *legend) {
     struct theme_solid mask = theme_solid(SKETCH_MASK);
     for (size_t i = 0; i < sketch->dimension_count; i++) {
         const struct sketch_dimension *dimension = &sketch->dimensions[i];
@@ -341,7 +333,8 @@ static void add_notes(struct drawing_frame *frame, const struct sketch *sketch,
             of_mask = of_mask || (sketch->solids[k].role == SKETCH_MASK &&
                                   sketch->solids[k].bottom == dimension->from &&
                                   sketch->solids[k].top == dimension->to);
-        add_entry(frame, legend, of_mask ? &mask : NULL, drawing_dimension_text(frame, dimension));
+        drawing_legend_entry(frame, legend, of_mask ? &mask : NULL,
+                             drawing_dimension_text(frame, dimension));
     }
 }
 
@@ -349,9 +342,9 @@ static void add_notes(struct drawing_frame *frame, const struct sketch *sketch,
  * last one, or of the row above when there is nothing to say. */
 static double draw_legend(struct drawing_frame *frame, const struct sketch *sketch, bool copper,
                           double y) {
-    struct legend legend = {.x = frame->left, .y = y + LEGEND_ROW};
+    struct drawing_legend legend = {.x = frame->left, .y = y + DRAWING_LEGEND_ROW};
     add_solids(frame, sketch, copper, &legend);
-    add_notes(frame, sketch, &legend);
+    drawing_legend_notes(frame, sketch, &legend);
     return legend.any ? legend.y : y;
 }
 
@@ -378,7 +371,7 @@ static double draw_below(struct drawing_frame *frame, const struct sketch *sketc
                       0.3 * (frame->right - frame->left));
     y = draw_legend(frame, sketch, legend, y);
     if (frame->report.copper_enlarged || frame->report.plane_enlarged) {
-        y += LEGEND_ROW;
+        y += DRAWING_LEGEND_ROW;
         scene_text(frame->scene,
                    &(struct scene_text){.markup = frame->report.copper_enlarged
                                                       ? "Copper drawn thicker than to scale."
@@ -413,7 +406,9 @@ struct scene *drawing_sketch(const struct sketch *sketch, const struct drawing_o
         .options = options, .setter = setter, .arena = arena, .error = kept};
     struct extent extent;
     frame.scene = scene_create(options->width, 1, arena, kept);
-    if (frame.scene != NULL && extent_of(sketch, &extent, kept)) {
+    if (frame.scene != NULL && sketch->plan)
+        drawing_plan(&frame, sketch);
+    else if (frame.scene != NULL && extent_of(sketch, &extent, kept)) {
         set_scale(&frame, sketch, &extent);
         if (frame.scale > 0 && frame.right - frame.left >= 40)
             draw(&frame, sketch, &extent);

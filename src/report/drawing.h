@@ -23,9 +23,9 @@ struct drawing_report {
     bool plane_enlarged;
 };
 
-/* The section of a model.  Lateral extent: all finite copper with a margin of its own size or three
- * heights, whichever is less; infinite solids run out of the picture.  Fails: ERROR_INPUT for a
- * sketch without finite copper; ERROR_MEMORY; NULL then. */
+/* The section of a model, or its plan.  Lateral extent: all finite copper with a margin of its own
+ * size or three heights, whichever is less; infinite solids run out of the picture.  Fails:
+ * ERROR_INPUT for a sketch without finite copper; ERROR_MEMORY; NULL then. */
 struct scene *drawing_sketch(const struct sketch *sketch, const struct drawing_options *options,
                              struct text_setter *setter, struct arena *arena,
                              struct drawing_report *report, struct error *error);

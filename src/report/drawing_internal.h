@@ -4,7 +4,7 @@
 #include "report/drawing.h"
 #include "report/theme.h"
 
-/* What drawing.c, drawing_dimension.c and drawing_board.c share. */
+/* What drawing.c, drawing_plan.c, drawing_dimension.c and drawing_board.c share. */
 
 struct drawing_frame {
     const struct drawing_options *options;
@@ -36,6 +36,24 @@ void drawing_solid(struct drawing_frame *frame, const struct theme_solid *solid,
 /* The same with its top narrower by `etch` pt on either side. */
 void drawing_trapezoid(struct drawing_frame *frame, const struct theme_solid *solid, double x,
                        double y, double width, double height, double etch);
+
+#define DRAWING_LEGEND_ROW 12.0
+
+/* Where the next entry of the legend goes. */
+struct drawing_legend {
+    double x, y;
+    bool any;
+};
+/* look NULL: text alone. */
+void drawing_legend_entry(struct drawing_frame *frame, struct drawing_legend *legend,
+                          const struct theme_solid *look, const char *text);
+/* Dimensions that found no room beside the picture. */
+void drawing_legend_notes(struct drawing_frame *frame, const struct sketch *sketch,
+                          struct drawing_legend *legend);
+
+/* ---- drawing_plan.c ---- */
+
+void drawing_plan(struct drawing_frame *frame, const struct sketch *plan);
 
 /* ---- drawing_dimension.c ---- */
 

@@ -6,11 +6,14 @@
 #include "words.h"
 
 #include <math.h>
+#include <stdint.h>
 #include <string.h>
 
-static const char STANDING_NOTE[] = "Valid over uncut ground, for the stated drivers, terminations "
-                                    "and lengths; crosstalk only, no promise on "
-                                    "emission, immunity, electrostatic discharge or insulation.";
+static const char CROSSTALK_NOTE[] = "Valid over uncut ground, for the stated drivers, "
+                                     "terminations and lengths; crosstalk only, no promise on "
+                                     "emission, immunity, electrostatic discharge or insulation.";
+static const char GEOMETRY_NOTE[] = "Valid over uncut ground, for the geometry stated; no promise "
+                                    "on emission, immunity, electrostatic discharge or insulation.";
 
 enum { CARD_COLUMNS = 6 };
 
@@ -244,7 +247,8 @@ static size_t lines_of(struct flow *flow, const struct study_chapter *chapter,
         lines[count++] = (struct line){"Why", flow_escape(flow, rule->why)};
     if (rule->check != NULL)
         lines[count++] = (struct line){"Check", flow_escape(flow, rule->check)};
-    lines[count++] = (struct line){"Standing", STANDING_NOTE};
+    bool driven = model_input_index(chapter->model, "edge") != SIZE_MAX;
+    lines[count++] = (struct line){"Standing", driven ? CROSSTALK_NOTE : GEOMETRY_NOTE};
     return count;
 }
 

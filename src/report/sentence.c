@@ -56,6 +56,9 @@ static const char *factor(struct flow *flow, double ratio) {
 
 static const char *at_words(struct flow *flow, const struct study_chapter *chapter, size_t point) {
     const struct model_input *input = &chapter->model->inputs[chapter->vary.input];
+    if (input->dimension == DIMENSION_COUNT)
+        return flow_print(flow, "With %s",
+                          words_count(flow, input->name, chapter->vary.points[point]));
     return flow_print(flow, "At %s of %s", words_article(flow, input->name),
                       words_value(flow, chapter->vary.points[point], input->dimension));
 }

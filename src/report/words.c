@@ -65,6 +65,13 @@ const char *words_name(struct flow *flow, const char *name) {
     return text != NULL ? text : "";
 }
 
+const char *words_count(struct flow *flow, const char *name, double count) {
+    const char *plural = words_name(flow, name);
+    size_t length = strlen(plural);
+    bool cut = count == 1.0 && length > 0 && plural[length - 1] == 's';
+    return flow_print(flow, "%.0f\u00a0%.*s", count, (int)(length - (cut ? 1 : 0)), plural);
+}
+
 const char *words_article(struct flow *flow, const char *name) {
     return flow_print(flow, "%s %s", strchr("aeio", name[0]) != NULL ? "an" : "a",
                       words_name(flow, name));

@@ -19,9 +19,11 @@ const char *words_quantity(struct flow *flow, const struct quantity *quantity);
 const char *words_input(struct flow *flow, const struct model_input *input, double value);
 /* "between_width" -> "between width". */
 const char *words_name(struct flow *flow, const char *name);
-/* The same with a capital first letter, for heads. */
+/* "4 vias", "1 via": counts are named in the plural. */
+const char *words_count(struct flow *flow, const char *name, double count);
 /* "a gap", "an edge distance" */
 const char *words_article(struct flow *flow, const char *name);
+/* words_name with a capital first letter, for heads. */
 const char *words_capital(struct flow *flow, const char *name);
 const char *words_strength(enum study_strength strength); /* "MUST" */
 

@@ -14,7 +14,7 @@ static double forth(const struct region_axis *axis, double value) {
 }
 
 static double back(const struct region_axis *axis, double at) {
-    return fmin(axis->high, fmax(axis->low, axis->logarithmic ? exp(at) : at));
+    return region_snap(axis, axis->logarithmic ? exp(at) : at);
 }
 
 double climb_cell(const struct region_axis *axis, double low, size_t samples) {

@@ -9,12 +9,15 @@ static bool spans_much(double low, double high) {
 
 static struct region_axis axis_of(const struct model *model, size_t input, struct interval range) {
     bool choice = model->inputs[input].kind == MODEL_CHOICE;
+    bool whole = model->inputs[input].dimension == DIMENSION_COUNT;
     return (struct region_axis){.input = input,
                                 .kind = choice ? REGION_CHOICE : REGION_RANGE,
                                 .low = range.from,
                                 .high = range.to,
                                 .nominal = range.from,
-                                .logarithmic = !choice && spans_much(range.from, range.to)};
+                                .logarithmic =
+                                    !choice && !whole && spans_much(range.from, range.to),
+                                .whole = whole};
 }
 
 /* `edge` innermost: cases that differ only in it share one line response. */
@@ -82,6 +85,11 @@ void region_restrict(struct region *region, size_t input, struct interval range)
     put_edge_last(region);
 }
 
+double region_snap(const struct region_axis *axis, double value) {
+    double within = fmin(axis->high, fmax(axis->low, value));
+    return axis->whole ? round(within) : within;
+}
+
 double region_sample(const struct region_axis *axis, size_t index, size_t count) {
     if (index == 0 || count < 2)
         return axis->low;
@@ -89,6 +97,6 @@ double region_sample(const struct region_axis *axis, size_t index, size_t count)
         return axis->high;
     double part = (double)index / (double)(count - 1);
     if (axis->logarithmic)
-        return axis->low * pow(axis->high / axis->low, part);
-    return axis->low + (axis->high - axis->low) * part;
+        return region_snap(axis, axis->low * pow(axis->high / axis->low, part));
+    return region_snap(axis, axis->low + (axis->high - axis->low) * part);
 }

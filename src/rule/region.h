@@ -17,6 +17,7 @@ struct region_axis {
     double low, high;
     double nominal;   /* of a tolerance */
     bool logarithmic; /* sampled and searched in the logarithm */
+    bool whole;       /* a count: whole numbers only */
 };
 
 struct region {
@@ -38,7 +39,11 @@ void region_add_tolerance(struct region *region, size_t input, const struct quan
 /* Narrows or adds an axis for `input`; a single value fixes it. */
 void region_restrict(struct region *region, size_t input, struct interval range);
 
-/* Sample `index` of `count` along an axis, first and last exactly at the ends. */
+/* The value of the axis nearest to `value`: within its ends, whole for a count. */
+double region_snap(const struct region_axis *axis, double value);
+
+/* Sample `index` of `count` along an axis, first and last exactly at the ends; of a count, several
+ * indices may come to one whole number. */
 double region_sample(const struct region_axis *axis, size_t index, size_t count);
 
 #endif

@@ -61,6 +61,8 @@ static double sample_from(const struct scan *scan, const struct region_axis *axi
 static size_t samples_for(const struct scan *scan, const struct region_axis *axis, double low) {
     if (axis->kind == REGION_CHOICE)
         return (size_t)(axis->high - axis->low) + 1;
+    if (axis->whole && scan->full)
+        return (size_t)fmin(axis->high - axis->low + 1.0, MOST_SAMPLES);
     if (!scan_is_wavy(scan->region, axis))
         return scan->full ? 2 : 0;
     double octaves = low > 0.0 ? log2(axis->high / low) : 3.0;

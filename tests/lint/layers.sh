@@ -9,7 +9,7 @@ count=0
 stage_of() { # public header -> folder that owns it
     case $1 in
     arena | error | output | quantity | text) echo base ;;
-    section | section_loss) echo field ;;
+    section | section_loss | inductance) echo field ;;
     coupling | line) echo line ;;
     model | sketch) echo model ;;
     study) echo study ;;

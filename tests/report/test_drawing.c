@@ -153,12 +153,52 @@ static void test_mask_cover_edge_and_etch_are_drawn(void **state) {
     }
 }
 
+/* Extent of the scene's filled paths with curves: the discs. */
+static size_t discs_of(const struct scene *scene, double diameter) {
+    size_t found = 0;
+    for (size_t i = 0; i < scene->count; i++) {
+        const struct scene_path *path = &scene->items[i].path;
+        if (scene->items[i].kind != SCENE_PATH || !path->filled || path->count < 5 ||
+            path->segments[1].verb != SCENE_CURVE)
+            continue;
+        assert_close(path->segments[0].x[0] - path->segments[2].x[2], diameter, 1e-6);
+        assert_close(path->segments[1].y[2] - path->segments[3].y[2], diameter, 1e-6);
+        found++;
+    }
+    return found;
+}
+
+static void test_a_plan_shows_discs_and_traces_to_scale(void **state) {
+    struct page *page = *state;
+    static const double widths[] = {420, 230, 150};
+    for (size_t k = 0; k < 3; k++) {
+        struct sketch plan = {.plan = true};
+        sketch_add_solid(
+            &plan, (struct sketch_solid){SKETCH_TRACE, -0.2e-3, 5.2e-3, -0.5e-3, 0.5e-3, "trace"});
+        sketch_add_disc(&plan, (struct sketch_disc){SKETCH_TIED, 0, 0, 0.4e-3, "via"});
+        sketch_add_disc(&plan, (struct sketch_disc){SKETCH_TIED, 5e-3, 0, 0.4e-3, "via"});
+        sketch_add_dimension(&plan, (struct sketch_dimension){false, 0, 5e-3, 0, "length", 5e-3});
+        sketch_add_dimension(&plan,
+                             (struct sketch_dimension){true, -0.5e-3, 0.5e-3, 5e-3, "width", 1e-3});
+        struct drawing_options options = {.name = "plan", .width = widths[k], .most_height = 110};
+        struct drawing_report report;
+        struct scene *scene =
+            drawing_sketch(&plan, &options, page->setter, page->arena, &report, &page->error);
+        assert_non_null(scene);
+        assert_int_equal(discs_of(scene, 0.4e-3 * report.scale), 2);
+        assert_true(has_rectangle(scene, 5.4e-3 * report.scale, 0.05));
+        assert_true(says(scene, "length") && says(scene, "width") && says(scene, "via"));
+        assert_true(scene->width <= widths[k] + 1e-6 && scene->height <= 110 + 1e-6);
+    }
+}
+
 int main(void) {
     const struct CMUnitTest tests[] = {
         page_test(test_widths_are_to_scale_and_thin_copper_is_said_to_be_thicker),
         page_test(test_a_narrow_drawing_keeps_its_texts_apart),
         page_test(test_nothing_to_draw_is_refused),
         page_test(test_mask_cover_edge_and_etch_are_drawn),
+        page_test(test_a_plan_shows_discs_and_traces_to_scale),
     };
     return cmocka_run_group_tests(tests, NULL, NULL);
 }

@@ -8,7 +8,7 @@
 
 /* A model whose answers are algebra, so that every bound is known. */
 
-enum { GAP, LENGTH, EDGE, SOURCE, HEIGHT, DK, WIDTH, VICTIM_WIDTH, RECEIVER, ANALYTIC_INPUTS };
+enum { GAP, LENGTH, EDGE, SOURCE, HEIGHT, DK, WIDTH, VICTIM_WIDTH, RECEIVER, VIAS, ANALYTIC_INPUTS };
 enum { PEAK, IMPEDANCE, ANALYTIC_OUTPUTS };
 
 typedef double analytic(const double *inputs);
@@ -52,6 +52,7 @@ static const struct model_input analytic_inputs[] = {
                       "width", NULL, 0, NULL},
     [RECEIVER] = {"receiver", "", DIMENSION_WORD, MODEL_CHOICE, 0, 0, 1, false, NULL, receivers, 0,
                   NULL},
+    [VIAS] = {"vias", "", DIMENSION_COUNT, MODEL_SHAPE, 1, 1, 100, false, NULL, NULL, 0, NULL},
 };
 static const struct model_output analytic_outputs[] = {
     [PEAK] = {"peak", "peak", NULL, "", DIMENSION_VOLTAGE, MODEL_HIGHER_IS_WORSE, NULL},

@@ -452,6 +452,35 @@ static void test_a_ridge_across_the_axes_is_followed(void **state) {
     }
 }
 
+/* ---- counts ---- */
+
+static double worst_count;
+static bool split; /* a formula was asked for a part of a via */
+
+static double counted(const double *x) {
+    split = split || x[VIAS] != floor(x[VIAS]);
+    return 0.1e-3 * (1 + 9 / (1 + fabs(x[VIAS] - worst_count))) / x[GAP];
+}
+
+/* The worst count lies within the range, at neither end; past the number of samples of an axis the
+ * climb finds it. */
+static void test_a_range_of_a_count_is_searched_in_whole_numbers(void **state) {
+    (void)state;
+    static const double cases[][3] = {{2, 4, 3}, {2, 4, 4}, {1, 24, 17}, {1, 90, 52}, {3, 4, 3}};
+    for (size_t i = 0; i < sizeof cases / sizeof *cases; i++) {
+        struct question q = smallest_gap(counted);
+        worst_count = cases[i][2];
+        split = false;
+        range(&q, VIAS, cases[i][0], cases[i][1]);
+        q.variant.settings[VIAS].value = cases[i][0];
+        ask(&q);
+        assert_false(split);
+        assert_int_equal(q.finding.status, GUIDELINE_FOUND);
+        assert_int_equal(q.finding.multiple, 100);
+        assert_close(q.finding.worst_inputs[VIAS], worst_count, 1e-12);
+    }
+}
+
 int main(void) {
     const struct CMUnitTest tests[] = {
         cmocka_unit_test(test_a_minimum_is_rounded_up_to_the_grid),
@@ -478,6 +507,7 @@ int main(void) {
         cmocka_unit_test(test_a_reference_board_is_compared_in_the_same_situation),
         cmocka_unit_test(test_a_reference_on_the_same_board_stands_at_its_nominal_value),
         cmocka_unit_test(test_a_ridge_across_the_axes_is_followed),
+        cmocka_unit_test(test_a_range_of_a_count_is_searched_in_whole_numbers),
     };
     return cmocka_run_group_tests(tests, NULL, NULL);
 }
