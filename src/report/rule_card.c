@@ -45,8 +45,10 @@ static const char *proven_over(struct flow *flow, const struct study_chapter *ch
                               range_words(flow, &chapter->model->inputs[i], setting));
         tolerance = tolerance || setting->minus > 0.0 || setting->plus > 0.0;
     }
+    const struct model_input *input = &chapter->model->inputs[rule->find];
     const char *found = flow_print(
-        flow, "every %s %s %s", words_name(flow, chapter->model->inputs[rule->find].name),
+        flow, "every %s%s %s %s", input->dimension == DIMENSION_COUNT ? "number of " : "",
+        words_name(flow, input->name),
         rule->find_smallest ? "from the bound up to" : "from the bound down to",
         words_value(flow, rule->find_smallest ? rule->within.to : rule->within.from,
                     chapter->model->inputs[rule->find].dimension));
