@@ -5,6 +5,11 @@
 #include <math.h>
 #include <stddef.h>
 
+/* The C library's header gives it to one compiler only. */
+#ifndef CMPLX
+#define CMPLX(real, imaginary) __builtin_complex((double)(real), (double)(imaginary))
+#endif
+
 /* Complex matrices of a few rows, row major.  Everything is inline with the size as an argument:
  * called with a constant 2 the loops vanish, which is what a pair's response in time lives on. */
 
