@@ -1,8 +1,8 @@
-/* Groups of vias against loops_reference.h, exact two-dimensional solutions and invariants. */
+/* Groups of vias against vias_reference.h, exact two-dimensional solutions and invariants. */
 #include "check.h"
 
 #include "inductance_pieces.h"
-#include "loops_reference.h"
+#include "vias_reference.h"
 
 #include <stdlib.h>
 

@@ -1,9 +1,9 @@
-/* Single pieces against loops_reference.h and handbook formulas. */
+/* Single pieces against pieces_reference.h and handbook formulas. */
 #include "check.h"
 
 #include "bar.h"
 #include "inductance_pieces.h"
-#include "loops_reference.h"
+#include "pieces_reference.h"
 
 #define COUNT(table) (sizeof(table) / sizeof *(table))
 

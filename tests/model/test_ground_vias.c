@@ -1,7 +1,7 @@
-/* ground-vias and signal-via against loops_reference.h and the figures of the trade. */
+/* ground-vias and signal-via against vias_reference.h and the figures of the trade. */
 #include "point.h"
 
-#include "../field/loops_reference.h"
+#include "../field/vias_reference.h"
 
 #include <string.h>
 
