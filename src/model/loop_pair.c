@@ -1,5 +1,6 @@
 /* Two equal loops side by side between ports. */
 
+#include "board_inputs.h"
 #include "loop_parts.h"
 #include "registry.h"
 
@@ -129,10 +130,7 @@ static bool sketch(const double *values, struct sketch *drawing, struct error *e
     *drawing = (struct sketch){0};
     double height = values[HEIGHT], foot = height + values[BODY], half = values[WIDTH] / 2.0;
     double radius = values[DIAMETER] / 2.0, top = foot + values[THICKNESS];
-    sketch_add_solid(drawing, (struct sketch_solid){SKETCH_PLANE, -INFINITY, INFINITY, -35e-6, 0.0,
-                                                    "ground plane"});
-    sketch_add_solid(
-        drawing, (struct sketch_solid){SKETCH_DIELECTRIC, -INFINITY, INFINITY, 0.0, height, NULL});
+    board_sketch(drawing, &(struct board){.height = height}, 0.0);
     for (int loop = 0; loop < 2; loop++) {
         double x = loop * values[SEPARATION];
         enum sketch_role role = loop == 0 ? SKETCH_AGGRESSOR : SKETCH_VICTIM;

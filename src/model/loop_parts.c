@@ -1,5 +1,7 @@
 #include "loop_parts.h"
 
+#include "board_inputs.h"
+
 #include <math.h>
 
 enum {
@@ -156,10 +158,7 @@ unsigned loop_flags(const struct loop_shape *shape, double frequency) {
 void loop_sketch(const struct loop_shape *shape, double body, struct sketch *sketch) {
     double radius = shape->via_diameter / 2.0, length = shape->length, foot = shape->height;
     double board = foot - body, top = foot + shape->thickness;
-    sketch_add_solid(sketch, (struct sketch_solid){SKETCH_PLANE, -INFINITY, INFINITY, -35e-6, 0.0,
-                                                   "ground plane"});
-    sketch_add_solid(
-        sketch, (struct sketch_solid){SKETCH_DIELECTRIC, -INFINITY, INFINITY, 0.0, board, NULL});
+    board_sketch(sketch, &(struct board){.height = board}, 0.0);
     sketch_add_solid(sketch, (struct sketch_solid){SKETCH_TRACE, -radius, radius, 0.0, foot, NULL});
     sketch_add_solid(sketch, (struct sketch_solid){SKETCH_TRACE, length - radius, length + radius,
                                                    0.0, foot, NULL});
